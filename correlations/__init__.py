@@ -1,0 +1,1 @@
+"""Published empirical correlations for diffusivities, packings and trays: pure functions of arrays."""

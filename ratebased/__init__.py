@@ -1,0 +1,1 @@
+"""Multicomponent mass-transfer rates for distillation and absorption stages."""
