@@ -8,7 +8,7 @@ from numpy.typing import ArrayLike
 
 from ..arguments import component_vector, pair_matrix, positive_scalar
 from ..errors import InputError
-from .protocol import Array, KDerivatives, LiquidTransport, Mask, VaporTransport
+from .protocol import GAS_CONSTANT, Array, KDerivatives, LiquidTransport, Mask, VaporTransport
 
 
 class ConstantVolatility:
@@ -117,12 +117,17 @@ class ConstantVolatility:
 
     def vapor_transport(self, T: ArrayLike, P: ArrayLike, y: ArrayLike) -> VaporTransport:
         """The constants given; molar density P/(R T) unless given."""
-        T, P, y = np.broadcast_arrays(T, P, np.asarray(y, float)[..., 0])[:2] + [np.asarray(y, float)]
-        density = P / (8.314462618 * T) if self.vapor_molar_density is None else np.full(T.shape,
-                                                                                        self.vapor_molar_density)
-        return VaporTransport(density, density * (y @ self.molar_mass), np.full(T.shape, self.vapor_viscosity),
-                              y @ self.vapor_cp, np.full(T.shape, self.vapor_conductivity),
-                              np.broadcast_to(self.vapor_diffusivity, T.shape + self.vapor_diffusivity.shape))
+        T, P, y = np.asarray(T, float), np.asarray(P, float), np.asarray(y, float)
+        shape = np.broadcast_shapes(T.shape, P.shape, y.shape[:-1])
+
+        def constant(value: float) -> Array:
+            return np.full(shape, value)
+
+        given = self.vapor_molar_density
+        density = np.broadcast_to(P / (GAS_CONSTANT * T), shape) if given is None else constant(given)
+        return VaporTransport(density, density * (y @ self.molar_mass), constant(self.vapor_viscosity),
+                              np.broadcast_to(y @ self.vapor_cp, shape), constant(self.vapor_conductivity),
+                              np.broadcast_to(self.vapor_diffusivity, shape + self.vapor_diffusivity.shape))
 
     def liquid_transport(self, T: ArrayLike, P: ArrayLike, x: ArrayLike) -> LiquidTransport:
         """The constants given."""

@@ -13,6 +13,9 @@ from numpy.typing import NDArray
 Array = NDArray[np.float64]
 Mask = NDArray[np.bool_]
 
+GAS_CONSTANT = 8.314462618
+"""J/(mol K), exact in the SI of 2019 to the digits given."""
+
 
 @dataclass(frozen=True)
 class VaporTransport:
