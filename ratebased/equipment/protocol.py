@@ -77,7 +77,7 @@ class Hydraulics:
     velocity (above one weeps). downcomer: backup over height available.
     """
 
-    flooding: Array
+    flooding: Array | None
     pressure_drop: Array | None = None
     liquid_holdup: Array | None = None
     weeping: Array | None = None
