@@ -1,0 +1,1 @@
+"""Mass transfer through one film: exact, linearised, effective, explicit and numerical methods."""
