@@ -55,7 +55,7 @@ def mole_fractions(name: str, value: ArrayLike, n: int | None = None) -> Array:
         where = tuple(int(i) for i in np.argwhere(off)[0])
         raise InputError(f"{name}{list(where) if where else ''}: mole fractions sum to {total[..., 0][where]:.10g}, "
                          "expected 1")
-    return x / total
+    return np.asarray(x / total)
 
 
 def component_vector(name: str, value: ArrayLike, n: int, *, positive: bool = False) -> Array:

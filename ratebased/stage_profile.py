@@ -272,7 +272,7 @@ class _Reader:
         if off[row] > 1e-9:
             warnings.warn(f"{self.source}: {prefix} fractions sum to one within {off[row]:.1e} only (row {row + 1}) "
                           "and were renormalised", PlausibilityWarning, stacklevel=5)
-        return values / total[:, None]
+        return np.asarray(values / total[:, None])
 
     def kinds(self) -> tuple[str, ...]:
         if "kind" not in self.frame:
