@@ -1,0 +1,6 @@
+"""Two films and the interface between them: fluxes, interface state, derivatives."""
+from .blocks import InterfaceBlocks, interface_blocks, interface_start
+from .records import Bulk, InterfaceDerivatives, InterfaceFlux, InterfaceStatus
+
+__all__ = ["Bulk", "InterfaceBlocks", "InterfaceDerivatives", "InterfaceFlux", "InterfaceStatus", "interface_blocks",
+           "interface_start"]
