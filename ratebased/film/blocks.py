@@ -18,39 +18,17 @@ from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
-from numpy.typing import ArrayLike, NDArray
+from numpy.typing import NDArray
+
+from ..maxwell_stefan import composition_matrix, film_matrix, reduced, resistances
+
+__all__ = ["FilmBlocks", "composition_matrix", "coth_blocks", "film_matrix", "reduced", "resistances", "shoot"]
 
 Array = NDArray[np.float64]
 Spectrum = NDArray[Any]  # real or complex, as the eigenvalues turn out
 
 ILL_CONDITIONED = 1e5
 """Condition number of the eigenvectors of Z above which its functions are taken by doubling instead."""
-
-
-def resistances(kappa: ArrayLike, c_t: ArrayLike) -> Array:
-    """K_ij = 1/(c_t kappa_ij), m2 s/mol, (..., n, n), zero on the diagonal (whatever the diagonal of kappa holds)."""
-    kappa = np.asarray(kappa, dtype=float)
-    off = ~np.eye(kappa.shape[-1], dtype=bool)
-    product = np.where(off, kappa, 1.0) * np.asarray(c_t, dtype=float)[..., None, None]
-    return np.where(off, 1.0 / product, 0.0)
-
-
-def film_matrix(N: Array, K: Array) -> Array:
-    """A(N) with dx/deta = A x: A_ij = -N_i K_ij, A_ii = sum_j K_ij N_j; (..., n, n), dimensionless."""
-    A = N[..., None] * K
-    np.negative(A, out=A)
-    np.einsum("...ii->...i", A)[...] = (K @ N[..., None])[..., 0]
-    return A
-
-
-def composition_matrix(x: Array, K: Array) -> Array:
-    """M(x) with M(x) N = -dx/deta: M_ij = -x_i K_ij, M_ii = sum_j K_ij x_j; (..., n, n), m2 s/mol."""
-    return film_matrix(x, K)
-
-
-def reduced(A: Array) -> Array:
-    """The (n-1, n-1) form of an (n, n) matrix acting on vectors that sum to zero, the last component eliminated."""
-    return A[..., :-1, :-1] - A[..., :-1, -1:]
 
 
 def _taylor_order(norm: float) -> int:
@@ -141,15 +119,17 @@ def coth_factor_matrix(Z: Array) -> Array:
     doublings = max(0, int(np.ceil(np.log2(max(norm, 1e-300)))))
     W: Array = Z @ Z * 0.25 ** (doublings + 1)
     one = np.eye(Z.shape[-1])
-    h_last, h, k_last, k = one, one, np.zeros_like(one), one
+    h_last: Spectrum = one
+    k_last: Spectrum = np.zeros_like(one)
+    h, k = h_last, h_last
     for b in (3.0, 5.0, 7.0, 9.0, 11.0, 13.0):
         h_last, h = h, b * h + W @ h_last
         k_last, k = k, b * k + W @ k_last
     C: Array = np.linalg.solve(k, h)
     for _ in range(doublings):
         tanh_part: Array = np.linalg.solve(C, W)          # W and C commute
-        C = C + tanh_part
-        W = 4.0 * W
+        C += tanh_part
+        W *= 4.0
     return C
 
 
