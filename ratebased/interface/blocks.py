@@ -36,8 +36,9 @@ class InterfaceBlocks:
         E_L)/energy_scale. dz (..., 2n+1, 2n+1). dw (..., 2n+1, 2n+2) or None: the column of y_j (of x_j) is the
         derivative along e_j - e_n and that of the last one zero, so that a chain rule whose dy sum to zero is right.
     E_V, E_L : energy fluxes of the two films from vapour to liquid, W/m2, (...), with dE_*_dz (..., 2n+1) and dE_*_dw
-        (..., 2n+2) or None. q_vapor_bulk, q_liquid_bulk : conduction at the bulk faces, W/m2.
-    size : largest |A|_1 of the two films, (...). y_I, x_I, K : the interface state, (..., n).
+        (..., 2n+2) or None. q_* : conduction at the four faces, W/m2, (...), with that of the first as dq_vapor_bulk_*.
+    size : largest |A|_1 of the two films, (...). terms : size of the terms of the film rows, at least 1: what their
+        residual is small against. y_I, x_I, K : the interface state, (..., n).
     """
 
     residual: Array
@@ -49,11 +50,14 @@ class InterfaceBlocks:
     dE_V_dw: Array | None
     dE_L_dz: Array
     dE_L_dw: Array | None
+    dq_vapor_bulk_dz: Array
+    dq_vapor_bulk_dw: Array | None
     q_vapor_bulk: Array
     q_vapor_interface: Array
     q_liquid_interface: Array
     q_liquid_bulk: Array
     size: Array
+    terms: Array
     rate_factor: Array
     y_I: Array
     x_I: Array
@@ -85,10 +89,10 @@ def interface_blocks(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: Ar
 def interface_start(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: ArrayLike) -> Array:
     """Start for z, (..., 2n+1): no flux, the interface liquid that of the bulk, at its zero-flux temperature."""
     problem = prepare(vapor, liquid, properties, np.asarray(P, float))
-    return start(problem, zero_flux_temperature(problem, 1e-2))
+    return at_rest(problem, zero_flux_temperature(problem, 1e-2))
 
 
-def start(problem: InterfaceProblem, T: Array) -> Array:
+def at_rest(problem: InterfaceProblem, T: Array) -> Array:
     """z of zero flux at interface temperature T."""
     n = problem.n
     u = np.where(problem.condensable, problem.x, problem.y)
@@ -171,10 +175,14 @@ def evaluate(problem: InterfaceProblem, z: Array, y_guess: Array, bulk_derivativ
     dz[..., 2 * m + 1, n:2 * n] = p.condensable
     dz[..., 2 * n, :] = (dE_V_dz - dE_L_dz) / p.energy_scale[..., None]
 
+    dq_dz, dq_dw = dE_V_dz.copy(), None
+    dq_dz[..., :n] -= p.H_V
     dw = dE_V_dw = dE_L_dw = None
     if energy_V.dbulk is not None and energy_L.dbulk is not None:
         dE_V_dw, dE_L_dw = np.zeros((*batch, 2 * n + 2)), np.zeros((*batch, 2 * n + 2))
         dE_V_dw[..., :n + 1], dE_L_dw[..., n + 1:] = energy_V.dbulk, energy_L.dbulk
+        dq_dw = dE_V_dw.copy()
+        dq_dw[..., :n + 1] -= energy_V.dbulk_enthalpy
         dw = np.zeros((*batch, 2 * n + 1, 2 * n + 2))
         dw[..., :m, :m] = vapor.blocks.dx0
         dw[..., m:2 * m, n + 1:2 * n] = liquid.blocks.dxd
@@ -186,8 +194,9 @@ def evaluate(problem: InterfaceProblem, z: Array, y_guess: Array, bulk_derivativ
 
     size = np.broadcast_to(np.maximum(rate_size(N, p.K_V), rate_size(N, p.K_L)), batch)
     rate_factor = np.maximum(np.abs(energy_V.rate_factor), np.abs(energy_L.rate_factor))
-    return InterfaceBlocks(residual, dz, dw, energy_V.E, energy_L.E, dE_V_dz, dE_V_dw, dE_L_dz, dE_L_dw,
-                           energy_V.q_bulk, energy_V.q_interface, energy_L.q_interface, energy_L.q_bulk, size,
+    terms = np.maximum(1.0, np.maximum(vapor.blocks.size, liquid.blocks.size)) if m else np.ones(batch)
+    return InterfaceBlocks(residual, dz, dw, energy_V.E, energy_L.E, dE_V_dz, dE_V_dw, dE_L_dz, dE_L_dw, dq_dz, dq_dw,
+                           energy_V.q_bulk, energy_V.q_interface, energy_L.q_interface, energy_L.q_bulk, size, terms,
                            rate_factor, eq.y_I, eq.x_I, eq.K, vapor.gamma, liquid.gamma)
 
 

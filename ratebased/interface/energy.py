@@ -51,7 +51,8 @@ class FilmEnergy:
 
     E : energy flux. q_bulk, q_interface : conduction at the two faces. rate_factor : a = sum N cp/h.
     dN (..., n), dT_interface (...) : derivatives of E by the fluxes and by T_I.
-    dbulk (..., n + 1) or None : by the bulk composition (column j along e_j - e_n, the last zero) and its temperature.
+    dbulk (..., n + 1) or None : by the bulk composition (column j along e_j - e_n, the last zero) and its temperature;
+    dbulk_enthalpy : the part of it that is sum_i N_i dH_i, the rest belongs to q_bulk.
     """
 
     E: Array
@@ -61,6 +62,7 @@ class FilmEnergy:
     dN: Array
     dT_interface: Array
     dbulk: Array | None
+    dbulk_enthalpy: Array | None
 
 
 def film_energy(N: Array, T_interface: Array, T_bulk: Array, h: Array, H_bulk: Array, H_interface: Array,
@@ -81,13 +83,14 @@ def film_energy(N: Array, T_interface: Array, T_bulk: Array, h: Array, H_bulk: A
     E = q + (N * H_bulk).sum(-1)
     dN = H_bulk + (dB * jump)[..., None] * cp
     dT_interface = -side * h * B + dB * (N * (cp - slope_interface)).sum(-1)
-    dbulk = None
+    dbulk = dbulk_enthalpy = None
     if slope_bulk is not None:
-        dbulk = np.zeros((*np.shape(E), N.shape[-1] + 1))
-        carried = (N * slope_bulk).sum(-1)
-        dbulk[..., -1] = side * h * B + dB * (carried - (N * cp).sum(-1)) + carried
+        dbulk_enthalpy = np.zeros((*np.shape(E), N.shape[-1] + 1))
+        dbulk_enthalpy[..., -1] = (N * slope_bulk).sum(-1)
+        dbulk = np.array(dbulk_enthalpy)
+        dbulk[..., -1] += side * h * B + dB * (dbulk_enthalpy[..., -1] - (N * cp).sum(-1))
         if H_bulk_composition is not None and H_interface_composition is not None:
-            by_bulk = (N[..., None] * H_bulk_composition).sum(-2)
+            dbulk_enthalpy[..., :-1] = (N[..., None] * H_bulk_composition).sum(-2)
             by_interface = (N[..., None] * H_interface_composition).sum(-2)
-            dbulk[..., :-1] = by_bulk + dB[..., None] * (by_bulk - by_interface)
-    return FilmEnergy(E, q, side * h * bernoulli(-side * a) * jump, a, dN, dT_interface, dbulk)
+            dbulk[..., :-1] = dbulk_enthalpy[..., :-1] + dB[..., None] * (dbulk_enthalpy[..., :-1] - by_interface)
+    return FilmEnergy(E, q, side * h * bernoulli(-side * a) * jump, a, dN, dT_interface, dbulk, dbulk_enthalpy)

@@ -58,7 +58,7 @@ def equilibrium(problem: InterfaceProblem, T: Array, u: Array, y_guess: Array) -
             return _assemble(problem, x_I, y_new, K, slope.temperature, slope.liquid, None, x_sum)
         inner = np.eye(n) - (np.where(ordinary, y_new, 0.0) / y_sum[..., None])[..., None] * slope.vapor
         step: Array = np.linalg.solve(inner, (y_new - y)[..., None])[..., 0]
-        y = y + step
+        y = np.asarray(y + step)
         if np.abs(step).max(initial=0.0) < 1e-9:          # quadratic: what is left is rounding
             break
     return _assemble(problem, x_I, y, K, slope.temperature, slope.liquid, inner, x_sum)
