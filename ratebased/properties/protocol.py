@@ -62,8 +62,8 @@ class PropertyModel(Protocol):
     never enters the vapour. `k_value` gives 0 for both (a placeholder: the masks decide).
     Optional methods, used where present: `k_value_derivatives(T, P, x, y) -> KDerivatives`,
     `vapor_heat_capacity(T, P, y)`, `liquid_heat_capacity(T, P, x)` (partial molar, dH_i/dT at constant composition,
-    (..., n)), `vapor_thermodynamic_factor(T, P, y)` (identity without it). Optional attribute: `T_range` (low, high), K,
-    outside which the model raises `PropertyRangeError`; solvers keep their iterates inside it.
+    (..., n)), `vapor_thermodynamic_factor(T, P, y)` (identity without it). Optional attribute: `T_range`
+    (low, high), K, outside which the model raises `PropertyRangeError`; solvers keep their iterates inside it.
     """
 
     @property

@@ -41,8 +41,8 @@ def dew_point(properties: PropertyModel, P: ArrayLike, y: ArrayLike, T_guess: Ar
     """Dew temperature and the liquid in equilibrium: (T, x), K and (..., n).
 
     P (...) Pa; y (..., n) vapour mole fractions, non-condensable gases included (they lower the dew point and are
-    absent from x); `x_nonvolatile` (..., n) the share of non-volatile components in the liquid (default none). Errors as for
-    `bubble_point`.
+    absent from x); `x_nonvolatile` (..., n) the share of non-volatile components in the liquid (default none). Errors
+    as for `bubble_point`.
     """
     return _saturation_point(properties, P, "y", y, "x_nonvolatile", x_nonvolatile, T_guess, sign=-1.0)
 

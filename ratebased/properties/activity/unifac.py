@@ -1,0 +1,80 @@
+"""UNIFAC group contributions, original and modified."""
+from __future__ import annotations
+
+import numpy as np
+from numpy.typing import ArrayLike
+
+from ...arguments import finite_array, positive_array
+from ...errors import InputError
+from ..jet import Jet, temperature
+from ..protocol import Array
+from .surface import combinatorial, combinatorial_mole_derivatives, residual_mole_derivatives, segment_activity
+
+
+class Unifac:
+    """ln gamma from groups of volume R_k and area Q_k, v_ik of them in component i.
+
+    psi_mk = exp(-(a_mk/T + b_mk + c_mk T)). The original method has a alone and r_exponent 1 (Fredenslund, Jones &
+    Prausnitz, AIChE J. 21 (1975) 1086); the modified one all three and 3/4 (Weidlich & Gmehling, Ind. Eng. Chem. Res.
+    26 (1987) 1372).
+
+    Parameters
+    ----------
+    counts : v_ik, (n, G); every component has at least one group.
+    R, Q : group volumes and areas, (G,).
+    a, b, c : group interactions, (G, G), K, -, 1/K; diagonal zero.
+    r, q : molecular volumes and areas, (n,); None sums them over the groups.
+    label : for the summary.
+    """
+
+    def __init__(self, counts: ArrayLike, R: ArrayLike, Q: ArrayLike, a: ArrayLike, b: ArrayLike | None = None,
+                 c: ArrayLike | None = None, *, r_exponent: float = 1.0, label: str = "UNIFAC") -> None:
+        groups = finite_array("counts", counts)
+        if groups.ndim != 2 or (groups < 0).any():
+            raise InputError(f"counts: expected (n, groups) numbers, none negative, got shape {groups.shape}")
+        for i in np.flatnonzero(groups.sum(1) <= 0):
+            raise InputError(f"counts[{i}]: component {i} has no group")
+        self.size, n_groups = groups.shape
+        volume, area = finite_array("R", R), positive_array("Q", Q)
+        for name, vector in (("R", volume), ("Q", area)):
+            if vector.shape != (n_groups,):
+                raise InputError(f"{name}: expected {n_groups} entries, one a group, got shape {vector.shape}")
+        self._coefficients: list[Array] = []
+        for name, value in (("a", a), ("b", b), ("c", c)):
+            matrix = np.zeros((n_groups, n_groups)) if value is None else finite_array(name, value)
+            if matrix.shape != (n_groups, n_groups) or np.diagonal(matrix).any():
+                raise InputError(f"{name}: expected a ({n_groups}, {n_groups}) matrix with a zero diagonal, got shape "
+                                 f"{matrix.shape}")
+            self._coefficients.append(matrix)
+        self.r, self.q = groups @ volume, groups @ area
+        self.r_exponent = r_exponent
+        self.label = label
+        self._areas = groups * area
+        self._pure_fractions = self._areas / self.q[:, None]
+
+    def _psi(self, T: Array, order: int) -> Jet:
+        a, b, c = self._coefficients
+        jet = temperature(np.asarray(T, float)[..., None, None], order)
+        exponent = jet.reciprocal() * a
+        if b.any() or c.any():
+            exponent = exponent + b + jet * c
+        return (-exponent).exp()
+
+    def ln_gamma(self, T: Array, x: Array, order: int = 0) -> Jet:
+        """ln gamma with temperature derivatives, (..., n)."""
+        x = np.asarray(x, float)
+        psi = self._psi(T, order)
+        amount = x @ self._areas
+        theta = amount / amount.sum(-1, keepdims=True)
+        difference = segment_activity(theta[..., None, :], psi) - segment_activity(self._pure_fractions, psi)
+        residual = (difference * self._areas).sum(-1)
+        return residual + combinatorial(x, self.r, self.q, self.r_exponent)
+
+    def mole_number_derivatives(self, T: Array, x: Array) -> Array:
+        """d ln gamma_i / d n_j at one mole in all, (..., n, n)."""
+        x = np.asarray(x, float)
+        return (residual_mole_derivatives(x, self._areas, self._psi(T, 0).value)
+                + combinatorial_mole_derivatives(x, self.r, self.q, self.r_exponent))
+
+    def describe(self) -> str:
+        return self.label

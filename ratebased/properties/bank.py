@@ -1,0 +1,154 @@
+"""Functions of temperature for every component at once, as Chebyshev series.
+
+A correlation library evaluates one function at one temperature in about a microsecond; a column asks for fifty of them
+on forty stages at every iteration. The functions are sampled once over the temperature range of the column, and one
+matrix product gives all of them, with their derivatives, for all stages (Trefethen, Approximation Theory and
+Approximation Practice, 2013, ch. 3 and 8: a smooth function converges geometrically in the degree). Where a
+correlation hands over to another, at one end of its own range, the bank starts a new series, so that a kink does not
+spoil the convergence.
+"""
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.polynomial import chebyshev
+
+from ..errors import InputError, PropertyRangeError
+from .protocol import Array
+
+ScalarFunction = Callable[[float], float]
+
+DEGREES = (16, 24, 32, 48)
+FIT_TOLERANCE = 2e-12
+SHORTEST_SEGMENT = 1e-3
+"""K: limits closer together than this are one limit."""
+
+
+@dataclass(frozen=True)
+class BankView:
+    """Some functions of a bank, some with derivatives: the columns of one matrix product."""
+
+    low: float
+    high: float
+    edges: Array
+    coefficients: tuple[Array, ...]
+    count: int
+
+    def __call__(self, T: Array) -> list[Array]:
+        """The functions asked for, in that order, each (..., n), at temperatures T (...) in K.
+
+        Raises `PropertyRangeError` for a temperature outside the range of the bank.
+        """
+        T = np.asarray(T, float)
+        if T.size and not (self.low <= T.min() and T.max() <= self.high):
+            self._refuse(T)
+        flat = T.reshape(-1)
+        if len(self.coefficients) == 1:
+            values = _series(flat, self.low, self.high, self.coefficients[0])
+        else:
+            values = np.empty((flat.size, self.coefficients[0].shape[1]))
+            segment = np.clip(np.searchsorted(self.edges, flat, side="right") - 1, 0, len(self.coefficients) - 1)
+            for s, coefficients in enumerate(self.coefficients):
+                inside = segment == s
+                if inside.any():
+                    values[inside] = _series(flat[inside], self.edges[s], self.edges[s + 1], coefficients)
+        values = values.reshape(*T.shape, self.count, -1)
+        return [values[..., k, :] for k in range(self.count)]
+
+    def _refuse(self, T: Array) -> None:
+        bad = ~((T >= self.low) & (T <= self.high))
+        where = tuple(int(i) for i in np.argwhere(bad)[0])
+        raise PropertyRangeError(f"T{list(where) if where else ''} = {T[where]:.8g} K is outside the range "
+                                 f"{self.low:g} to {self.high:g} K the properties were built for")
+
+
+def _series(T: Array, low: float, high: float, coefficients: Array) -> Array:
+    scaled = np.clip((2.0 * T - (high + low)) / (high - low), -1.0, 1.0)
+    values: Array = np.cos(np.arccos(scaled)[:, None] * np.arange(len(coefficients))) @ coefficients
+    return values
+
+
+class TemperatureBank:
+    """Chebyshev series of functions of temperature, n components each.
+
+    Parameters
+    ----------
+    T_range : (low, high), K.
+    functions : name -> n scalar functions of T in K.
+    limits : temperatures inside the range where some function has a kink; a new series starts there.
+
+    `fit_error[name]` (n,) is the largest error found between the nodes, relative to the largest value of the
+    function. The degree is the smallest of 16, 24, 32, 48 that brings every function below 2e-12; a function that no
+    degree brings there does not raise the degree of the others.
+    """
+
+    def __init__(self, T_range: tuple[float, float], functions: Mapping[str, Sequence[ScalarFunction]],
+                 limits: Sequence[float] = ()) -> None:
+        low, high = float(T_range[0]), float(T_range[1])
+        if not (np.isfinite([low, high]).all() and 0.0 < low < high):
+            raise InputError(f"T_range = {T_range}: expected 0 < low < high, K")
+        self.T_range = (low, high)
+        edges = [low]
+        for limit in sorted(limits):
+            if limit - edges[-1] > SHORTEST_SEGMENT and high - limit > SHORTEST_SEGMENT:
+                edges.append(float(limit))
+        self.edges = np.array([*edges, high])
+        self._slices: dict[str, slice] = {}
+        flat: list[ScalarFunction] = []
+        for name, group in functions.items():
+            self._slices[name] = slice(len(flat), len(flat) + len(group))
+            flat.extend(group)
+        fits = [_fit(flat, a, b) for a, b in zip(self.edges[:-1], self.edges[1:])]
+        scale = np.max([fit[2] for fit in fits], axis=0)
+        error = np.max([fit[1] for fit in fits], axis=0) / np.where(scale > 0, scale, 1.0)
+        self.fit_error = {name: error[where] for name, where in self._slices.items()}
+        self._coefficients = tuple(fit[0] for fit in fits)
+
+    def view(self, *wanted: tuple[str, int]) -> BankView:
+        """An evaluator of (name, order of the temperature derivative) pairs."""
+        matrices = []
+        for coefficients, a, b in zip(self._coefficients, self.edges[:-1], self.edges[1:]):
+            blocks = []
+            for name, order in wanted:
+                block = coefficients[:, self._slices[name]]
+                if order:
+                    derived = chebyshev.chebder(block, m=order, scl=2.0 / (b - a), axis=0)
+                    block = np.concatenate([derived, np.zeros((order, block.shape[1]))])
+                blocks.append(block)
+            matrices.append(np.concatenate(blocks, axis=1))
+        return BankView(*self.T_range, self.edges, tuple(matrices), len(wanted))
+
+
+def _sample(functions: Sequence[ScalarFunction], T: Array) -> Array:
+    return np.array([[function(float(t)) for function in functions] for t in T])
+
+
+def _fit(functions: Sequence[ScalarFunction], low: float, high: float) -> tuple[Array, Array, Array]:
+    """Coefficients (degree + 1, K), largest error at points between the nodes (K,), largest value (K,)."""
+    check = low + (high - low) * np.concatenate([[1e-4], np.linspace(0.013, 0.987, 13), [1.0 - 1e-4]])
+    truth = _sample(functions, check)
+    scale = np.abs(truth).max(0)
+    best: tuple[Array, Array] | None = None
+    pending = np.ones(len(functions), bool)
+    for degree in DEGREES:
+        nodes = chebyshev.chebpts1(degree + 1)
+        values = _sample(functions, 0.5 * (high - low) * nodes + 0.5 * (high + low))
+        coefficients = chebyshev.chebvander(nodes, degree).T @ values * (2.0 / (degree + 1))
+        coefficients[0] *= 0.5
+        error = np.abs(_series(check, low, high, coefficients) - truth).max(0)
+        done = error <= FIT_TOLERANCE * scale
+        if best is None:
+            best, pending = (coefficients, error), ~done
+        else:
+            better = done | (error < 0.5 * best[1])
+            padded = np.zeros_like(coefficients)
+            padded[:len(best[0])] = best[0]
+            best = (np.where(pending & better, coefficients, padded), np.where(pending & better, error, best[1]))
+            # A function that gains nothing from twice the nodes has a kink or noise; more degrees will not help.
+            pending &= ~done & better
+        if not pending.any():
+            break
+    assert best is not None
+    return best[0], best[1], scale
