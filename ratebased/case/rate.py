@@ -1,0 +1,85 @@
+"""The case file of `ratebased rate`: mixture, profile, feeds, draws, hardware, options.
+
+    title = "..."
+    [mixture]      see `mixture.properties_from`
+    [profile]      file = "profile.csv"; optional fraction_tolerance, balance_tolerance
+    [[feed]]       stage, phase ("liquid" or "vapor"), flow_mol_s, T_K, composition = {name = fraction, ...}
+    [[draw]]       stage, phase, flow_mol_s
+    [[hardware]]   see `hardware.hardware_from`
+    [rate]         optional: point ("midpoint" or "integral"), mixing ("pools", "mixed" or "plug"),
+                   driving_force_limit, at_liquid_temperature, local_coefficients
+"""
+from __future__ import annotations
+
+from dataclasses import dataclass
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from ..efficiency import RatingOptions
+from ..equipment import Section
+from ..stage import PlugFlow, WellMixed, exponential_midpoint, integral
+from ..stage_profile import Draw, Feed, StageProfile
+from ..toml_table import TomlTable
+from .hardware import hardware_from
+from .mixture import properties_from
+
+if TYPE_CHECKING:
+    from ..properties.protocol import PropertyModel
+
+POINT_METHODS = {"midpoint": exponential_midpoint, "integral": integral}
+MIXING = {"pools": None, "mixed": WellMixed(), "plug": PlugFlow()}
+
+
+@dataclass(frozen=True)
+class RateCase:
+    """Everything `efficiency_table` needs, read from one file. files: those read, for the record of the inputs."""
+
+    title: str
+    properties: PropertyModel
+    profile: StageProfile
+    hardware: tuple[Section, ...]
+    options: RatingOptions
+    files: tuple[Path, ...]
+
+
+def read_rate_case(path: Path) -> RateCase:
+    """The case in a TOML file; paths inside it are relative to its folder. Raises `InputError`."""
+    top = TomlTable.load(path)
+    title = top.text("title", path.stem)
+    mixture = top.table("mixture")
+    names = mixture.texts("components")
+    profile_table = top.table("profile")
+    file = path.parent / profile_table.text("file")
+    tolerances = {key: profile_table.number(key, default, above=0.0)
+                  for key, default in (("fraction_tolerance", 1e-4), ("balance_tolerance", 0.02))}
+    profile_table.finish()
+    profile = StageProfile.read_csv(file, names, feeds=[_feed(t, names) for t in top.tables("feed")],
+                                    draws=[_draw(t) for t in top.tables("draw")], **tolerances)
+    sections = hardware_from(top.tables("hardware"), profile)
+    options = _options(top.table("rate", required=False))
+    top.finish()
+    properties = properties_from(mixture, profile)
+    return RateCase(title, properties, profile, sections, options, (path, file))
+
+
+def _feed(table: TomlTable, names: list[str]) -> Feed:
+    feed = Feed(table.whole("stage"), table.text("phase"), table.number("flow_mol_s", above=0.0),
+                table.composition("composition", names), table.number("T_K", above=100.0))
+    table.finish()
+    return feed
+
+
+def _draw(table: TomlTable) -> Draw:
+    draw = Draw(table.whole("stage"), table.text("phase"), table.number("flow_mol_s", above=0.0))
+    table.finish()
+    return draw
+
+
+def _options(table: TomlTable) -> RatingOptions:
+    basis = table.flag("at_liquid_temperature") if table.has("at_liquid_temperature") else None
+    options = RatingOptions(
+        point=table.choice("point", POINT_METHODS, "midpoint"), mixing=table.choice("mixing", MIXING, "pools"),
+        driving_force_limit=table.number("driving_force_limit", 0.01, above=0.0), at_liquid_temperature=basis,
+        local_coefficients=table.flag("local_coefficients", False))
+    table.finish()
+    return options

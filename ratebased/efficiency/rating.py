@@ -1,0 +1,369 @@
+"""Rating the rows of a stage profile: what each contact stage would do to the vapour that enters it.
+
+Held fixed for a tray: pressure, the entering vapour, the leaving liquid (composition and temperature), because the
+efficiency is defined by them; the leaving vapour is computed. Held fixed for a packed segment: the mean bulk states
+of its ends.
+"""
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass, field
+
+import numpy as np
+from numpy.typing import NDArray
+
+from ..equipment import Contactor, ContactState, Hardware, Hydraulics, TransferCoefficients, by_contactor, contact_state
+from ..errors import InputError
+from ..properties.protocol import Array, Mask, PropertyModel
+from ..stage import (
+    FrothPoint,
+    LiquidMixing,
+    PointMethod,
+    Pools,
+    SegmentResult,
+    TrayResult,
+    WellMixed,
+    exponential_midpoint,
+    segment_between_ends,
+    tray_from_leaving_liquid,
+    vapor_temperature,
+)
+from ..stage_profile import StageProfile
+from .definitions import (
+    NEAR_EQUILIBRIUM,
+    equilibrium_vapor,
+    murphree_vapor,
+    small_driving_force,
+    vaporization,
+)
+
+
+@dataclass(frozen=True)
+class RatingOptions:
+    """How the rows are rated.
+
+    point : the vapour through the froth, `exponential_midpoint` (the fast default) or `integral` (the yardstick).
+    mixing : of the liquid along a tray; None takes pools in series with the number the contactor's own Peclet number
+        gives, (Pe + 2)/2, and one pool where it has none.
+    driving_force_limit : a Murphree efficiency is flagged where |y* - y_in| is below it times max(y*, y_in).
+    at_liquid_temperature : basis of y*; None takes the bubble point, and the liquid's temperature with masked
+        components.
+    local_coefficients : re-evaluate the coefficients at the local state up the froth.
+    """
+
+    point: PointMethod = exponential_midpoint
+    mixing: LiquidMixing | None = None
+    driving_force_limit: float = NEAR_EQUILIBRIUM
+    at_liquid_temperature: bool | None = None
+    local_coefficients: bool = False
+
+
+@dataclass(frozen=True)
+class Entering:
+    """Streams entering contact rows: vapour from below with vapour feeds, liquid from above with liquid feeds."""
+
+    V: Array
+    y: Array
+    T_V: Array
+    L: Array
+    x: Array
+    T_L: Array
+
+
+@dataclass(frozen=True)
+class PackedRows:
+    """Transfer units of packed segments, arrays over the packed rows.
+
+    position: index among the rated rows. height m. N_OV, N_V, N_L: numbers of overall, vapour-film and liquid-film
+    transfer units of each component, signed, over the segment; H_OV, H_V, H_L: their heights, m. HETP m. stripping:
+    S_i = m_i V/L with m_i the slope of y* between the ends. undefined: where HETP has no value (the argument of its
+    logarithm is not positive, or a driving force vanishes).
+    """
+
+    position: NDArray[np.int64]
+    height: Array
+    N_OV: Array
+    N_V: Array
+    N_L: Array
+    H_OV: Array
+    H_V: Array
+    H_L: Array
+    stripping: Array
+    HETP: Array
+    undefined: Mask
+
+
+@dataclass(frozen=True)
+class RatedRows:
+    """Contact rows of a profile, rated; arrays over rows (R) and components (R, n).
+
+    number, kind; P Pa; T_L, T_V_in, T_V (of the computed vapour), T_bubble (of the leaving liquid, K; None on the
+    liquid-temperature basis); V_in, V_out, L mol/s; x, y_in, y_out, y_star, y_profile; murphree and `flagged` (a
+    driving force too small); vaporization; dependent: component with the largest y_out, the one to leave out when n-1
+    efficiencies are used; flux mol/(m2 s), transferred mol/s, energy W, area m2, basis of the area; residuals of the
+    interfaces; closure of component and energy balances; hydraulics; pools: number in series; notes: remark -> rows.
+    """
+
+    names: tuple[str, ...]
+    number: NDArray[np.int64]
+    kind: tuple[str, ...]
+    P: Array
+    T_L: Array
+    T_V_in: Array
+    T_V: Array
+    T_bubble: Array | None
+    V_in: Array
+    V_out: Array
+    L: Array
+    x: Array
+    y_in: Array
+    y_out: Array
+    y_star: Array
+    y_profile: Array
+    murphree: Array
+    flagged: Mask
+    vaporization: Array
+    dependent: NDArray[np.int64]
+    flux: Array
+    transferred: Array
+    energy: Array
+    area: Array
+    area_basis: tuple[str, ...]
+    star_basis: str
+    equilibrium_residual: Array
+    energy_residual: Array
+    component_closure: Array
+    energy_closure: Array
+    vapor_entropy_share: Array
+    hydraulics: Hydraulics
+    pools: Array
+    packed: PackedRows | None
+    notes: dict[str, Mask] = field(default_factory=dict)
+
+
+def entering_streams(profile: StageProfile, properties: PropertyModel) -> tuple[NDArray[np.int64], Entering]:
+    """Row indices of the contact stages and the streams that enter them.
+
+    Raises `InputError` where a stage has no vapour or no liquid entering (its feed is missing).
+    """
+    S, n = profile.x.shape
+    g, l = np.zeros((S, n)), np.zeros((S, n))
+    HV, HL = np.zeros(S), np.zeros(S)
+    T_V, T_L = profile.T_V.copy(), profile.T_L.copy()
+    vapor, liquid = profile.V[:, None] * profile.y, profile.L[:, None] * profile.x
+    g[:-1], l[1:] = vapor[1:], liquid[:-1]
+    T_V[:-1], T_L[1:] = profile.T_V[1:], profile.T_L[:-1]
+    HV[:-1] = (vapor * properties.vapor_enthalpy(profile.T_V, profile.P, profile.y)).sum(-1)[1:]
+    HL[1:] = (liquid * properties.liquid_enthalpy(profile.T_L, profile.P, profile.x)).sum(-1)[:-1]
+    mixed = np.zeros((2, S), bool)
+    for feed in profile.feeds:
+        row = profile.row_of(feed.stage, "feed")
+        T, P = np.asarray(feed.temperature), profile.P[row]
+        vaporous = feed.phase == "vapor"
+        flows, heats, temperatures = (g, HV, T_V) if vaporous else (l, HL, T_L)
+        enthalpy = properties.vapor_enthalpy if vaporous else properties.liquid_enthalpy
+        mixed[0 if vaporous else 1, row] = flows[row].any()
+        if not flows[row].any():
+            temperatures[row] = feed.temperature
+        flows[row] += feed.flow * feed.composition
+        heats[row] += feed.flow * (feed.composition * enthalpy(T, P, feed.composition)).sum()
+    rows = np.flatnonzero(profile.contact)
+    for flows, words in ((g, "vapour"), (l, "liquid")):
+        dry = rows[~(flows[rows].sum(-1) > 0)]
+        if dry.size:
+            raise InputError(f"{profile.source}: no {words} enters stage {profile.number[dry[0]]}: list its feed, or "
+                             "add the row it comes from")
+    hot = np.flatnonzero(mixed[0])
+    if hot.size:
+        T_V[hot] = vapor_temperature(properties, profile.P[hot], g[hot], HV[hot], T_V[hot])
+    V, L = g[rows].sum(-1), l[rows].sum(-1)
+    return rows, Entering(V, g[rows] / V[:, None], T_V[rows], L, l[rows] / L[:, None], T_L[rows])
+
+
+def rate_rows(profile: StageProfile, hardware: Hardware, properties: PropertyModel,
+              options: RatingOptions | None = None) -> RatedRows:
+    """Rate every contact row of a profile, all rows of one contactor in one vectorised pass.
+
+    Raises `InputError` (profile, hardware, properties that do not match), `ConvergenceError` (an interface without a
+    solution). Source of the method: Krishna & Standart 1976 for the films, pools in series after Gerster et al. 1958.
+    """
+    options = options or RatingOptions()
+    if tuple(properties.names) != profile.names:
+        raise InputError(f"properties: components {list(properties.names)}, but the profile has {list(profile.names)}")
+    rows, entering = entering_streams(profile, properties)
+    number = profile.number[rows]
+    kind = tuple(profile.kind[row] for row in rows)
+    packed = np.array([k == "segment" for k in kind])
+    if packed.any() and profile.height is None:
+        raise InputError(f"{profile.source}: rows of kind segment need a column height_m")
+    bulk = _bulk_states(profile, rows, entering, packed)
+    total = _Collected(rows.size, len(profile.names))
+    for contactor, index in by_contactor(hardware, number):
+        for member, is_packed in ((index[~packed[index]], False), (index[packed[index]], True)):
+            if member.size:
+                group = _Group(profile, rows, entering, bulk, member, contactor, properties)
+                total.add(member, group, group.segments() if is_packed else group.trays(options))
+    y_out, T_V, V_out = total.y, total.T_V, total.V
+    P, T_L, x = profile.P[rows], profile.T_L[rows], profile.x[rows]
+    star = equilibrium_vapor(properties, P, x, T_L, entering.y, at_liquid_temperature=options.at_liquid_temperature)
+    ordinary = properties.condensable & properties.volatile
+    K = properties.k_value(T_L, P, x, y_out)
+    murphree = murphree_vapor(entering.y, y_out, star.composition)
+    g_in = entering.V[:, None] * entering.y
+    closure = np.abs(g_in - total.transferred - V_out[:, None] * y_out).max(-1) / entering.V
+    return RatedRows(
+        names=profile.names, number=number, kind=kind, P=P, T_L=T_L, T_V_in=entering.T_V, T_V=T_V,
+        T_bubble=star.temperature if star.basis == "bubble point" else None, V_in=entering.V, V_out=V_out,
+        L=total.L, x=x, y_in=entering.y, y_out=y_out, y_star=star.composition, y_profile=profile.y[rows],
+        murphree=murphree, flagged=small_driving_force(entering.y, star.composition, options.driving_force_limit),
+        vaporization=vaporization(K, x, y_out, ordinary), dependent=y_out.argmax(-1), flux=total.flux,
+        transferred=total.transferred, energy=total.energy, area=total.area, area_basis=tuple(total.basis),
+        star_basis=star.basis, equilibrium_residual=total.equilibrium, energy_residual=total.heat,
+        component_closure=closure, energy_closure=total.energy_closure, vapor_entropy_share=total.share,
+        hydraulics=total.hydraulics(), pools=total.pools,
+        packed=_packed_rows(profile, rows, entering, bulk, packed, total, properties) if packed.any() else None,
+        notes=total.notes)
+
+
+@dataclass(frozen=True)
+class _Bulk:
+    """Bulk states the coefficients are evaluated at, over the contact rows."""
+
+    y: Array
+    T_V: Array
+    V: Array
+    x: Array
+    T_L: Array
+    L: Array
+
+
+def _bulk_states(profile: StageProfile, rows: NDArray[np.int64], entering: Entering, packed: Mask) -> _Bulk:
+    """Vapour: mean of the ends. Liquid: the leaving one on a tray (before draws), the mean of the ends in a segment."""
+    y, V = (entering.y + profile.y[rows]) / 2, (entering.V + profile.V[rows]) / 2
+    T_V = (entering.T_V + profile.T_V[rows]) / 2
+    L = profile.L[rows].copy()
+    for draw in profile.draws:
+        if draw.phase == "liquid":
+            L[rows == profile.row_of(draw.stage, "draw")] += draw.flow
+    both = packed[:, None]
+    x = np.where(both, (entering.x + profile.x[rows]) / 2, profile.x[rows])
+    T_L = np.where(packed, (entering.T_L + profile.T_L[rows]) / 2, profile.T_L[rows])
+    return _Bulk(y, T_V, V, x, T_L, np.where(packed, (entering.L + L) / 2, L))
+
+
+class _Group:
+    """Rows that share a contactor and a kind."""
+
+    def __init__(self, profile: StageProfile, rows: NDArray[np.int64], entering: Entering, bulk: _Bulk,
+                 member: NDArray[np.int64], contactor: Contactor, properties: PropertyModel) -> None:
+        self.member, self.contactor, self.properties = member, contactor, properties
+        self.P = profile.P[rows[member]]
+        self.entering = Entering(*(getattr(entering, name)[member] for name in ("V", "y", "T_V", "L", "x", "T_L")))
+        self.bulk = _Bulk(*(getattr(bulk, name)[member] for name in ("y", "T_V", "V", "x", "T_L", "L")))
+        height = None if profile.height is None else profile.height[rows[member]]
+        b = self.bulk
+        self.state: ContactState = contact_state(properties, b.V, b.L, b.T_V, b.T_L, self.P, b.y, b.x, height)
+        self.coefficients: TransferCoefficients = contactor.transfer(self.state)
+
+    def trays(self, options: RatingOptions) -> tuple[TrayResult, Array]:
+        """Leaving vapour of each tray and the number of pools."""
+        e, b, state = self.entering, self.bulk, self.state
+        point = FrothPoint(e.V, e.y, e.T_V, b.x, b.T_L, self.P, self.coefficients, state.vapor.molar_density,
+                           state.liquid.molar_density)
+        mixing, pools = options.mixing, np.ones(e.V.shape)
+        peclet: Callable[[ContactState], Array] | None = getattr(self.contactor, "peclet", None)
+        if mixing is None and peclet is not None:
+            pools = (peclet(state) + 2.0) / 2.0
+            mixing = Pools(pools)
+        elif isinstance(mixing, Pools):
+            pools = np.broadcast_to(mixing.count, pools.shape)
+        local = self.local if options.local_coefficients else None
+        return tray_from_leaving_liquid(point, b.L, self.properties, mixing or WellMixed(), method=options.point,
+                                        local=local), pools
+
+    def local(self, V: Array, y: Array, T_V: Array) -> TransferCoefficients:
+        """Coefficients at a local state of the vapour."""
+        b = self.bulk
+        return self.contactor.transfer(contact_state(self.properties, V, b.L, T_V, b.T_L, self.P, y, b.x))
+
+    def segments(self) -> tuple[SegmentResult, Array]:
+        """Vapour leaving each segment; pools mean nothing here."""
+        e, b, state = self.entering, self.bulk, self.state
+        result = segment_between_ends(e.V, e.y, e.T_V, (b.y, b.T_V), (b.x, b.T_L), self.P, self.coefficients,
+                                      state.vapor.molar_density, state.liquid.molar_density, self.properties)
+        return result, np.ones(e.V.shape)
+
+
+class _Collected:
+    """Arrays over all rows, filled group by group."""
+
+    def __init__(self, R: int, n: int) -> None:
+        self.y, self.transferred, self.flux = (np.zeros((R, n)) for _ in range(3))
+        self.y_I, self.x_I = np.zeros((R, n)), np.zeros((R, n))
+        self.V, self.T_V, self.L, self.energy, self.area, self.pools = (np.zeros(R) for _ in range(6))
+        self.equilibrium, self.heat, self.energy_closure, self.share = (np.zeros(R) for _ in range(4))
+        self.basis = [""] * R
+        self.limits: dict[str, Array] = {}
+        self.notes: dict[str, Mask] = {}
+
+    def add(self, member: NDArray[np.int64], group: _Group, rated: tuple[TrayResult | SegmentResult, Array]) -> None:
+        result, pools = rated
+        coefficients = group.coefficients
+        self.y[member], self.V[member], self.T_V[member] = result.y, result.V, result.T_V
+        self.transferred[member], self.energy[member] = result.transferred, result.energy
+        self.area[member], self.pools[member] = coefficients.area, pools
+        self.flux[member] = result.transferred / coefficients.area[..., None]
+        self.L[member] = group.bulk.L
+        interface = result.point.middle if isinstance(result, TrayResult) else result.interface
+        worst = result.point if isinstance(result, TrayResult) else result.interface
+        self.equilibrium[member], self.heat[member] = worst.equilibrium_residual, worst.energy_residual
+        if isinstance(result, TrayResult):
+            self.energy_closure[member] = result.point.energy_closure
+        self.share[member] = interface.vapor_entropy_share
+        self.y_I[member], self.x_I[member] = interface.y_I, interface.x_I
+        for row in member:
+            self.basis[row] = coefficients.basis
+        hydraulics = group.contactor.hydraulics(group.state)
+        for name in ("flooding", "pressure_drop", "liquid_holdup", "weeping", "downcomer", "entrainment"):
+            value = getattr(hydraulics, name)
+            if value is not None:
+                self.limits.setdefault(name, np.full(self.V.size, np.nan))[member] = value
+        for note, where in coefficients.notes.items():
+            self.notes.setdefault(note, np.zeros(self.V.size, bool))[member] = where
+
+    def hydraulics(self) -> Hydraulics:
+        """Limits of all rows; a row whose contactor has no method for one holds NaN there (an empty cell)."""
+        return Hydraulics(**{"flooding": None, **self.limits})
+
+
+def _packed_rows(profile: StageProfile, rows: NDArray[np.int64], entering: Entering, bulk: _Bulk, packed: Mask,
+                 total: _Collected, properties: PropertyModel) -> PackedRows:
+    """Transfer units and HETP of each component from what the segment does between its ends."""
+    k = np.flatnonzero(packed)
+    assert profile.height is not None
+    Z = profile.height[rows[k]]
+    P, y_in, y_out = profile.P[rows[k]], entering.y[k], total.y[k]
+    y_mean, x_mean = bulk.y[k], bulk.x[k]
+
+    def star(x: Array, T: Array) -> Array:
+        return equilibrium_vapor(properties, P, x, T, y_in).composition
+
+    y_star_mean = star(x_mean, bulk.T_L[k])
+    x_out, T_out = profile.x[rows[k]], profile.T_L[rows[k]]
+    y_star_out, y_star_in = star(x_out, T_out), star(entering.x[k], entering.T_L[k])
+    with np.errstate(divide="ignore", invalid="ignore"):
+        dy = y_out - y_in
+        m = (y_star_in - y_star_out) / (entering.x[k] - x_out)
+        S = m * (bulk.V[k] / bulk.L[k])[:, None]
+        N_OV = dy / (y_star_mean - y_mean)
+        N_V = dy / (total.y_I[k] - y_mean)
+        N_L = total.transferred[k] / bulk.L[k][:, None] / (total.x_I[k] - x_mean)
+        E = dy / (y_star_out - y_in)
+        argument = 1.0 + E * (S - 1.0)
+        near = np.abs(S - 1.0) < 1e-6
+        N_eq = np.where(near, E, np.log(np.where(argument > 0, argument, 1.0)) / np.log(np.where(S > 0, S, 1.0)))
+        HETP = Z[:, None] / N_eq
+        heights = [Z[:, None] / N for N in (N_OV, N_V, N_L)]
+    undefined = ~((argument > 0) & (S > 0) & np.isfinite(HETP)) | small_driving_force(y_in, y_star_out)
+    clean = [np.where(np.isfinite(value), value, 0.0) for value in (N_OV, N_V, N_L, *heights, S)]
+    return PackedRows(k, Z, *clean, np.where(undefined, 0.0, HETP), undefined)

@@ -1,0 +1,124 @@
+"""Mixing of the liquid along its path over a tray, from what the froth does at the outlet.
+
+With w = (l_1..l_n, T_L) the liquid and R(w) what the whole tray would give it at the state w, pools in series obey
+w_(k-1) = w_k - R(w_k)/p. Linearised at the leaving liquid, R_k = R_p + [B](w_k - w_p), the mean over the tray is
+f(-[B]) R_p with f(z) = ((1 + z/p)^p - 1)/z; plug flow and eddy diffusion differ in f alone. With constant flows and the
+liquid on its bubble line this is [E_MV] = [E] f([S][E]) of the textbooks (Gerster et al., AIChE Bubble-Tray Design
+Manual 1958; matrix form, Krishna, Martinez, Sreedhar & Standart, Trans. IChemE 55 (1977) 178); here flows and
+temperatures may change and components may be masked.
+"""
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Protocol
+
+import numpy as np
+from numpy.typing import NDArray
+
+from ..equipment.protocol import Array
+
+Complex = NDArray[np.complex128]
+
+SMALL = 1e-3
+"""Below this |z| the factors are taken from their series (three terms: relative error below 1e-10)."""
+
+
+class LiquidMixing(Protocol):
+    """How the liquid is mixed along its path: `factor` is f(z), `factor_slope` (f(z) - 1)/z."""
+
+    def factor(self, z: Complex) -> Complex: ...
+
+    def factor_slope(self, z: Complex) -> Complex: ...
+
+
+@dataclass(frozen=True)
+class WellMixed:
+    """One pool: f = 1."""
+
+    def factor(self, z: Complex) -> Complex:
+        return np.ones_like(z)
+
+    def factor_slope(self, z: Complex) -> Complex:
+        return np.zeros_like(z)
+
+
+@dataclass(frozen=True)
+class Pools:
+    """`count` equal pools in series, a real number of one or more, (...): f = ((1 + z/p)^p - 1)/z."""
+
+    count: Array
+
+    def factor(self, z: Complex) -> Complex:
+        p = np.asarray(self.count, float)[..., None]
+        series = 1.0 + z * (1.0 - 1.0 / p) / 2.0 * (1.0 + z * (1.0 - 2.0 / p) / 3.0)
+        return _quotient(z, (1.0 + z / p) ** p - 1.0, series)
+
+    def factor_slope(self, z: Complex) -> Complex:
+        p = np.asarray(self.count, float)[..., None]
+        q = (1.0 - 1.0 / p) / 2.0
+        return _quotient(z, self.factor(z) - 1.0,
+                         q * (1.0 + z * (1.0 - 2.0 / p) / 3.0 * (1.0 + z * (1.0 - 3.0 / p) / 4.0)))
+
+
+@dataclass(frozen=True)
+class PlugFlow:
+    """No mixing along the path, vapour mixed between trays (case 1 of Lewis 1936): f = (e^z - 1)/z."""
+
+    def factor(self, z: Complex) -> Complex:
+        return _quotient(z, np.expm1(z), 1.0 + z / 2.0 * (1.0 + z / 3.0))
+
+    def factor_slope(self, z: Complex) -> Complex:
+        return _quotient(z, self.factor(z) - 1.0, 0.5 * (1.0 + z / 3.0 * (1.0 + z / 4.0)))
+
+
+@dataclass(frozen=True)
+class EddyDiffusion:
+    """Eddy diffusion with the Peclet number of the liquid path, (...), positive (Gerster et al. 1958)."""
+
+    peclet: Array
+
+    def factor(self, z: Complex) -> Complex:
+        Pe = np.asarray(self.peclet, float)[..., None]
+        small = np.abs(z) < SMALL
+        b = 0.5 * Pe * (np.sqrt(1.0 + 4.0 * np.where(small, 1.0, z) / Pe) - 1.0)
+        both = b + Pe
+        f = -np.expm1(-both) / (both * (1.0 + both / b)) + np.expm1(b) / (b * (1.0 + b / both))
+        return np.where(small, 1.0 + z * self._first(Pe), f)
+
+    def factor_slope(self, z: Complex) -> Complex:
+        Pe = np.asarray(self.peclet, float)[..., None]
+        return _quotient(z, self.factor(z) - 1.0, self._first(Pe) + 0.0 * z)
+
+    @staticmethod
+    def _first(Pe: Array) -> Array:
+        """f'(0) = 1/Pe - (1 - exp(-Pe))/Pe^2: a half for no mixing, nil for a well-mixed liquid."""
+        small = Pe < 1e-2
+        safe = np.where(small, 1.0, Pe)
+        return np.where(small, 0.5 - Pe / 6.0 + Pe**2 / 24.0, 1.0 / safe + np.expm1(-safe) / safe**2)
+
+
+def mixed_tray(mixing: LiquidMixing, transfer: Array, slope: Array) -> tuple[Array, Array]:
+    """Mean transfer over a tray and mean departure of its liquid from the leaving one.
+
+    transfer: R_p at the leaving liquid, (..., m). slope: [B] = dR/dw there, (..., m, m). Returns f(-[B]) R_p and the
+    mean of w - w_p, both (..., m).
+    """
+    w, U = np.linalg.eig(-slope)
+    poor = np.linalg.cond(U) > 1e8
+    if poor.any():
+        # Nearly defective: a relative change of 1e-8 moves the eigenvalues apart and the answer by about as much.
+        m = slope.shape[-1]
+        shift = 1e-8 * np.abs(slope).max((-2, -1), keepdims=True) * np.diag(np.arange(1.0, m + 1.0))
+        again, vectors = np.linalg.eig(-slope + shift)
+        w, U = np.where(poor[..., None], again, w), np.where(poor[..., None, None], vectors, U)
+    w, U = w.astype(complex), U.astype(complex)
+    r = np.linalg.solve(U, transfer.astype(complex)[..., None])[..., 0]
+    mean = np.einsum("...ij,...j->...i", U, mixing.factor(w) * r).real
+    # mean(w - w_p) = (f(-B) - I) B^-1 R_p, and (f(z) - 1)/z at z = -B carries the opposite sign
+    departure = -np.einsum("...ij,...j->...i", U, mixing.factor_slope(w) * r).real
+    return mean, departure
+
+
+def _quotient(z: Complex, numerator: Complex, series: Complex) -> Complex:
+    small = np.abs(z) < SMALL
+    return np.where(small, series, numerator / np.where(small, 1.0, z))
