@@ -58,9 +58,9 @@ def reduced(A: Array) -> Array:
     return A[..., :-1, :-1] - A[..., :-1, -1:]
 
 
-def _solve(matrix: Array, right: Array) -> Array:
-    solution: Array = np.linalg.solve(matrix, right)
-    return solution
+def solve(matrix: Array, right: Array) -> Array:
+    """np.linalg.solve of float64."""
+    return np.asarray(np.linalg.solve(matrix, right), dtype=np.float64)
 
 
 # --- matrices of the theory -------------------------------------------------------------------------------------------
@@ -112,7 +112,7 @@ def fick_matrix(x: ArrayLike, D: ArrayLike, gamma: ArrayLike | None = None) -> A
     """
     x = mole_fractions("x", x)
     B = resistance_matrix(x, D)
-    return _solve(B, _gamma(gamma, x.shape[-1]))
+    return solve(B, _gamma(gamma, x.shape[-1]))
 
 
 def _gamma(gamma: ArrayLike | None, n: int) -> Array:
@@ -156,7 +156,7 @@ def onsager_matrix(x: ArrayLike, D: ArrayLike, c_t: ArrayLike) -> Array:
     """
     x = mole_fractions("x", x)
     c_t = positive_array("c_t", c_t)
-    L = _extend(_solve(resistance_matrix(x, D), _mixing_block(x))) * c_t[..., None, None]
+    L = _extend(solve(resistance_matrix(x, D), _mixing_block(x))) * c_t[..., None, None]
     return 0.5 * (L + np.swapaxes(L, -1, -2))             # the two differ by rounding
 
 
@@ -188,7 +188,7 @@ def diffusivities_from_onsager(x: ArrayLike, L: ArrayLike, c_t: ArrayLike) -> Ar
     x = _interior(x)
     L = _checked_onsager(L, x.shape[-1])
     c_t = positive_array("c_t", c_t)
-    B = _solve(np.swapaxes(L[..., :-1, :-1], -1, -2), np.swapaxes(_mixing_block(x), -1, -2))
+    B = solve(np.swapaxes(L[..., :-1, :-1], -1, -2), np.swapaxes(_mixing_block(x), -1, -2))
     return _pairs(x, np.swapaxes(B, -1, -2) * c_t[..., None, None])
 
 
@@ -203,7 +203,7 @@ def diffusivities_from_fick(x: ArrayLike, fick: ArrayLike, gamma: ArrayLike | No
     fick = finite_array("fick", fick)
     if fick.shape[-2:] != (n - 1, n - 1):
         raise InputError(f"fick: expected shape (..., {n - 1}, {n - 1}), got {fick.shape}")
-    B = _solve(np.swapaxes(fick, -1, -2), np.swapaxes(_gamma(gamma, n), -1, -2))
+    B = solve(np.swapaxes(fick, -1, -2), np.swapaxes(_gamma(gamma, n), -1, -2))
     return _pairs(x, np.swapaxes(B, -1, -2))
 
 

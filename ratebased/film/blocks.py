@@ -15,20 +15,17 @@ The functions here are kernels: they trust their input. Shapes: N, x (..., n); K
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
 from ..maxwell_stefan import composition_matrix, film_matrix, reduced, resistances
+from .spectral import coth_columns, coth_derivative, coth_differences, coth_function, coth_matrix, eigenvectors
 
-__all__ = ["FilmBlocks", "composition_matrix", "coth_blocks", "film_matrix", "reduced", "resistances", "shoot"]
+__all__ = ["FilmBlocks", "composition_matrix", "coth_blocks", "film_matrix", "linearized_blocks", "reduced",
+           "resistances", "shoot"]
 
 Array = NDArray[np.float64]
-Spectrum = NDArray[Any]  # real or complex, as the eigenvalues turn out
-
-ILL_CONDITIONED = 1e5
-"""Condition number of the eigenvectors of Z above which its functions are taken by doubling instead."""
 
 
 def _taylor_order(norm: float) -> int:
@@ -91,80 +88,6 @@ class FilmBlocks:
     size: Array
 
 
-def coth_factor_values(z: Spectrum) -> tuple[Spectrum, Spectrum]:
-    """c(z) = (z/2) coth(z/2) and dc/dz, free of overflow; real or complex."""
-    flip = np.where(z.real < 0, -1.0, 1.0)
-    z = z * flip
-    small = np.abs(z) < 0.05
-    some = bool(small.any())
-    safe = np.where(small, 1.0, z) if some else z
-    e = np.exp(-safe)
-    d = 1.0 - e
-    slope = 0.5 * (1.0 + e) / d
-    value = safe * slope
-    slope = slope - safe * e / (d * d)
-    if some:
-        z2 = z * z
-        value = np.where(small, 1.0 + z2 / 12.0 * (1.0 - z2 / 60.0 * (1.0 - z2 / 42.0)), value)
-        slope = np.where(small, z / 6.0 * (1.0 - z2 / 30.0 * (1.0 - z2 / 28.0)), slope)
-    return value, slope * flip
-
-
-def coth_factor_matrix(Z: Array) -> Array:
-    """C(Z) = (Z/2) coth(Z/2) of any square matrices, defective ones included.
-
-    Continued fraction of the scaled matrix, then C(2Z) = C(Z) + (Z^2/4) C(Z)^-1: no exponential, no overflow.
-    """
-    norm = float(np.abs(Z).sum(-2).max(initial=0.0))
-    doublings = max(0, int(np.ceil(np.log2(max(norm, 1e-300)))))
-    W: Array = Z @ Z * 0.25 ** (doublings + 1)
-    one = np.eye(Z.shape[-1])
-    h_last: Spectrum = one
-    k_last: Spectrum = np.zeros_like(one)
-    h, k = h_last, h_last
-    for b in (3.0, 5.0, 7.0, 9.0, 11.0, 13.0):
-        h_last, h = h, b * h + W @ h_last
-        k_last, k = k, b * k + W @ k_last
-    C: Array = np.linalg.solve(k, h)
-    for _ in range(doublings):
-        tanh_part: Array = np.linalg.solve(C, W)          # W and C commute
-        C += tanh_part
-        W *= 4.0
-    return C
-
-
-def coth_factor_derivative(Z: Array, E: Array) -> Array:
-    """Derivative of C at Z along E, from C([[Z, E], [0, Z]]); same shapes as Z."""
-    m = Z.shape[-1]
-    Z, E = np.broadcast_arrays(Z, E)
-    double = np.zeros((*Z.shape[:-2], 2 * m, 2 * m))
-    scale = np.maximum(np.abs(E).sum(-2).max(-1), 1e-300)[..., None, None]
-    double[..., :m, :m] = double[..., m:, m:] = Z
-    double[..., :m, m:] = E / scale
-    derivative: Array = coth_factor_matrix(double)[..., :m, m:] * scale
-    return derivative
-
-
-def _eigenvectors(Z: Array) -> tuple[Spectrum, Spectrum, Spectrum, NDArray[np.bool_]]:
-    """Eigenvalues, eigenvectors, their inverse, and a mask of the matrices too near a defective one for them."""
-    if Z.shape[-1] == 1:
-        one = np.ones_like(Z)
-        return Z[..., 0], one, one, np.zeros(Z.shape[:-2], dtype=bool)
-    w, V = np.linalg.eig(Z)
-    try:
-        inverse = np.linalg.inv(V)
-    except np.linalg.LinAlgError:                         # one exactly singular V stops the whole batch
-        singular = ~(np.linalg.cond(V) < 1e14)
-        V = np.where(singular[..., None, None], np.eye(Z.shape[-1]), V)
-        inverse = np.linalg.inv(V)
-        bad = singular
-    else:
-        bad = np.zeros(Z.shape[:-2], dtype=bool)
-    # the columns of V have unit length: |V|_F = sqrt(m)
-    large = np.abs(inverse).max(axis=(-1, -2)) > ILL_CONDITIONED
-    return w, V, inverse, bad | large
-
-
 def _coth_terms(Z: Array, D: Array, K: Array, right: Array | None, slopes: Array | None
                 ) -> tuple[Array, Array, Array | None]:
     """C(Z), the columns dC[right dPhi/dN_l] D, (..., m, n), and the columns dC[slopes_j] D, (..., m, j).
@@ -172,13 +95,9 @@ def _coth_terms(Z: Array, D: Array, K: Array, right: Array | None, slopes: Array
     `right` is Gamma^-1 (None: identity).
     """
     m = Z.shape[-1]
-    w, V, inverse, bad = _eigenvectors(Z)
-    c, dc = coth_factor_values(w)
+    w, V, inverse, bad = eigenvectors(Z)
+    c, c1 = coth_differences(w)
     y = (inverse @ D[..., None])[..., 0]
-    gap = w[..., :, None] - w[..., None, :]
-    near = np.abs(gap) <= 1e-5 * (1.0 + np.abs(w[..., :, None]))
-    c1 = np.where(near, 0.5 * (dc[..., :, None] + dc[..., None, :]),
-                  (c[..., :, None] - c[..., None, :]) / np.where(near, 1.0, gap))
     C = ((V * c[..., None, :]) @ inverse).real
     weight = c1 * y[..., None, :]
     Q = weight @ np.swapaxes(V, -1, -2)                   # (m, m); its last column closes the sums of V
@@ -205,16 +124,16 @@ def _coth_terms_doubling(Z: Array, D: Array, K: Array, right: Array | None, slop
     C, dN = np.array(np.broadcast_to(C, (*batch, m, m))), np.array(np.broadcast_to(dN, (*batch, m, n)))
     Z, D = np.broadcast_to(Z, (*batch, m, m))[bad], np.broadcast_to(D, (*batch, m))[bad]
     K = np.broadcast_to(K, (*batch, n, n))[bad]
-    C[bad] = coth_factor_matrix(Z)
+    C[bad] = coth_matrix(Z)
     directions = reduced(film_matrix(np.eye(n), K[..., None, :, :]))       # dPhi/dN_l, (films, n, m, m)
     if right is not None:
         directions = np.broadcast_to(right, (*batch, m, m))[bad][..., None, :, :] @ directions
-    dC = coth_factor_derivative(Z[..., None, :, :], directions)
+    dC = coth_derivative(Z[..., None, :, :], directions)
     dN[bad] = np.swapaxes((dC @ D[..., None, :, None])[..., 0], -1, -2)
     if slopes is not None and ds is not None:
         ds = np.array(ds)
         along = np.broadcast_to(slopes, (*batch, m, m, m))[bad]
-        dC = coth_factor_derivative(Z[..., None, :, :], along)
+        dC = coth_derivative(Z[..., None, :, :], along)
         ds[bad] = np.swapaxes((dC @ D[..., None, :, None])[..., 0], -1, -2)
     return C, dN, ds
 
@@ -261,3 +180,39 @@ def coth_blocks(N: Array, K: Array, x0: Array, xd: Array, gamma: Array | None = 
     size = ((np.abs(M) @ np.abs(N)[..., None])[..., 0] + np.abs(GCD)).max(-1)
     common = -0.5 * Phi if drift is None else -0.5 * Phi - drift
     return FilmBlocks(MN - GCD, M - dN, common - GC, common + GC, size)
+
+
+def linearized_blocks(N: Array, K: Array, x0: Array, xd: Array, gamma: Array | None = None,
+                      gamma_slope: Array | None = None) -> FilmBlocks:
+    """The same residual and Jacobian for linearised theory, where Z = N_t Gamma^-1 M(x_m) reduced.
+
+    Toor (1964) and Stewart and Prober (1964): the Fick matrix is frozen at the mean composition, so the rate factor is
+    the total flux times the inverse of the low-flux coefficients. Arguments and result as in `coth_blocks`.
+    """
+    n = N.shape[-1]
+    D, x_mean, N_t = x0 - xd, 0.5 * (x0 + xd), N.sum(-1)[..., None, None]
+    M = film_matrix(x_mean, K)
+    R, M = reduced(M), M[..., :-1, :]
+    right = np.eye(n - 1) if gamma is None else np.asarray(np.linalg.inv(gamma), dtype=np.float64)
+    Gamma = np.eye(n - 1) if gamma is None else gamma
+    Z = N_t * (right @ R)
+    tangents = np.eye(n)[:-1] - np.eye(n)[-1]
+    along_x = 0.5 * reduced(film_matrix(tangents, K[..., None, :, :]))     # dR/dx_j for one face moved
+    moved = right[..., None, :, :] @ (N_t[..., None] * along_x)
+    half = 0.5 * (np.zeros((n - 1,) * 3) if gamma_slope is None else gamma_slope)
+    moved = moved - (right[..., None, :, :] @ half) @ Z[..., None, :, :]
+    per_N_t = np.broadcast_to((right @ R)[..., None, :, :], (*moved.shape[:-3], 1, n - 1, n - 1))
+    batch = np.broadcast_shapes(Z.shape[:-2], moved.shape[:-3])
+    columns = coth_columns(np.broadcast_to(Z, (*batch, n - 1, n - 1)), np.concatenate((per_N_t, moved), axis=-3),
+                           np.broadcast_to(D[..., :-1], (*batch, n - 1)))
+    C = coth_function(Z)
+    columns = Gamma @ columns
+    GC = Gamma @ C
+    GCD = (GC @ D[..., :-1, None])[..., 0]
+    CD = (C @ D[..., :-1, None])[..., None, :, :]
+    drift = columns[..., 1:] + np.swapaxes((half @ CD)[..., 0], -1, -2)
+    direct = np.swapaxes((film_matrix(0.5 * tangents, K[..., None, :, :])[..., :-1, :] @ N[..., None, :, None])[..., 0],
+                         -1, -2)                          # dM N
+    size = ((np.abs(M) @ np.abs(N)[..., None])[..., 0] + np.abs(GCD)).max(-1)
+    common = direct - drift
+    return FilmBlocks((M @ N[..., None])[..., 0] - GCD, M - columns[..., :1], common - GC, common + GC, size)

@@ -1,0 +1,247 @@
+"""The film solved the readable way: Newton on the coth form, restarted from zero flux, then by continuation.
+
+General (ideal films, films with a constant [Gamma], any flux); `fast` solves the bulk of a large ideal batch and is
+tested against this path.
+"""
+from __future__ import annotations
+
+import numpy as np
+from numpy.typing import NDArray
+
+from ..maxwell_stefan import film_matrix, reduced, solve
+from .blocks import coth_blocks
+from .problem import Array, Codes, FilmProblem, FilmStatus, Mask
+
+STEP_TOLERANCE = 1e-12
+"""Newton stops when the step is below this fraction of max|N|, or when rounding keeps it from getting there."""
+
+STAGNATION = 1e-8
+"""The largest step at which a Newton iteration that no longer shrinks it may stop."""
+
+MAX_STEPS = 40
+
+UNPHYSICAL_ROTATION = np.pi
+"""A root whose rate factor has an eigenvalue with a larger imaginary part has a profile that leaves the simplex.
+
+Measured on random films: physical roots never above 1.5, unphysical ones never below 5.
+"""
+
+Counts = NDArray[np.int64]
+
+
+def solve_singular(matrix: Array, right: Array) -> Array:
+    """Batched solve of (M, n, n) and (M, n); an exactly singular matrix is perturbed, not fatal to the batch."""
+    try:
+        return solve(matrix, right[..., None])[..., 0]
+    except np.linalg.LinAlgError:
+        shift = 1e-13 * np.abs(matrix).max((-1, -2), keepdims=True) + 1e-300
+        return solve(matrix + shift * np.eye(matrix.shape[-1]), right[..., None])[..., 0]
+
+
+def low_flux_start(problem: FilmProblem) -> Array:
+    """N from one linear solve, [M](x^) N = Gamma (x0 - xd), nu . N = s.
+
+    Exact for binaries and for equal diffusivities. x^ lies between the faces where nu . x is its logarithmic mean
+    (arithmetic for equimolar transfer); with a total flux given, where the flux factor of the mean resistance puts it.
+    """
+    x0, xd, nu, s = problem.x0, problem.xd, problem.nu, problem.s
+    D = x0 - xd
+    share = mean_weight((nu * x0).sum(-1), (nu * xd).sum(-1), s, nu, mean_resistance(x0 + xd, problem.K))
+    system = film_matrix(xd + share[:, None] * D, problem.K)
+    right = D.copy()
+    if problem.gamma is not None:
+        right[:, :-1] = (problem.gamma @ D[:, :-1, None])[..., 0]
+        right[:, -1] = -right[:, :-1].sum(-1)
+    films = np.arange(len(problem))
+    row = (x0 + xd).argmax(-1)
+    system[films, row] = nu
+    right[films, row] = s
+    with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
+        return solve_singular(system, right)
+
+
+def mean_resistance(total: Array, K: Array) -> Array:
+    """Mean of K_ij weighted with S_i S_j, S = x0 + xd, (M): the resistance of the pseudo-binary, m2 s/mol."""
+    weight = 4.0 - (total * total).sum(-1)
+    mean: Array = ((K @ total[..., None])[..., 0] * total).sum(-1) / np.where(weight > 1e-12, weight, 1.0)
+    return np.where(weight > 1e-12, mean, K.mean((-1, -2)))
+
+
+def mean_weight(a: Array, b: Array, s: Array, nu: Array, resistance: Array) -> Array:
+    """Share t of face 0 in x^ = t x0 + (1-t) xd, with a = nu . x0, b = nu . xd (M)."""
+    with np.errstate(all="ignore"):
+        ratio = np.log(b / a)
+        closed = np.where(np.abs(ratio) < 1e-3, 0.5 + ratio / 12.0, b / (b - a) - 1.0 / ratio)
+        factor = resistance * s / nu.mean(-1)
+        given = np.where(np.abs(factor) < 1e-3, 0.5 + factor / 12.0, 1.0 + 1.0 / np.expm1(factor) - 1.0 / factor)
+        share = np.where(s == 0, closed, given)
+    return np.where(np.isfinite(share), np.clip(share, 0.0, 1.0), 0.5)
+
+
+def pivoted(problem: FilmProblem) -> tuple[FilmProblem, NDArray[np.intp]]:
+    """The films with their components reordered, and the order: the most abundant last, a trace eliminates badly.
+
+    Not a stagnant component that changes tenfold across the film: its own relation is kept as a row.
+    """
+    x0, xd = problem.x0, problem.xd
+    films = np.arange(len(problem))
+    weight = x0 + xd
+    k, alone = stagnant_component(problem)
+    varies = alone & (np.minimum(x0[films, k], xd[films, k]) < 0.1 * np.maximum(x0[films, k], xd[films, k]))
+    weight[films[varies], k[varies]] = -1.0
+    last = weight.argmax(-1)
+    order = np.argsort(np.arange(problem.n) == last[:, None], axis=1, kind="stable")
+
+    def moved(array: Array) -> Array:
+        return np.take_along_axis(array, order, axis=1)
+
+    kappa = problem.kappa[films[:, None, None], order[:, :, None], order[:, None, :]]
+    gamma = problem.gamma
+    if gamma is not None:
+        # deviations of the new first n-1 components in terms of the old ones
+        n = problem.n
+        every = np.concatenate((np.eye(n - 1), -np.ones((1, n - 1))))
+        change = every[order[:, :-1]]
+        gamma = change @ gamma @ np.linalg.inv(change)
+    return FilmProblem(moved(x0), moved(xd), kappa, problem.c_t, moved(problem.nu), problem.s, gamma,
+                       problem.shape), order
+
+
+def stagnant_component(problem: FilmProblem) -> tuple[NDArray[np.intp], Mask]:
+    """The component with the largest |nu|, and where it is the only one and does not move."""
+    k = np.abs(problem.nu).argmax(-1)
+    return k, (np.count_nonzero(problem.nu, axis=-1) == 1) & (problem.s == 0)
+
+
+def newton_system(problem: FilmProblem, N: Array) -> tuple[Array, Array]:
+    """Jacobian (M, n, n) and minus the residual (M, n): the coth form with nu . N = s as its last row.
+
+    In an ideal film with a stagnant component k the row of k is replaced by its integral, sum_j K_kj N_j =
+    ln(xd_k/x0_k): linear, exact, and good to all digits for a trace.
+    """
+    n = problem.n
+    blocks = coth_blocks(N, problem.K, problem.x0, problem.xd, problem.gamma)
+    J = np.empty((len(problem), n, n))
+    right = np.empty((len(problem), n))
+    J[:, :-1], J[:, -1] = blocks.dN, problem.nu
+    right[:, :-1] = -blocks.residual
+    right[:, -1] = problem.s - (problem.nu * N).sum(-1)
+    if problem.gamma is None:
+        k, alone = stagnant_component(problem)
+        films = np.flatnonzero(alone & (k < n - 1))
+        if len(films):
+            k = k[films]
+            row = problem.K[films, k]
+            J[films, k] = row
+            right[films, k] = np.log(problem.xd[films, k] / problem.x0[films, k]) - (row * N[films]).sum(-1)
+    return J, right
+
+
+def newton(problem: FilmProblem, N: Array) -> tuple[Array, Mask, Counts]:
+    """Newton from N (M, n), components in the order given: fluxes, where it converged, steps."""
+    N = np.where(np.isfinite(N), N, 0.0)
+    done = np.zeros(len(problem), dtype=bool)
+    steps = np.zeros(len(problem), dtype=np.int64)
+    active = np.arange(len(problem))
+    last = np.full(len(problem), np.inf)
+    rest = problem
+    for count in range(1, MAX_STEPS + 1):
+        if not len(active):
+            break
+        with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
+            J, right = newton_system(rest, N[active])
+            step = solve_singular(J, right)
+            moved = N[active] + step
+            size = np.abs(moved).max(-1)
+            error = np.abs(step).max(-1) / np.where(size > 0, size, 1.0)
+        sound = np.isfinite(error) & (size < 1e100)
+        N[active] = np.where(sound[:, None], moved, 0.0)
+        steps[active] += 1
+        previous = last[active]
+        stalled = (count > 3) & (error <= STAGNATION) & (error > 0.25 * previous)
+        finished = sound & ((error <= STEP_TOLERANCE) | stalled)
+        last[active] = error
+        done[active[finished]] = True
+        keep = sound & ~finished
+        if not keep.all():
+            active = active[keep]
+            rest = rest.take(keep)
+    return N, done, steps
+
+
+def physical(problem: FilmProblem, N: Array) -> Mask:
+    """Where the profile does not rotate out of the simplex."""
+    Z = reduced(film_matrix(N, problem.K))
+    if problem.gamma is not None:
+        Z = solve(problem.gamma, Z)
+    if problem.n == 2:
+        return np.ones(len(problem), dtype=bool)
+    return np.asarray(np.abs(np.linalg.eigvals(Z).imag).max(-1) <= UNPHYSICAL_ROTATION)
+
+
+def other_branch(problem: FilmProblem, N: Array) -> Mask:
+    """Where the determinant of the film equations has another sign at N than at zero flux: a fold lies between."""
+    def sign(fluxes: Array) -> Array:
+        J = np.concatenate((coth_blocks(fluxes, problem.K, problem.x0, problem.xd, problem.gamma).dN,
+                            problem.nu[:, None, :]), axis=1)
+        return np.asarray(np.linalg.slogdet(J)[0], dtype=np.float64)
+
+    return np.asarray(sign(N) * sign(np.zeros_like(N)) < 0)
+
+
+def continuation(problem: FilmProblem) -> tuple[Array, Mask, Counts]:
+    """Widen the film from equal faces, x = x_m + t (x - x_m), t = 0..1, with Newton at every step."""
+    M = len(problem)
+    mean = 0.5 * (problem.x0 + problem.xd)
+    half = 0.5 * (problem.x0 - problem.xd)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        N = mean * (problem.s / (problem.nu * mean).sum(-1))[:, None]
+    N = np.where(np.isfinite(N), N, 0.0)
+    t, step = np.zeros(M), np.full(M, 0.25)
+    steps = np.zeros(M, dtype=np.int64)
+    for _ in range(200):
+        active = np.flatnonzero((t < 1.0) & (step > 1e-4))
+        if not len(active):
+            break
+        ahead = np.minimum(t[active] + step[active], 1.0)
+        part = problem.take(active)
+        part = FilmProblem(mean[active] + ahead[:, None] * half[active], mean[active] - ahead[:, None] * half[active],
+                           part.kappa, part.c_t, part.nu, part.s, part.gamma, part.shape)
+        found, ok, used = newton(part, N[active])
+        steps[active] += used
+        ok &= physical(part, found)
+        ok &= ~other_branch(part, found)
+        N[active[ok]] = found[ok]
+        t[active[ok]] = ahead[ok]
+        step[active] *= np.where(ok, 2.0, 0.25)
+    return N, t >= 1.0, steps
+
+
+def solve_exact(problem: FilmProblem, start: Array | None = None) -> tuple[Array, Codes, Counts]:
+    """Fluxes (M, n), `FilmStatus` codes and iterations of films that passed `existence`. NaN where none was found."""
+    inner, order = pivoted(problem)
+    first = low_flux_start(problem) if start is None else start
+    N, ok, steps = newton(inner, np.take_along_axis(first, order, axis=1))
+    steps += 1
+    ok &= physical(inner, N)
+    for attempt in (lambda part: newton(part, np.zeros_like(part.x0)), continuation):
+        left = np.flatnonzero(~ok)
+        if not len(left):
+            break
+        part = inner.take(left)
+        N[left], found, used = attempt(part)
+        ok[left] = found & physical(part, N[left])
+        steps[left] += used
+    status = np.where(ok, FilmStatus.CONVERGED, FilmStatus.NOT_CONVERGED).astype(np.int8)
+    suspect = np.flatnonzero(ok)
+    suspect = suspect[other_branch(inner.take(suspect), N[suspect])]
+    if len(suspect):
+        status[suspect] = FilmStatus.OTHER_BRANCH
+        again, found, used = continuation(inner.take(suspect))
+        steps[suspect] += used
+        N[suspect[found]] = again[found]
+        status[suspect[found]] = FilmStatus.CONVERGED
+    N[~ok] = np.nan
+    fluxes = np.empty_like(N)
+    np.put_along_axis(fluxes, order, N, axis=1)
+    return fluxes, status, steps

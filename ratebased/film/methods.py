@@ -1,0 +1,166 @@
+"""The exact film as a function: `krishna_standart`, and how every method of the package reports."""
+from __future__ import annotations
+
+import warnings
+from collections.abc import Callable
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+from ..arguments import finite_array, mole_fractions
+from ..bootstrap import Bootstrap
+from ..errors import (
+    ApproximationWarning,
+    ConvergenceError,
+    HighFluxWarning,
+    NoSolutionError,
+    OtherSolutionWarning,
+    UnstableMixtureError,
+)
+from .exact import Counts, solve_exact
+from .problem import MESSAGES, Array, Codes, Composition, FilmProblem, FilmStatus, existence, film_names, pose
+from .result import FilmFlux, RateFactor
+
+Solver = Callable[[FilmProblem], tuple[Array, Codes, Counts]]
+
+HIGH_FLUX = 50.0
+"""|A(N)|_1, the rate factors of a film, above which the film model itself is doubtful."""
+
+FROZEN_GAMMA_DOUBT = 0.02
+"""Estimated max|dN|/max|N| of freezing [Gamma] and kappa at the mean composition above which a warning is given."""
+
+
+def krishna_standart(x0: ArrayLike, xd: ArrayLike, kappa: ArrayLike | Composition, c_t: ArrayLike, bootstrap: Bootstrap,
+                     *, gamma: ArrayLike | Composition | None = None, throw: bool = True) -> FilmFlux:
+    """Fluxes through a film, exact for ideal mixtures with constant kappa.
+
+    J = c_t [k][Xi](x0 - xd), [Xi] = [Phi](exp[Phi] - [I])^-1, solved for N with the bootstrap by Newton in the
+    equivalent form that never inverts exp[Phi] - [I]. With `gamma` the film is that of a constant [Gamma]: taken at the
+    mean composition, its error against `numerical` on strongly non-ideal ternaries is 0.2 % of max|N| in the median,
+    3 % at the 90th percentile, 8 % at worst (compositions far apart); a few hundredths of a per cent for close faces.
+
+    Parameters
+    ----------
+    x0, xd : mole fractions at face 0 and face delta, (..., n).
+    kappa : pair mass-transfer coefficients, m/s, (..., n, n), or a function of x giving them (taken at the mean).
+    c_t : molar density, mol/m3, (...).
+    bootstrap : the closure, see `ratebased.bootstrap`.
+    gamma : [Gamma], (..., n-1, n-1), or a function of x giving it (taken at the mean composition).
+    throw : raise where no solution was found; False: NaN there, and the reason in `status`.
+
+    Returns a `FilmFlux`; N is positive from face 0 to face delta.
+
+    Raises
+    ------
+    InputError : bad arguments. UnstableMixtureError : an eigenvalue of [Gamma] is not positive.
+    NoSolutionError : the bootstrap leaves none, or no single, solution. ConvergenceError : none was found.
+
+    Warns: `OtherSolutionWarning` (the root lies beyond a fold; seen only at diffusivity ratios above 50),
+    `HighFluxWarning` (rate factors above 50), `ApproximationWarning` (gamma or kappa a function, and freezing it
+    changes N by more than 2 %). Source: Krishna and Standart (1976).
+    """
+    return solve_frozen(solve_exact, RateFactor.FLUXES, x0, xd, kappa, c_t, bootstrap, gamma, throw)
+
+
+def solve_frozen(solver: Solver, rate: RateFactor, x0: ArrayLike, xd: ArrayLike, kappa: ArrayLike | Composition,
+                 c_t: ArrayLike, bootstrap: Bootstrap, gamma: ArrayLike | Composition | None, throw: bool) -> FilmFlux:
+    """Check, freeze what is a function of x at the mean composition, solve, report."""
+    if not (callable(kappa) or callable(gamma)):
+        problem = pose(x0, xd, kappa, c_t, bootstrap, gamma)
+        return report(problem, *solve_problem(solver, problem, throw), rate, throw)
+    x0, xd = mole_fractions("x0", x0), mole_fractions("xd", xd)
+    mean = 0.5 * (x0 + xd)
+    problem = pose(x0, xd, evaluated("kappa", kappa, mean), c_t, bootstrap, evaluated_gamma(gamma, mean))
+    flux = report(problem, *solve_problem(solver, problem, throw), rate, throw)
+    averaged = pose(x0, xd, _simpson("kappa", kappa, x0, xd), c_t, bootstrap,
+                    None if gamma is None else _simpson("gamma", gamma, x0, xd))
+    other, _, _ = solve_problem(solver, averaged, False)
+    size = np.abs(flux.N).max(-1)
+    change = np.abs(other.reshape(flux.N.shape) - flux.N).max(-1) / np.where(size > 0, size, 1.0)
+    doubtful = change > FROZEN_GAMMA_DOUBT
+    if np.any(doubtful):
+        warnings.warn(f"gamma, kappa frozen at the mean composition: estimated error above {FROZEN_GAMMA_DOUBT:.0%} of "
+                      f"max|N| in {film_names(np.ravel(doubtful), np.shape(doubtful))}; use `numerical`",
+                      ApproximationWarning, stacklevel=4)
+    return flux
+
+
+def evaluated(name: str, value: ArrayLike | Composition, x: Array) -> Array:
+    """A matrix argument that may be a function of x, at x."""
+    return finite_array(name, value(x) if callable(value) else value)
+
+
+def evaluated_gamma(gamma: ArrayLike | Composition | None, x: Array) -> Array | None:
+    """[Gamma] at x, None for an ideal mixture."""
+    return None if gamma is None else evaluated("gamma", gamma, x)
+
+
+def _simpson(name: str, value: ArrayLike | Composition, x0: Array, xd: Array) -> Array:
+    """The 1-4-1 average over the film."""
+    return (evaluated(name, value, x0) + 4.0 * evaluated(name, value, 0.5 * (x0 + xd)) + evaluated(name, value, xd)) / 6.0
+
+
+def solve_problem(solver: Solver, problem: FilmProblem, throw: bool) -> tuple[Array, Codes, Counts]:
+    """Solve the films for which a solution may exist; `UnstableMixtureError` if `throw`."""
+    status = existence(problem)
+    if problem.gamma is not None:
+        unstable = unstable_films(problem.gamma)
+        if throw and unstable.any():
+            raise UnstableMixtureError(f"gamma, {film_names(unstable, problem.shape)}: an eigenvalue is not positive, the "
+                                       "liquid would split: no steady film exists")
+        status[unstable] = FilmStatus.UNSTABLE
+    if not status.any():
+        return solver(problem)
+    N = np.full((len(problem), problem.n), np.nan)
+    steps = np.zeros(len(problem), dtype=np.int64)
+    fit = np.flatnonzero(status == FilmStatus.CONVERGED)
+    N[fit], status[fit], steps[fit] = solver(problem.take(fit))
+    return N, status, steps
+
+
+def unstable_films(gamma: Array) -> NDArray[np.bool_]:
+    """Where [Gamma] has an eigenvalue whose real part is not positive, (M)."""
+    return np.asarray(np.linalg.eigvals(gamma).real.min(-1) <= 0)
+
+
+def report(problem: FilmProblem, N: Array, status: Codes, steps: Counts, rate: RateFactor, throw: bool,
+           error: Array | None = None) -> FilmFlux:
+    """A `FilmFlux` in the caller's batch shape, with the errors and warnings that go with it."""
+    shape, n = problem.shape, problem.n
+    flux = FilmFlux(N.reshape(*shape, n), problem.x0.reshape(*shape, n), problem.xd.reshape(*shape, n),
+                    restored(problem.kappa, shape, 2), restored(problem.c_t, shape, 0), restored(problem.nu, shape, 1),
+                    restored(problem.s, shape, 0),
+                    None if problem.gamma is None else restored(problem.gamma, shape, 2),
+                    steps.reshape(shape), status.reshape(shape), None if error is None else error.reshape(shape), rate)
+    if status.any():
+        _complain(flux, status, shape, throw)
+    return flux
+
+
+def restored(array: Array, shape: tuple[int, ...], keep: int) -> Array:
+    """One batch axis back to the batch shape, repeated entries staying views."""
+    tail = array.shape[array.ndim - keep:]
+    if array.strides[0] == 0 and len(array):
+        return np.broadcast_to(array[0], (*shape, *tail))
+    return array.reshape(*shape, *tail)
+
+
+def _complain(flux: FilmFlux, status: Codes, shape: tuple[int, ...], throw: bool) -> None:
+    for code in (FilmStatus.NO_SOLUTION, FilmStatus.UNDETERMINED, FilmStatus.NOT_CONVERGED):
+        mask = status == code
+        if throw and mask.any():
+            failed = mask.reshape(shape) if shape else None
+            kind = ConvergenceError if code is FilmStatus.NOT_CONVERGED else NoSolutionError
+            raise kind(f"{film_names(mask, shape)}: {MESSAGES[code]}", best=flux, failed=failed)
+    other = status == FilmStatus.OTHER_BRANCH
+    if other.any():
+        warnings.warn(f"{film_names(other, shape)}: {MESSAGES[FilmStatus.OTHER_BRANCH]}", OtherSolutionWarning,
+                      stacklevel=5)
+
+
+def warn_high_flux(norm: Array, shape: tuple[int, ...]) -> None:
+    """`HighFluxWarning` where |A(N)|_1 exceeds `HIGH_FLUX`."""
+    high = norm > HIGH_FLUX
+    if high.any():
+        warnings.warn(f"{film_names(high, shape)}: rate factors above {HIGH_FLUX:g}, the film model itself is doubtful",
+                      HighFluxWarning, stacklevel=5)
