@@ -16,11 +16,13 @@ from typing import Any
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from ..film.blocks import FilmBlocks, coth_blocks, film_matrix
+from ..film import krishna_standart
+from ..film.blocks import FilmBlocks, film_matrix
 from ..properties.differences import liquid_heat_capacity, vapor_heat_capacity
 from ..properties.protocol import Mask, PropertyModel
 from .energy import FilmEnergy, film_energy
 from .equilibrium import equilibrium, normalized, zero_flux_temperature
+from .film_rows import FilmMethod, FilmRows
 from .problem import InterfaceProblem, prepare
 from .records import Bulk
 from .slopes import enthalpy_by_composition, factor_and_slopes
@@ -67,7 +69,8 @@ class InterfaceBlocks:
 
 
 def interface_blocks(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: ArrayLike, z: Array, *,
-                     y_guess: Array | None = None, bulk_derivatives: bool = True) -> InterfaceBlocks:
+                     film: FilmMethod = krishna_standart, y_guess: Array | None = None,
+                     bulk_derivatives: bool = True) -> InterfaceBlocks:
     """Residual and Jacobian blocks of the interface at z, for a Newton method that carries N, u and T_I itself.
 
     Parameters
@@ -76,19 +79,20 @@ def interface_blocks(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: Ar
     properties : a `PropertyModel`. P : Pa, (...).
     z : unknowns (N, u, T_I), (..., 2n+1): fluxes from vapour to liquid, mol/(m2 s); x_I,i or, for a non-condensing
         component, y_I,i; K.
+    film : film method; `krishna_standart` and `linearized` have rows of their own, others go through differences.
     y_guess : interface vapour at which K is first evaluated, (..., n), default the bulk vapour; it matters only where K
         depends on the vapour's composition.
     bulk_derivatives : False leaves out dw and dE_*_dw (saves the composition slopes of the enthalpies).
 
     Source: Krishna & Standart (1976) films; energy balance with the Ackermann (1937) factor, see `energy`.
     """
-    problem = prepare(vapor, liquid, properties, np.asarray(P, float))
+    problem = prepare(vapor, liquid, properties, np.asarray(P, float), film)
     return evaluate(problem, z, problem.y if y_guess is None else y_guess, bulk_derivatives)
 
 
 def interface_start(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: ArrayLike) -> Array:
     """Start for z, (..., 2n+1): no flux, the interface liquid that of the bulk, at its zero-flux temperature."""
-    problem = prepare(vapor, liquid, properties, np.asarray(P, float))
+    problem = prepare(vapor, liquid, properties, np.asarray(P, float), krishna_standart)
     return at_rest(problem, zero_flux_temperature(problem, 1e-2))
 
 
@@ -124,21 +128,21 @@ class _Film:
     by_temperature: Array | None
 
 
-def _film(N: Array, K: Array, x0: Array, xd: Array, factor: Any, T: Array, P: Array, mask: Mask,
+def _film(rows: FilmRows, N: Array, K: Array, x0: Array, xd: Array, factor: Any, T: Array, P: Array, mask: Mask,
           limits: tuple[float, float]) -> _Film:
     """Film from x0 to xd with [Gamma] at the mean composition and the temperature T; `factor` None: ideal."""
     if factor is None:
-        return _Film(coth_blocks(N, K, x0, xd), None, None)
+        return _Film(rows(N, K, x0, xd, None, None), None, None)
     mean = normalized(np.where(mask, 0.5 * (x0 + xd), 0.0))
     gamma, slope, by_T = factor_and_slopes(factor, T, P, mean, mask, limits)
-    blocks = coth_blocks(N, K, x0, xd, gamma, slope)
+    blocks = rows(N, K, x0, xd, gamma, slope)
     if not np.abs(by_T).max(initial=0.0) > 0.0:
         return _Film(blocks, gamma, None)
     # the residual is linear in dGamma: send twice the temperature slope along with the first composition slope
     # (which counts half) and take the difference
     turned = np.array(slope)
     turned[..., 0, :, :] += 2.0 * by_T
-    return _Film(blocks, gamma, (coth_blocks(N, K, x0, xd, gamma, turned).dx0 - blocks.dx0)[..., 0])
+    return _Film(blocks, gamma, (rows(N, K, x0, xd, gamma, turned).dx0 - blocks.dx0)[..., 0])
 
 
 def evaluate(problem: InterfaceProblem, z: Array, y_guess: Array, bulk_derivatives: bool) -> InterfaceBlocks:
@@ -147,10 +151,10 @@ def evaluate(problem: InterfaceProblem, z: Array, y_guess: Array, bulk_derivativ
     m = n - 1
     N, u, T = z[..., :n], z[..., n:2 * n], z[..., 2 * n]
     eq = equilibrium(p, T, u, y_guess)
-    vapor = _film(N, p.K_V, p.y, closed(eq.y_I),
+    vapor = _film(p.rows, N, p.K_V, p.y, closed(eq.y_I),
                   None if p.ideal_vapor else p.properties.vapor_thermodynamic_factor,  # type: ignore[attr-defined]
                   0.5 * (p.T_V + T), p.P, p.volatile, p.limits)
-    liquid = _film(N, p.K_L, closed(eq.x_I), p.x, None if p.ideal_liquid else p.properties.thermodynamic_factor,
+    liquid = _film(p.rows, N, p.K_L, closed(eq.x_I), p.x, None if p.ideal_liquid else p.properties.thermodynamic_factor,
                    0.5 * (p.T_L + T), p.P, p.condensable, p.limits)
     energy_V, energy_L = _energies(p, N, T, bulk_derivatives)
 

@@ -47,7 +47,7 @@ def equilibrium(problem: InterfaceProblem, T: Array, u: Array, y_guess: Array) -
     x_hat = normalized(x_I)
     x_sum = np.maximum(np.maximum(x_I, 0.0).sum(-1), 1e-12)
     gas = np.where(condensable, 0.0, u)
-    y = np.where(problem.volatile, y_guess, 0.0)
+    y = np.array(np.where(problem.volatile, y_guess, 0.0))
     for _ in range(VAPOR_ROUNDS):
         y_sum = np.maximum(np.maximum(y, 0.0).sum(-1), 1e-12)
         y_hat = normalized(y)
@@ -58,7 +58,7 @@ def equilibrium(problem: InterfaceProblem, T: Array, u: Array, y_guess: Array) -
             return _assemble(problem, x_I, y_new, K, slope.temperature, slope.liquid, None, x_sum)
         inner = np.eye(n) - (np.where(ordinary, y_new, 0.0) / y_sum[..., None])[..., None] * slope.vapor
         step: Array = np.linalg.solve(inner, (y_new - y)[..., None])[..., 0]
-        y = np.asarray(y + step)
+        y += step
         if np.abs(step).max(initial=0.0) < 1e-9:          # quadratic: what is left is rounding
             break
     return _assemble(problem, x_I, y, K, slope.temperature, slope.liquid, inner, x_sum)
@@ -69,13 +69,13 @@ def _assemble(problem: InterfaceProblem, x_I: Array, y: Array, K: Array, by_T: A
     ordinary, condensable = problem.ordinary, problem.condensable
     n = problem.n
     passing = np.where(ordinary, y, 0.0)
-    dy_dT = passing * by_T
+    dy_dT: Array = passing * by_T
     dy_du = (passing / x_sum[..., None])[..., None] * np.where(condensable, by_x, 0.0)
     diagonal = np.arange(n)
     dy_du[..., diagonal, diagonal] += np.where(condensable, K, 1.0)
     if inner is not None:
-        solved = np.linalg.solve(inner, np.concatenate((dy_du, dy_dT[..., None]), axis=-1))
-        dy_du, dy_dT = solved[..., :-1], solved[..., -1]
+        solved: Array = np.linalg.solve(inner, np.concatenate((dy_du, dy_dT[..., None]), axis=-1))
+        return Equilibrium(x_I, y, K, solved[..., :-1], solved[..., -1])
     return Equilibrium(x_I, y, K, dy_du, dy_dT)
 
 

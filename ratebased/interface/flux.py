@@ -17,13 +17,15 @@ from ..errors import (
     PropertyRangeError,
     UnstableMixtureError,
 )
+from ..film import krishna_standart
 from ..properties.protocol import PropertyModel
 from .blocks import InterfaceBlocks, at_rest, evaluate
 from .branch import continuation, determinant_sign, zero_flux_sign
 from .equilibrium import normalized, zero_flux_temperature
+from .film_rows import FilmMethod
 from .newton import Iterate, newton, solve_linear
 from .problem import InterfaceProblem, entries, prepare
-from .records import Bulk, FilmState, InterfaceDerivatives, InterfaceFlux, InterfaceStatus
+from .records import Bulk, FilmCoefficients, InterfaceDerivatives, InterfaceFlux, InterfaceStatus
 
 Array = NDArray[np.float64]
 
@@ -35,8 +37,8 @@ ACKERMANN_LIMIT = 30.0
 
 
 def interface_flux(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: ArrayLike, *,
-                   start: InterfaceFlux | None = None, derivatives: bool = False, throw: bool = True,
-                   tolerance: float = 1e-10) -> InterfaceFlux:
+                   film: FilmMethod = krishna_standart, start: InterfaceFlux | None = None, derivatives: bool = False,
+                   throw: bool = True, tolerance: float = 1e-10) -> InterfaceFlux:
     """Fluxes through the interface of two bulks: two films, equilibrium between them, one energy flux through both.
 
     Parameters
@@ -45,6 +47,8 @@ def interface_flux(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: Arra
     properties : a `PropertyModel`. A model whose parameters vary over the batch has a method `entries(index)` that
         gives the model of some entries of the flattened batch.
     P : Pa, (...).
+    film : film method for both films. `krishna_standart` and `linearized` are solved through their own equations, any
+        other function of the same signature through differences of its N.
     start : an earlier result of the same batch shape to start from; its branch is followed, so the sign test is left
         out where this start succeeds.
     derivatives : also the derivatives by both bulk states (`InterfaceDerivatives`).
@@ -75,7 +79,7 @@ def interface_flux(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: Arra
     vapor, liquid, P_array, batch = _checked(vapor, liquid, properties, P)
     count = int(np.prod(batch, dtype=int))
     problem = prepare(_flat(vapor, batch, n), _flat(liquid, batch, n), entries(properties, np.arange(count)),
-                      np.broadcast_to(P_array, batch).reshape(count))
+                      np.broadcast_to(P_array, batch).reshape(count), film)
     found = _solve(problem, None if start is None else _restart(start, batch, n), tolerance)
     result, blocks = _result(problem, found, derivatives, batch, properties.names)
     _report(result, found, blocks, batch, throw)
@@ -233,7 +237,7 @@ def _result(problem: InterfaceProblem, found: _Found, derivatives: bool, batch: 
 
     def shaped(value: Array, *core: int) -> Array:
         value = np.broadcast_to(value, (len(status), *core))
-        return np.where(solved.reshape(-1, *[1] * len(core)), value, np.nan).reshape(*batch, *core)
+        return np.where(solved.reshape(-1, *[1] * len(core)), value, np.nan).reshape((*batch, *core))
 
     N = np.where(problem.ordinary, z[:, :n], 0.0)
     x_I, y_I = np.maximum(blocks.x_I, 0.0), np.maximum(blocks.y_I, 0.0)
@@ -247,8 +251,9 @@ def _result(problem: InterfaceProblem, found: _Found, derivatives: bool, batch: 
     def gamma(value: Array | None) -> Array | None:
         return None if value is None else np.where(solved[:, None, None], value, np.eye(m)).reshape(*batch, m, m)
 
-    films = FilmState(problem.y.reshape(*batch, n), problem.x.reshape(*batch, n), problem.K_V.reshape(*batch, n, n),
-                      problem.K_L.reshape(*batch, n, n), gamma(blocks.gamma_vapor), gamma(blocks.gamma_liquid))
+    films = FilmCoefficients(problem.y.reshape(*batch, n), problem.x.reshape(*batch, n),
+                             problem.K_V.reshape(*batch, n, n),
+                             problem.K_L.reshape(*batch, n, n), gamma(blocks.gamma_vapor), gamma(blocks.gamma_liquid))
     result = InterfaceFlux(
         N=shaped(N, n), y_I=shaped(y_I, n), x_I=shaped(x_I, n), T_I=shaped(z[:, 2 * n]),
         q_vapor_bulk=shaped(blocks.q_vapor_bulk), q_vapor_interface=shaped(blocks.q_vapor_interface),

@@ -9,6 +9,7 @@ from numpy.typing import NDArray
 
 from ..film.blocks import resistances
 from ..properties.protocol import Mask, PropertyModel
+from .film_rows import FilmMethod, FilmRows, rows_of
 from .records import Bulk
 
 Array = NDArray[np.float64]
@@ -20,7 +21,8 @@ class InterfaceProblem:
 
     flux_scale : a typical c kappa of the two films in series, mol/(m2 s). energy_scale : of the energy row, W/m2: the
     largest latent heat times that flux, plus what both films conduct at one kelvin (so that neither a tiny nor a huge
-    h spoils the row). `ideal_*`: [Gamma] is the identity for every composition probed, so it is not asked for again.
+    h spoils the row). rows: the film equations. `ideal_*`: [Gamma] is the identity for every composition probed, so it
+    is not asked for again.
     """
 
     properties: PropertyModel
@@ -37,6 +39,7 @@ class InterfaceProblem:
     H_L: Array
     flux_scale: Array
     energy_scale: Array
+    rows: FilmRows
     ideal_vapor: bool
     ideal_liquid: bool
 
@@ -75,7 +78,7 @@ def entries(properties: PropertyModel, index: Any) -> PropertyModel:
     return properties if own is None else own(index)
 
 
-def prepare(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: Array) -> InterfaceProblem:
+def prepare(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: Array, film: FilmMethod) -> InterfaceProblem:
     """The problem of two bulks; shapes broadcast, nothing is checked."""
     P, T_V, T_L = np.asarray(P, float), np.asarray(vapor.temperature, float), np.asarray(liquid.temperature, float)
     y, x = np.asarray(vapor.composition, float), np.asarray(liquid.composition, float)
@@ -90,7 +93,7 @@ def prepare(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: Array) -> I
     h_V, h_L = np.asarray(vapor.heat_transfer, float), np.asarray(liquid.heat_transfer, float)
     latent = np.abs(H_V - H_L).max(-1)
     return InterfaceProblem(properties, P, y, x, T_V, T_L, h_V, h_L, K_V, K_L, H_V, H_L, flux_scale,
-                            latent * flux_scale + h_V + h_L,
+                            latent * flux_scale + h_V + h_L, rows_of(film),
                             _always_ideal(getattr(properties, "vapor_thermodynamic_factor", None), T_V, P, y,
                                           properties.volatile),
                             _always_ideal(properties.thermodynamic_factor, T_L, P, x, properties.condensable))

@@ -9,7 +9,8 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
-from .dissipation import film_dissipation
+from ..bootstrap import TotalFlux
+from ..film import FilmFlux
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -69,8 +70,10 @@ class InterfaceDerivatives:
 
 
 @dataclass(frozen=True)
-class FilmState:
-    """What the two films of a solved interface were computed with: bulks, resistances K, [Gamma] (None: identity)."""
+class FilmCoefficients:
+    """What the two films were computed with: bulk compositions (..., n), resistances K = 1/(c kappa), m2 s/mol, (...,
+    n, n), [Gamma] (..., n-1, n-1) or None for the identity.
+    """
 
     y: Array
     x: Array
@@ -110,7 +113,7 @@ class InterfaceFlux:
     size: Array
     u: Array
     names: tuple[str, ...]
-    films: FilmState
+    films: FilmCoefficients
     derivatives: InterfaceDerivatives | None = None
 
     @property
@@ -119,18 +122,28 @@ class InterfaceFlux:
         return self.status <= InterfaceStatus.OTHER_BRANCH
 
     @cached_property
-    def entropy_production(self) -> tuple[Array, Array]:
-        """Entropy production by diffusion in the vapour and in the liquid film, W/(m2 K), (...) each, >= 0."""
+    def vapor_film(self) -> FilmFlux:
+        """The vapour film, face 0 the bulk: profile, regime, entropy production. Its kappa is c kappa, its c_t one."""
         f = self.films
-        return (film_dissipation(self.N, f.K_vapor, f.y, f.gamma_vapor, 1),
-                film_dissipation(self.N, f.K_liquid, f.x, f.gamma_liquid, -1))
+        return _film(self.N, f.y, self.y_I, f.K_vapor, f.gamma_vapor, self.status)
+
+    @cached_property
+    def liquid_film(self) -> FilmFlux:
+        """The liquid film, face 0 the interface; as `vapor_film`."""
+        f = self.films
+        return _film(self.N, self.x_I, f.x, f.K_liquid, f.gamma_liquid, self.status)
 
     @cached_property
     def vapor_entropy_share(self) -> Array:
-        """Share of the vapour film in the entropy production by diffusion, 0..1, (...); 0.5 where nothing diffuses."""
-        vapor, liquid = self.entropy_production
-        total = vapor + liquid
-        return np.where(total > 0, vapor / np.where(total > 0, total, 1.0), 0.5)
+        """Share of the vapour film in the entropy production by diffusion, 0..1, (...); 0.5 where nothing diffuses.
+
+        A film that a component leaves or enters at zero concentration produces infinitely much and takes all of it.
+        """
+        vapor, liquid = self.vapor_film.entropy_production, self.liquid_film.entropy_production
+        with np.errstate(invalid="ignore", divide="ignore"):
+            share = vapor / (vapor + liquid)
+        share = np.where(np.isinf(vapor), np.where(np.isinf(liquid), 0.5, 1.0), share)
+        return np.where((vapor == 0) & (liquid == 0), 0.5, share)
 
     def to_frame(self) -> pd.DataFrame:
         """One row an interface (batch axes flattened): fluxes, interface state, conduction, residuals, status."""
@@ -151,3 +164,12 @@ class InterfaceFlux:
         frame["iterations"] = self.iterations.reshape(-1)
         frame["status"] = [InterfaceStatus(int(s)).name.lower() for s in self.status.reshape(-1)]
         return frame
+
+
+def _film(N: Array, x0: Array, xd: Array, K: Array, gamma: Array | None, status: NDArray[np.int64]) -> FilmFlux:
+    n = N.shape[-1]
+    nu, s = TotalFlux(np.where(np.isfinite(N.sum(-1)), N.sum(-1), 0.0)).linear_form(n)
+    off = ~np.eye(n, dtype=bool)
+    kappa = np.where(off, 1.0 / np.where(off, K, 1.0), 1.0)
+    return FilmFlux(N, x0, xd, kappa, np.ones(N.shape[:-1]), nu, s, gamma, np.zeros(N.shape[:-1], np.int64),
+                    np.asarray(status, np.int8))
