@@ -1,1 +1,15 @@
-"""Published empirical correlations for diffusivities, packings and trays: pure functions of arrays."""
+"""Published empirical correlations for diffusivities, packings and trays: pure functions of arrays.
+
+Modules by what is predicted; a function is named by its authors: `packing_area.onda`, `tray_limits.fair_flooding`.
+Every public correlation carries a `record` (what it predicts, for what, range, scatter, source, confidence) and warns
+`OutOfRangeWarning` outside its range; `catalogue()` lists all records.
+"""
+from __future__ import annotations
+
+from .catalogue import catalogue
+from .errors import InputError, NoPhysicalRootError, OutOfRangeWarning
+from .record import Correlation, Record
+from .validity import Confidence, Range, Validity
+
+__all__ = ["Confidence", "Correlation", "InputError", "NoPhysicalRootError", "OutOfRangeWarning", "Range", "Record",
+           "Validity", "catalogue"]

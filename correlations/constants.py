@@ -1,0 +1,9 @@
+"""Constants of nature and of units shared by the formulas."""
+from __future__ import annotations
+
+GRAVITY = 9.80665
+"""m/s2."""
+FOOT = 0.3048
+"""m."""
+INCH_WATER_PER_FOOT = 817.221
+"""Pa/m in one inch of water per foot (water of 62.4 lb/ft3)."""
