@@ -11,8 +11,10 @@ from .definition import (
     VaporDraw,
     VaporFeed,
 )
+from .contact import Averaged, FlowPattern, Mixed, Plug
 from .equilibrium import solve_equilibrium
 from .feeds import FlashResult, flash
+from .ratebased import solve_ratebased
 from .profile import ContactRecord, ProductStream, Profile, SolutionReport
 from .specifications import (
     BoilupRatio,

@@ -23,7 +23,7 @@ from .profile import Profile
 from .result import equilibrium_profile
 from .search import with_search
 from .specifications import RefluxRatio
-from .start import State, dry_margin, starting_state
+from .start import State, dry_margin, masked, starting_state
 from .steps import TINY, after_draw, fractions, limited
 
 TOLERANCE = 1e-10
@@ -337,7 +337,7 @@ def _efficiency_continuation(problem: Problem, efficiency: EfficiencySet, start:
     share, step = 0.0, 0.25
     while step > 0.01:
         target = min(1.0, share + step)
-        trial = newton(problem, stage_rows(problem, efficiency.toward_equilibrium(target)), positive(outcome.state),
+        trial = newton(problem, stage_rows(problem, efficiency.toward_equilibrium(target)), positive(problem, outcome.state),
                        limit=40, progress=progress)
         if not trial.converged:
             step *= 0.5
@@ -364,7 +364,7 @@ def _reflux_continuation(problem: Problem, rows: StageRows, progress: Progress |
     reached, ratio = wanted * factor, 1.5
     while ratio > 1.01:
         target = max(wanted, reached / ratio)
-        trial = newton(replace(problem, top=RefluxRatio(target)), rows, positive(outcome.state), limit=40,
+        trial = newton(replace(problem, top=RefluxRatio(target)), rows, positive(problem, outcome.state), limit=40,
                        progress=progress)
         if not trial.converged:
             ratio = ratio ** 0.5
@@ -375,7 +375,7 @@ def _reflux_continuation(problem: Problem, rows: StageRows, progress: Progress |
     return replace(outcome, converged=False, reason=f"no solution found below {reached:.4g}, {wanted:.4g} asked")
 
 
-def positive(state: State) -> State:
+def positive(problem: Problem, state: State) -> State:
     """A converged state as the start of another solve: rounding below zero lifted to the floor."""
-    return State(np.where(state.v == 0.0, 0.0, np.maximum(state.v, TINY)), state.T,
-                 np.where(state.l == 0.0, 0.0, np.maximum(state.l, TINY)))
+    v, l = masked(problem, np.maximum(state.v, TINY), np.maximum(state.l, TINY))
+    return State(v, state.T, l)

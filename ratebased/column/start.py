@@ -145,7 +145,8 @@ def _liquid_profile(problem: Problem, K: Array, V: Array, L: Array) -> tuple[Arr
     return v, l
 
 
-def _masked(problem: Problem, v: Array, l: Array) -> tuple[Array, Array]:
+def masked(problem: Problem, v: Array, l: Array) -> tuple[Array, Array]:
+    """Flows with exact zeros where a component is never in the phase."""
     l = np.where(problem.gas, 0.0, l)
     if problem.heavy.any():
         keep = np.zeros_like(v, bool)
@@ -187,8 +188,8 @@ def _bubble_sweeps(problem: Problem, V: Array, L: Array) -> State:
     for _ in range(SWEEPS):
         K = problem.properties.k_value(T, problem.P, x, y)
         v, l = _liquid_profile(problem, K, V, L)
-        masked_v, masked_l = _masked(problem, v, l)
-        x = masked_l / masked_l.sum(-1, keepdims=True)
+        _, inside = masked(problem, v, l)
+        x = inside / inside.sum(-1, keepdims=True)
         new, y = _boiling(problem, x, T)
         change = np.abs(new - T).max()
         T = new
@@ -199,7 +200,7 @@ def _bubble_sweeps(problem: Problem, V: Array, L: Array) -> State:
     if problem.total_condenser:
         vapor[0] = x[0]
     vapor = vapor / vapor.sum(-1, keepdims=True)
-    v, l = _masked(problem, np.maximum(vapor * V[:, None], TINY), np.maximum(x * L[:, None], TINY))
+    v, l = masked(problem, np.maximum(vapor * V[:, None], TINY), np.maximum(x * L[:, None], TINY))
     return State(v, T, l)
 
 
@@ -211,7 +212,7 @@ def _sum_rates(problem: Problem, V: Array, L: Array) -> State:
     v, l = y * V[:, None], x * L[:, None]
     for _ in range(SWEEPS):
         K = problem.properties.k_value(T, problem.P, x, y)
-        v, l = _masked(problem, *_liquid_profile(problem, K, V, L))
+        v, l = masked(problem, *_liquid_profile(problem, K, V, L))
         new_L, new_V = l.sum(1), v.sum(1)
         change = max(float(np.abs(new_L / L - 1.0).max()), float(np.abs(new_V / V - 1.0).max()))
         L, V = new_L, new_V
