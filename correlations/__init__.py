@@ -8,8 +8,9 @@ from __future__ import annotations
 
 from .catalogue import catalogue
 from .errors import InputError, NoPhysicalRootError, OutOfRangeWarning
+from .packings import Packing, packing, packings
 from .record import Correlation, Record
 from .validity import Confidence, Range, Validity
 
-__all__ = ["Confidence", "Correlation", "InputError", "NoPhysicalRootError", "OutOfRangeWarning", "Range", "Record",
-           "Validity", "catalogue"]
+__all__ = ["Confidence", "Correlation", "InputError", "NoPhysicalRootError", "OutOfRangeWarning", "Packing", "Range",
+           "Record", "Validity", "catalogue", "packing", "packings"]

@@ -57,6 +57,7 @@ REFERENCES: dict[str, str] = {
     "neufeld_1972": "Neufeld, P. D., Janzen, A. R., Aziz, R. A., J. Chem. Phys. 57 (1972) 1100.",
     "oconnell_1946": "O'Connell, H. E., Trans. AIChE 42 (1946) 741.",
     "olujic_1999": "Olujic, Z., Kamerbeek, A. B., de Graauw, J., Chem. Eng. Process. 38 (1999) 683.",
+    "onda_1967": "Onda, K., Takeuchi, H., Koyama, Y., Kagaku Kogaku 31 (1967) 126.",
     "onda_1968": "Onda, K., Takeuchi, H., Okumoto, Y., J. Chem. Eng. Jpn. 1 (1968) 56.",
     "perkins_geankoplis_1969": "Perkins, L. R., Geankoplis, C. J., Chem. Eng. Sci. 24 (1969) 1035.",
     "poling": "Poling, B. E., Prausnitz, J. M., O'Connell, J. P., The Properties of Gases and Liquids, 5th ed., "

@@ -8,6 +8,7 @@ from . import (  # noqa: F401  importing a module registers its correlations
     mixing,
     mixture_diffusivity,
     molar_volume,
+    overall,
     packing_area,
     packing_coefficients,
     packing_holdup,

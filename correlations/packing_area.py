@@ -189,7 +189,7 @@ def wang(liquid_velocity: Values, liquid_density: Values, surface_tension: Value
     {}, None, "henriques_de_brito_1994", Confidence.VERIFIED, range_note=UNKNOWN, error_note=UNKNOWN))
 def henriques_de_brito(liquid_velocity: Values, liquid_density: Values, liquid_viscosity: Values,
                        specific_area: Values) -> Array:
-    """Effective area of a sheet packing by Henriques de Brito and co-workers [1/m]: 0.465 a (Re)^0.3, Re = rho u/(mu a)."""
+    """Effective area of a sheet packing by Henriques de Brito and co-workers [1/m]: 0.465 a (rho u/(mu a))^0.3."""
     return specific_area * 0.465 * _reynolds(liquid_velocity, liquid_density, liquid_viscosity, specific_area) ** 0.3
 
 

@@ -174,3 +174,115 @@ def rocha_bravo_fair_liquid(diffusivity: Values, liquid_velocity: Values, liquid
     require("liquid_holdup", liquid_holdup, liquid_holdup > 0, "a number above zero")
     film = liquid_velocity / (void_fraction * liquid_holdup * np.sin(corrugation_angle))
     return 2 * np.sqrt(diffusivity * renewal_factor * film / (np.pi * corrugation_side))
+
+
+_DELFT = Validity({}, None, "olujic_1999", Confidence.MEMORY, range_note=UNKNOWN, error_note=UNKNOWN)
+
+
+def delft_film(liquid_velocity: Array, liquid_density: Array, liquid_viscosity: Array, specific_area: Array,
+               corrugation_base: Array, corrugation_height: Array, corrugation_angle: Array) -> tuple[Array, Array]:
+    """Sine of the slope of the liquid's path and thickness of the film, m."""
+    rest = np.pi / 2 - corrugation_angle
+    tangent = 1 / (np.tan(rest) * np.cos(np.arctan(corrugation_base / (2 * corrugation_height))))
+    slope = tangent / np.sqrt(1 + tangent ** 2)
+    return slope, np.cbrt(3 * liquid_viscosity * liquid_velocity / (liquid_density * GRAVITY * specific_area * slope))
+
+
+def _delft_channel(film: Array, base: Array, height: Array, side: Array) -> Array:
+    """Hydraulic diameter of the channel narrowed by the film, m."""
+    free = base * height - 2 * film * side
+    require("liquid_velocity", film, free > 0, "a film thinner than the channel")
+    slant = np.sqrt((free / (2 * height)) ** 2 + (free / base) ** 2)
+    return free ** 2 / (base * height) / (slant + free / (2 * height))
+
+
+@correlation("vapour coefficient", "structured packings of sheet", "m s-1", _DELFT)
+def delft_vapor(diffusivity: Values, vapor_velocity: Values, vapor_density: Values, vapor_viscosity: Values,
+                liquid_velocity: Values, liquid_density: Values, liquid_viscosity: Values, specific_area: Values,
+                void_fraction: Values, corrugation_base: Values, corrugation_height: Values,
+                corrugation_side: Values, corrugation_angle: Values, element_height: Values) -> Array:
+    """Vapour coefficient of a corrugated-sheet packing by Olujic, Kamerbeek and de Graauw [m/s].
+
+    Root of the squares of a laminar (0.664 Sc^(1/3) (Re d/l)^(1/2)) and a turbulent term (Re Sc xi phi/8 over
+    1 + 12.7 (xi phi/8)^(1/2) (Sc^(2/3) - 1), times 1 + (d/l)^(2/3)); d the channel narrowed by the film, l its length,
+    xi the friction factor of a rough tube, phi the gas-liquid part of the channel's perimeter.
+    """
+    slope, film = delft_film(liquid_velocity, liquid_density, liquid_viscosity, specific_area, corrugation_base,
+                             corrugation_height, corrugation_angle)
+    holdup = film * specific_area
+    require("liquid_velocity", liquid_velocity, holdup < void_fraction, "a holdup below the void fraction")
+    d = _delft_channel(film, corrugation_base, corrugation_height, corrugation_side)
+    gas = vapor_velocity / ((void_fraction - holdup) * np.sin(corrugation_angle))
+    liquid = liquid_velocity / (void_fraction * holdup * slope)
+    Re = vapor_density * (gas + liquid) * d / vapor_viscosity
+    Sc = vapor_viscosity / (vapor_density * diffusivity)
+    rough = film / d / 3.7
+    xi = (-2 * np.log10(rough - 5.02 / Re * np.log10(rough + 14.5 / Re))) ** -2
+    phi = 2 * corrugation_side / (corrugation_base + 2 * corrugation_side)
+    slender = d * np.sin(corrugation_angle) / element_height
+    laminar = 0.664 * np.cbrt(Sc) * np.sqrt(Re * slender)
+    friction = xi * phi / 8
+    turbulent = (Re * Sc * friction / (1 + 12.7 * np.sqrt(friction) * (Sc ** (2 / 3) - 1))
+                 * (1 + slender ** (2 / 3)))
+    return np.hypot(laminar, turbulent) * diffusivity / d
+
+
+@correlation("liquid coefficient", "structured packings of sheet", "m s-1", _DELFT)
+def delft_liquid(diffusivity: Values, liquid_velocity: Values, liquid_density: Values, liquid_viscosity: Values,
+                 specific_area: Values, void_fraction: Values, corrugation_base: Values,
+                 corrugation_height: Values, corrugation_side: Values, corrugation_angle: Values) -> Array:
+    """Liquid coefficient of a corrugated-sheet packing by Olujic, Kamerbeek and de Graauw [m/s].
+
+    2 (D U_L/(0.9 pi d))^(1/2), U_L the mean velocity of the film, d the channel narrowed by it.
+    """
+    slope, film = delft_film(liquid_velocity, liquid_density, liquid_viscosity, specific_area, corrugation_base,
+                             corrugation_height, corrugation_angle)
+    d = _delft_channel(film, corrugation_base, corrugation_height, corrugation_side)
+    velocity = liquid_velocity / (void_fraction * film * specific_area * slope)
+    return 2 * np.sqrt(diffusivity * velocity / (0.9 * np.pi * d))
+
+
+_HANLEY_CHEN = Validity({}, None, "hanley_chen_2012", Confidence.DOUBTFUL, range_note=UNKNOWN, error_note=UNKNOWN)
+
+
+def _hanley_chen(diffusivity: Array, velocity: Array, density: Array, viscosity: Array, specific_area: Array,
+                 void_fraction: Array) -> Array:
+    d = 4 * void_fraction / specific_area
+    return d * velocity * density / viscosity * np.cbrt(viscosity / (density * diffusivity)) * diffusivity / d
+
+
+@correlation("liquid coefficient", "random packings of slotted metal rings", "m s-1", _HANLEY_CHEN)
+def hanley_chen_ring_liquid(diffusivity: Values, liquid_velocity: Values, liquid_density: Values,
+                            liquid_viscosity: Values, specific_area: Values, void_fraction: Values) -> Array:
+    """Liquid coefficient of slotted metal rings by Hanley and Chen [m/s]: 1.0 Re Sc^(1/3) D/d, d = 4 eps/a."""
+    return 1.0 * _hanley_chen(diffusivity, liquid_velocity, liquid_density, liquid_viscosity, specific_area,
+                              void_fraction)
+
+
+@correlation("vapour coefficient", "random packings of slotted metal rings", "m s-1", _HANLEY_CHEN)
+def hanley_chen_ring_vapor(diffusivity: Values, vapor_velocity: Values, vapor_density: Values,
+                           vapor_viscosity: Values, specific_area: Values, void_fraction: Values) -> Array:
+    """Vapour coefficient of slotted metal rings by Hanley and Chen [m/s]: 0.00104 Re Sc^(1/3) D/d, d = 4 eps/a."""
+    return 0.00104 * _hanley_chen(diffusivity, vapor_velocity, vapor_density, vapor_viscosity, specific_area,
+                                  void_fraction)
+
+
+@correlation("liquid coefficient", "structured packings of sheet", "m s-1", _HANLEY_CHEN)
+def hanley_chen_sheet_liquid(diffusivity: Values, liquid_velocity: Values, liquid_density: Values,
+                             liquid_viscosity: Values, specific_area: Values, void_fraction: Values) -> Array:
+    """Liquid coefficient of corrugated-sheet packings by Hanley and Chen [m/s]: 0.33 Re Sc^(1/3) D/d, d = 4 eps/a."""
+    return 0.33 * _hanley_chen(diffusivity, liquid_velocity, liquid_density, liquid_viscosity, specific_area,
+                               void_fraction)
+
+
+@correlation("vapour coefficient", "structured packings of sheet", "m s-1", _HANLEY_CHEN)
+def hanley_chen_sheet_vapor(diffusivity: Values, vapor_velocity: Values, vapor_density: Values,
+                            vapor_viscosity: Values, specific_area: Values, void_fraction: Values,
+                            corrugation_angle: Values) -> Array:
+    """Vapour coefficient of corrugated-sheet packings by Hanley and Chen [m/s].
+
+    0.0084 Re Sc^(1/3) (cos theta/cos 45)^-7.15 D/d, d = 4 eps/a.
+    """
+    slope = (np.cos(corrugation_angle) / np.cos(np.pi / 4)) ** -7.15
+    return 0.0084 * slope * _hanley_chen(diffusivity, vapor_velocity, vapor_density, vapor_viscosity, specific_area,
+                                         void_fraction)

@@ -5,6 +5,7 @@ from __future__ import annotations
 import numpy as np
 
 from .constants import GRAVITY
+from .packing_coefficients import delft_film
 from .record import Values, correlation
 from .validity import UNKNOWN, Array, Confidence, Validity
 
@@ -72,3 +73,16 @@ def stichlmair_above_loading(preloading_holdup: Values, pressure_gradient: Value
 def engel_static(liquid_density: Values, surface_tension: Values, specific_area: Values) -> Array:
     """Static liquid holdup by Engel, Stichlmair and Geipel [-]: 0.033 exp(-0.22 g rho_L/(sigma a^2))."""
     return 0.033 * np.exp(-0.22 * GRAVITY * liquid_density / (surface_tension * specific_area ** 2))
+
+
+@correlation("liquid holdup", "structured packings of sheet", "-", Validity(
+    {}, None, "olujic_1999", Confidence.MEMORY, range_note=f"{UNKNOWN}; below loading", error_note=UNKNOWN))
+def delft(liquid_velocity: Values, liquid_density: Values, liquid_viscosity: Values, specific_area: Values,
+          corrugation_base: Values, corrugation_height: Values, corrugation_angle: Values) -> Array:
+    """Liquid holdup of a corrugated-sheet packing by Olujic, Kamerbeek and de Graauw [-]: area times film thickness.
+
+    delta = (3 mu u/(rho g a sin alpha))^(1/3), alpha the slope of the liquid's path along the corrugation.
+    """
+    _, film = delft_film(liquid_velocity, liquid_density, liquid_viscosity, specific_area, corrugation_base,
+                         corrugation_height, corrugation_angle)
+    return specific_area * film

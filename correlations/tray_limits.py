@@ -175,3 +175,15 @@ def froude_weep_point(clear_liquid_height: Values, vapor_density: Values, liquid
     Fr = (rho_V u_h^2/(rho_L g h_L))^(1/2).
     """
     return 0.5 * np.sqrt(liquid_density * GRAVITY * clear_liquid_height / vapor_density)
+
+
+@correlation("active-area velocity at the weep point", "sieve trays", "m s-1", Validity(
+    {}, None, "zuiderweg_1982", Confidence.DOUBTFUL, range_note=f"{UNKNOWN}; emulsion regime", error_note=UNKNOWN))
+def zuiderweg_weep_point(clear_liquid_height: Values, hole_area_fraction: Values, vapor_density: Values,
+                         liquid_density: Values) -> Array:
+    """Vapour velocity on the bubbling area at the weep point in the emulsion regime, by Zuiderweg [m/s].
+
+    u (rho_V/(rho_L - rho_V))^(1/2) = 0.45 F_h (g h_L)^(1/2); the powers were read from a poor print.
+    """
+    capacity = 0.45 * hole_area_fraction * np.sqrt(GRAVITY * clear_liquid_height)
+    return capacity * _density_root(vapor_density, liquid_density)
