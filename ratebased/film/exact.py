@@ -5,12 +5,14 @@ tested against this path.
 """
 from __future__ import annotations
 
+from collections.abc import Callable
+
 import numpy as np
 from numpy.typing import NDArray
 
 from ..maxwell_stefan import film_matrix, reduced, solve
-from .blocks import coth_blocks
-from .problem import Array, Codes, FilmProblem, FilmStatus, Mask
+from .blocks import FilmBlocks, coth_blocks
+from .problem import Array, Codes, FilmProblem, FilmStatus, Mask, order_with_last, reordered
 
 STEP_TOLERANCE = 1e-12
 """Newton stops when the step is below this fraction of max|N|, or when rounding keeps it from getting there."""
@@ -27,6 +29,8 @@ Measured on random films: physical roots never above 1.5, unphysical ones never 
 """
 
 Counts = NDArray[np.int64]
+BlockForm = Callable[[Array, Array, Array, Array, Array | None], FilmBlocks]
+"""`coth_blocks` or `linearized_blocks`: the film equations of a method."""
 
 
 def solve_singular(matrix: Array, right: Array) -> Array:
@@ -89,22 +93,8 @@ def pivoted(problem: FilmProblem) -> tuple[FilmProblem, NDArray[np.intp]]:
     k, alone = stagnant_component(problem)
     varies = alone & (np.minimum(x0[films, k], xd[films, k]) < 0.1 * np.maximum(x0[films, k], xd[films, k]))
     weight[films[varies], k[varies]] = -1.0
-    last = weight.argmax(-1)
-    order = np.argsort(np.arange(problem.n) == last[:, None], axis=1, kind="stable")
-
-    def moved(array: Array) -> Array:
-        return np.take_along_axis(array, order, axis=1)
-
-    kappa = problem.kappa[films[:, None, None], order[:, :, None], order[:, None, :]]
-    gamma = problem.gamma
-    if gamma is not None:
-        # deviations of the new first n-1 components in terms of the old ones
-        n = problem.n
-        every = np.concatenate((np.eye(n - 1), -np.ones((1, n - 1))))
-        change = every[order[:, :-1]]
-        gamma = change @ gamma @ np.linalg.inv(change)
-    return FilmProblem(moved(x0), moved(xd), kappa, problem.c_t, moved(problem.nu), problem.s, gamma,
-                       problem.shape), order
+    order = order_with_last(weight.argmax(-1), problem.n)
+    return reordered(problem, order), order
 
 
 def stagnant_component(problem: FilmProblem) -> tuple[NDArray[np.intp], Mask]:
@@ -113,20 +103,20 @@ def stagnant_component(problem: FilmProblem) -> tuple[NDArray[np.intp], Mask]:
     return k, (np.count_nonzero(problem.nu, axis=-1) == 1) & (problem.s == 0)
 
 
-def newton_system(problem: FilmProblem, N: Array) -> tuple[Array, Array]:
-    """Jacobian (M, n, n) and minus the residual (M, n): the coth form with nu . N = s as its last row.
+def newton_system(problem: FilmProblem, N: Array, form: BlockForm = coth_blocks) -> tuple[Array, Array]:
+    """Jacobian (M, n, n) and minus the residual (M, n): the film equations with nu . N = s as their last row.
 
-    In an ideal film with a stagnant component k the row of k is replaced by its integral, sum_j K_kj N_j =
+    In an ideal exact film with a stagnant component k the row of k is replaced by its integral, sum_j K_kj N_j =
     ln(xd_k/x0_k): linear, exact, and good to all digits for a trace.
     """
     n = problem.n
-    blocks = coth_blocks(N, problem.K, problem.x0, problem.xd, problem.gamma)
+    blocks = form(N, problem.K, problem.x0, problem.xd, problem.gamma)
     J = np.empty((len(problem), n, n))
     right = np.empty((len(problem), n))
     J[:, :-1], J[:, -1] = blocks.dN, problem.nu
     right[:, :-1] = -blocks.residual
     right[:, -1] = problem.s - (problem.nu * N).sum(-1)
-    if problem.gamma is None:
+    if problem.gamma is None and form is coth_blocks:
         k, alone = stagnant_component(problem)
         films = np.flatnonzero(alone & (k < n - 1))
         if len(films):
@@ -137,7 +127,7 @@ def newton_system(problem: FilmProblem, N: Array) -> tuple[Array, Array]:
     return J, right
 
 
-def newton(problem: FilmProblem, N: Array) -> tuple[Array, Mask, Counts]:
+def newton(problem: FilmProblem, N: Array, form: BlockForm = coth_blocks) -> tuple[Array, Mask, Counts]:
     """Newton from N (M, n), components in the order given: fluxes, where it converged, steps."""
     N = np.where(np.isfinite(N), N, 0.0)
     done = np.zeros(len(problem), dtype=bool)
@@ -149,7 +139,7 @@ def newton(problem: FilmProblem, N: Array) -> tuple[Array, Mask, Counts]:
         if not len(active):
             break
         with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
-            J, right = newton_system(rest, N[active])
+            J, right = newton_system(rest, N[active], form)
             step = solve_singular(J, right)
             moved = N[active] + step
             size = np.abs(moved).max(-1)
@@ -179,17 +169,17 @@ def physical(problem: FilmProblem, N: Array) -> Mask:
     return np.asarray(np.abs(np.linalg.eigvals(Z).imag).max(-1) <= UNPHYSICAL_ROTATION)
 
 
-def other_branch(problem: FilmProblem, N: Array) -> Mask:
+def other_branch(problem: FilmProblem, N: Array, form: BlockForm = coth_blocks) -> Mask:
     """Where the determinant of the film equations has another sign at N than at zero flux: a fold lies between."""
     def sign(fluxes: Array) -> Array:
-        J = np.concatenate((coth_blocks(fluxes, problem.K, problem.x0, problem.xd, problem.gamma).dN,
+        J = np.concatenate((form(fluxes, problem.K, problem.x0, problem.xd, problem.gamma).dN,
                             problem.nu[:, None, :]), axis=1)
         return np.asarray(np.linalg.slogdet(J)[0], dtype=np.float64)
 
     return np.asarray(sign(N) * sign(np.zeros_like(N)) < 0)
 
 
-def continuation(problem: FilmProblem) -> tuple[Array, Mask, Counts]:
+def continuation(problem: FilmProblem, form: BlockForm = coth_blocks) -> tuple[Array, Mask, Counts]:
     """Widen the film from equal faces, x = x_m + t (x - x_m), t = 0..1, with Newton at every step."""
     M = len(problem)
     mean = 0.5 * (problem.x0 + problem.xd)
@@ -207,37 +197,38 @@ def continuation(problem: FilmProblem) -> tuple[Array, Mask, Counts]:
         part = problem.take(active)
         part = FilmProblem(mean[active] + ahead[:, None] * half[active], mean[active] - ahead[:, None] * half[active],
                            part.kappa, part.c_t, part.nu, part.s, part.gamma, part.shape)
-        found, ok, used = newton(part, N[active])
+        found, ok, used = newton(part, N[active], form)
         steps[active] += used
         ok &= physical(part, found)
-        ok &= ~other_branch(part, found)
+        ok &= ~other_branch(part, found, form)
         N[active[ok]] = found[ok]
         t[active[ok]] = ahead[ok]
         step[active] *= np.where(ok, 2.0, 0.25)
     return N, t >= 1.0, steps
 
 
-def solve_exact(problem: FilmProblem, start: Array | None = None) -> tuple[Array, Codes, Counts]:
+def solve_exact(problem: FilmProblem, start: Array | None = None, form: BlockForm = coth_blocks
+                ) -> tuple[Array, Codes, Counts]:
     """Fluxes (M, n), `FilmStatus` codes and iterations of films that passed `existence`. NaN where none was found."""
     inner, order = pivoted(problem)
     first = low_flux_start(problem) if start is None else start
-    N, ok, steps = newton(inner, np.take_along_axis(first, order, axis=1))
+    N, ok, steps = newton(inner, np.take_along_axis(first, order, axis=1), form)
     steps += 1
     ok &= physical(inner, N)
-    for attempt in (lambda part: newton(part, np.zeros_like(part.x0)), continuation):
+    for widen in (False, True):
         left = np.flatnonzero(~ok)
         if not len(left):
             break
         part = inner.take(left)
-        N[left], found, used = attempt(part)
+        N[left], found, used = continuation(part, form) if widen else newton(part, np.zeros_like(part.x0), form)
         ok[left] = found & physical(part, N[left])
         steps[left] += used
     status = np.where(ok, FilmStatus.CONVERGED, FilmStatus.NOT_CONVERGED).astype(np.int8)
     suspect = np.flatnonzero(ok)
-    suspect = suspect[other_branch(inner.take(suspect), N[suspect])]
+    suspect = suspect[other_branch(inner.take(suspect), N[suspect], form)]
     if len(suspect):
         status[suspect] = FilmStatus.OTHER_BRANCH
-        again, found, used = continuation(inner.take(suspect))
+        again, found, used = continuation(inner.take(suspect), form)
         steps[suspect] += used
         N[suspect[found]] = again[found]
         status[suspect[found]] = FilmStatus.CONVERGED

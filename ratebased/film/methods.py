@@ -97,7 +97,8 @@ def evaluated_gamma(gamma: ArrayLike | Composition | None, x: Array) -> Array | 
 
 def _simpson(name: str, value: ArrayLike | Composition, x0: Array, xd: Array) -> Array:
     """The 1-4-1 average over the film."""
-    return (evaluated(name, value, x0) + 4.0 * evaluated(name, value, 0.5 * (x0 + xd)) + evaluated(name, value, xd)) / 6.0
+    mean = evaluated(name, value, 0.5 * (x0 + xd))
+    return (evaluated(name, value, x0) + 4.0 * mean + evaluated(name, value, xd)) / 6.0
 
 
 def solve_problem(solver: Solver, problem: FilmProblem, throw: bool) -> tuple[Array, Codes, Counts]:
@@ -106,8 +107,8 @@ def solve_problem(solver: Solver, problem: FilmProblem, throw: bool) -> tuple[Ar
     if problem.gamma is not None:
         unstable = unstable_films(problem.gamma)
         if throw and unstable.any():
-            raise UnstableMixtureError(f"gamma, {film_names(unstable, problem.shape)}: an eigenvalue is not positive, the "
-                                       "liquid would split: no steady film exists")
+            raise UnstableMixtureError(f"gamma, {film_names(unstable, problem.shape)}: an eigenvalue is not positive, "
+                                       "the liquid would split: no steady film exists")
         status[unstable] = FilmStatus.UNSTABLE
     if not status.any():
         return solver(problem)

@@ -87,8 +87,29 @@ class FilmProblem:
                            gamma, (len(part),))
 
 
+def reordered(problem: FilmProblem, order: NDArray[np.intp]) -> FilmProblem:
+    """The films with component order[m, i] of film m in place i, [Gamma] referred to the new last component."""
+    def moved(array: Array) -> Array:
+        return np.take_along_axis(array, order, axis=1)
+
+    films = np.arange(len(problem))[:, None, None]
+    gamma = problem.gamma
+    if gamma is not None:
+        n = problem.n
+        every = np.concatenate((np.eye(n - 1), -np.ones((1, n - 1))))      # all deviations from the first n-1
+        change = every[order[:, :-1]]
+        gamma = change @ gamma @ np.linalg.inv(change)
+    return FilmProblem(moved(problem.x0), moved(problem.xd), problem.kappa[films, order[:, :, None], order[:, None, :]],
+                       problem.c_t, moved(problem.nu), problem.s, gamma, problem.shape)
+
+
+def order_with_last(last: NDArray[np.intp], n: int) -> NDArray[np.intp]:
+    """The component orders (M, n) that put component last[m] at the end and keep the rest as it is."""
+    return np.argsort(np.arange(n) == last[:, None], axis=1, kind="stable")
+
+
 def flattened(array: Array, shape: tuple[int, ...], keep: int) -> Array:
-    """`array` broadcast to the batch `shape`, its batch axes made one, the last `keep` axes kept; a view if possible."""
+    """`array` broadcast to the batch `shape`, its batch axes made one, the last `keep` kept; a view if possible."""
     tail = array.shape[array.ndim - keep:]
     if array.shape[: array.ndim - keep] == shape and len(shape) == 1:
         return array
