@@ -27,15 +27,16 @@ def k_value_derivatives(properties: PropertyModel, T: Array, P: Array, x: Array,
         derivatives: KDerivatives = own(T, P, x, y)
         return derivatives
     T, P, x, y = (np.asarray(value, float) for value in (T, P, x, y))
-    ordinary = np.asarray(properties.condensable, bool) & np.asarray(properties.volatile, bool)
+    condensable, volatile = np.asarray(properties.condensable, bool), np.asarray(properties.volatile, bool)
+    ordinary = condensable & volatile
 
     def ln_k(T: Array, x: Array, y: Array) -> Array:
         return np.log(np.where(ordinary, properties.k_value(T, P, x, y), 1.0))
 
     step = TEMPERATURE_STEP * T / 300.0
     slope = (ln_k(T + step, x, y) - ln_k(T - step, x, y)) / (2.0 * step)[..., None]
-    liquid = _by_moles(lambda moles: ln_k(T, moles, y), x, ordinary)
-    vapor = _by_moles(lambda moles: ln_k(T, x, moles), y, ordinary)
+    liquid = _by_moles(lambda moles: ln_k(T, moles, y), x, condensable)
+    vapor = _by_moles(lambda moles: ln_k(T, x, moles), y, volatile)
     return KDerivatives(slope, liquid, vapor)
 
 

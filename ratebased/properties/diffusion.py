@@ -65,12 +65,14 @@ class WilkeChang:
 class HaydukMinhas:
     """Hayduk & Minhas (1982) for every pair: their aqueous form where the solvent is water, else the general one.
 
-    volume m3/mol and surface_tension N/m at the normal boiling point, water (mask), each (n,). Organic acids count as
-    dimers in most solvents: pass twice their volume.
+    solute_volume and solvent_volume m3/mol, surface_tension N/m, at the normal boiling point; water (mask); each (n,).
+    An organic acid as a solute counts as a dimer, except in water: give twice its volume in `solute_volume`, its own in
+    `solvent_volume`.
     """
 
-    def __init__(self, volume: Array, surface_tension: Array, water: Mask) -> None:
-        self._volumes = volume[:, None], volume[None, :]
+    def __init__(self, solute_volume: Array, solvent_volume: Array, surface_tension: Array, water: Mask) -> None:
+        self._volumes = solute_volume[:, None], solvent_volume[None, :]
+        self._own_volume = solvent_volume[:, None]
         self._tensions = surface_tension[:, None], surface_tension[None, :]
         self._water = water
 
@@ -80,7 +82,7 @@ class HaydukMinhas:
         general = hayduk_minhas(T, viscosity[..., None, :], *self._volumes, *self._tensions)
         if not self._water.any():
             return general
-        aqueous = hayduk_minhas_aqueous(T, viscosity[..., None, :], self._volumes[0])
+        aqueous = hayduk_minhas_aqueous(T, viscosity[..., None, :], self._own_volume)
         return np.where(self._water, aqueous, general)
 
 

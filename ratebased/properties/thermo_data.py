@@ -25,6 +25,8 @@ from .structure import counted_rings
 from .transport import gas_mixture, interaction_coefficients
 
 REFERENCE_TEMPERATURE = 298.15
+EQUILIBRIUM = ("ln_vapor_pressure", "vaporization_enthalpy")
+LIQUID_CAP = 0.98
 EXTRAPOLATION_WARNING = 60.0
 """K: a method used further outside its own range than this is warned about; nearer, the summary tells."""
 
@@ -145,9 +147,12 @@ def default_range(data: ComponentData, roles: Sequence[Role]) -> tuple[float, fl
     return min(boiling) - 60.0, min(max(boiling) + 60.0, 0.98 * min(critical))
 
 
-def pure_components(data: ComponentData, roles: Sequence[Role], T_range: tuple[float, float]) -> PureComponents:
+def pure_components(data: ComponentData, roles: Sequence[Role], T_range: tuple[float, float], *,
+                    from_equation_of_state: bool = False) -> PureComponents:
     """Sample every function each component needs in its role into one bank over `T_range`.
 
+    With an equation of state no vapour pressure or latent heat is read, and liquid properties of a component above 0.98
+    of its critical temperature are held at their value there.
     Raises `InputError` naming component and property where the library has none, and where `T_range` passes the
     critical temperature of a component that has to exist as a liquid. Warns `PropertyWarning` where a method is
     replaced or used more than 60 K outside its own range.
@@ -160,7 +165,7 @@ def pure_components(data: ComponentData, roles: Sequence[Role], T_range: tuple[f
         if data.is_air(i) and role is not Role.NONCONDENSING:
             raise InputError("air has no vapour-liquid equilibrium of its own: list it in `noncondensing`, or give "
                              "nitrogen and oxygen with `henry`")
-        if role.has_liquid_data and high >= data.constant("Tcs", i):
+        if not from_equation_of_state and role.has_liquid_data and high >= data.constant("Tcs", i):
             raise InputError(f"T_range: {high:g} K is not below the critical temperature of {data.names[i]} "
                              f"({data.constant('Tcs', i):g} K); narrow the range, dissolve it by `henry`, list it in "
                              "`noncondensing`, or use an equation of state")
@@ -172,14 +177,16 @@ def pure_components(data: ComponentData, roles: Sequence[Role], T_range: tuple[f
     for spec in _SPECS:
         group: list[ScalarFunction] = []
         for i, role in enumerate(roles):
-            if not _needed(spec, role):
+            if not _needed(spec, role) or from_equation_of_state and spec.name in EQUILIBRIUM:
                 value = volume_at_boiling[i] if spec.name == "liquid_volume" else spec.placeholder
                 group.append(_constant(value))
                 continue
             if data.is_air(i):
                 function, record = _air_function(data, spec)
             else:
-                function, record = _function(data, spec, i, T_range)
+                capped = from_equation_of_state and spec.phase == "liquid"
+                cap = LIQUID_CAP * data.constant("Tcs", i) if capped else math.inf
+                function, record = _function(data, spec, i, T_range, cap)
             group.append(function)
             pending[spec.name, i] = record
             limits.update(edge for edge in (record.T_low, record.T_high) if edge is not None and low < edge < high)
@@ -213,9 +220,13 @@ def _needed(spec: _Spec, role: Role) -> bool:
     return role is not Role.NONVOLATILE
 
 
-def _function(data: ComponentData, spec: _Spec, component: int, T_range: tuple[float, float]
+def _function(data: ComponentData, spec: _Spec, component: int, T_range: tuple[float, float], cap: float
               ) -> tuple[ScalarFunction, PropertyRecord]:
-    """The callable stored in the bank, and its record; another method where the default one fails in the range."""
+    """The callable stored in the bank, and its record; another method where the default one fails in the range.
+
+    Above `cap` the function is constant.
+    """
+    whole, T_range = T_range, (min(T_range[0], cap), min(T_range[1], cap))
     name, label = data.names[component], spec.name.replace("_", " ")
     correlation = data.correlation(spec.collection, component)
     if spec.name == "gas_viscosity":
@@ -224,27 +235,45 @@ def _function(data: ComponentData, spec: _Spec, component: int, T_range: tuple[f
         raise InputError(f"{name}: the data library has no {label}")
     notes = [OVERRIDES[spec.name]] if spec.name in OVERRIDES else []
     default = correlation.method
-    if not _usable(correlation, spec, T_range):
-        for method in sorted(correlation.all_methods, key=lambda m: (_distance(correlation, m, T_range), m)):
-            correlation.method = method
-            if _usable(correlation, spec, T_range):
-                break
-        else:
-            raise InputError(f"{name}: no method for {label} gives a positive value all over "
-                             f"{T_range[0]:g} to {T_range[1]:g} K")
-        notes.append(f"default ({_label(default)}) fails in the range, replaced")
-        warnings.warn(f"{name}: {label} by {_label(correlation.method)}, because {_label(default)} gives no positive "
-                      f"value all over {T_range[0]:g} to {T_range[1]:g} K", PropertyWarning, stacklevel=5)
-    T_low, T_high = correlation.T_limits.get(correlation.method, (None, None))
-    distance = _distance(correlation, correlation.method, T_range)
+    if not _usable(correlation, T_range) or _distance(correlation, default, T_range) > EXTRAPOLATION_WARNING:
+        notes.append(_replace_method(correlation, f"{name}: {label}", T_range))
+    method = correlation.method
+    T_low, T_high = correlation.T_limits.get(method, (None, None))
+    distance = _distance(correlation, method, T_range)
     if distance > 0:
         notes.append(f"extrapolated by up to {distance:.3g} K")
     if distance > EXTRAPOLATION_WARNING:
-        warnings.warn(f"{name}: {label} by {_label(correlation.method)} is used up to {distance:.3g} K outside its "
-                      f"range {T_low:g} to {T_high:g} K", PropertyWarning, stacklevel=5)
-    record = PropertyRecord(name, spec.name, _label(str(correlation.method)), T_low, T_high, _source(),
-                            note="; ".join(notes))
-    return _sampler(correlation, spec), record
+        warnings.warn(f"{name}: {label} by {_label(method)} is used up to {distance:.3g} K outside its range "
+                      f"{T_low:g} to {T_high:g} K", PropertyWarning, stacklevel=5)
+    if cap < whole[1]:
+        notes.append(f"held constant above {cap:.5g} K (0.98 Tc)")
+        T_high = cap
+    record = PropertyRecord(name, spec.name, _label(str(method)), T_low, T_high, _source(),
+                            note="; ".join(note for note in notes if note))
+    sampler = _sampler(correlation, spec)
+    return (sampler if cap >= whole[1] else lambda T: sampler(min(T, cap))), record
+
+
+def _replace_method(correlation: Any, what: str, T_range: tuple[float, float]) -> str:
+    """Set the method that is positive all over the range and reaches furthest into it; a remark for the summary.
+
+    Methods that reach equally far come in the data library's own order of preference. `InputError` where there is none.
+    """
+    default = correlation.method
+    preferred = {method: place for place, method in enumerate(correlation.ranked_methods)}
+    best: tuple[float, int, str] | None = None
+    for method in sorted(correlation.all_methods):
+        correlation.method = method
+        if _usable(correlation, T_range):
+            rank = (_distance(correlation, method, T_range), preferred.get(method, len(preferred)), method)
+            best = rank if best is None else min(best, rank)
+    if best is None:
+        raise InputError(f"{what}: no method gives a positive value all over {T_range[0]:g} to {T_range[1]:g} K")
+    correlation.method = best[2]
+    if best[2] == default:
+        return ""
+    low, high = correlation.T_limits.get(default, T_range)
+    return f"the default, {_label(default)}, holds only from {low:g} to {high:g} K"
 
 
 def _label(method: str) -> str:
@@ -258,8 +287,8 @@ def _sampler(correlation: Any, spec: _Spec) -> ScalarFunction:
     return lambda T: spec.transform(correlation.T_dependent_property(T))
 
 
-def _usable(correlation: Any, spec: _Spec, T_range: tuple[float, float]) -> bool:
-    """Whether the property is a positive number all over the range, a method's own limits included."""
+def _usable(correlation: Any, T_range: tuple[float, float]) -> bool:
+    """Whether the property is a positive number all over the range."""
     for T in np.linspace(*T_range, 25):
         value = correlation.T_dependent_property(float(T))
         if value is None or not np.isfinite(value) or value <= 0.0:
@@ -307,6 +336,23 @@ def _boiling_volume(data: ComponentData, component: int) -> float:
         if volume is not None and volume > 0:
             return float(volume)
     return float(tyn_calus.silent(data.constant("Vcs", component)))
+
+
+def boiling_surface_tension(data: ComponentData, boiling_temperature: Array) -> Array:
+    """Surface tensions of the pure liquids at their normal boiling points, N/m, (n,).
+
+    Raises `InputError` naming a component without one.
+    """
+    tensions = []
+    for i, T in enumerate(boiling_temperature):
+        tension = None if data.is_air(i) else data.correlation("SurfaceTensions", i).T_dependent_property(float(T))
+        if tension is None or not tension > 0.0:
+            if data.is_air(i):
+                tension = 8.85e-3  # nitrogen at its boiling point
+            else:
+                raise InputError(f"{data.names[i]}: the data library has no surface tension at the boiling point")
+        tensions.append(float(tension))
+    return np.array(tensions)
 
 
 def _diffusion_volume(data: ComponentData, component: int) -> float:

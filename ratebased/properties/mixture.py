@@ -1,0 +1,143 @@
+"""What the property models built from pure-component data share: names, checks, transport, saturation, summary."""
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from typing import TYPE_CHECKING
+
+import numpy as np
+from numpy.typing import ArrayLike
+
+from ..errors import InputError
+from .components import PropertyRecord, PureComponents, Role, records_frame
+from .diffusion import GasDiffusivity, LiquidDiffusivity
+from .jet import Jet
+from .protocol import GAS_CONSTANT, Array, LiquidTransport, Mask, PropertyModel, VaporTransport
+from .saturation import bubble_point, dew_point, smallest_gamma_eigenvalue
+from .transport import gas_mixture, interaction_coefficients, liquid_conductivity, liquid_viscosity, surface_tension
+
+if TYPE_CHECKING:
+    import pandas as pd
+
+SurfaceTension = Callable[[Array, Array, Array], Array]
+"""(T, x, sigma) -> N/m of the mixture, sigma (..., n) of the pure liquids."""
+
+
+class MixtureModel:
+    """Base of the models: components, masks, mixing rules for transport, saturation points and the summary."""
+
+    def __init__(self, components: PureComponents, *, gas_diffusivity: GasDiffusivity,
+                 liquid_diffusivity: LiquidDiffusivity, surface_tension: SurfaceTension | None,
+                 records: Sequence[PropertyRecord]) -> None:
+        roles = components.roles
+        self.components = components
+        self.names = components.names
+        self.molar_mass = components.molar_mass
+        self.condensable: Mask = np.array([role is not Role.NONCONDENSING for role in roles])
+        self.volatile: Mask = np.array([role is not Role.NONVOLATILE for role in roles])
+        self.T_range = components.T_range
+        self._ordinary = self.condensable & self.volatile
+        self._all_ordinary = bool(self._ordinary.all())
+        self._liquid = np.array([role.has_liquid_data for role in roles])
+        self._all_liquid = bool(self._liquid.all())
+        self._gas_diffusivity = gas_diffusivity
+        self._liquid_diffusivity = liquid_diffusivity
+        self._surface_tension = surface_tension
+        self._records = (*components.records, *records)
+        bank = components.bank
+        self._gas_enthalpy = bank.view(("gas_enthalpy", 0))
+        self._gas_heat_capacity = bank.view(("gas_enthalpy", 1))
+        self._vapor_values = bank.view(("gas_viscosity", 0), ("gas_conductivity", 0))
+        self._liquid_values = bank.view(("liquid_volume", 0), ("ln_liquid_viscosity", 0), ("liquid_conductivity", 0),
+                                        ("surface_tension", 0))
+
+    def _checked(self, name: str, value: ArrayLike) -> Array:
+        composition = np.asarray(value, float)
+        if composition.shape[-1:] != (len(self.names),):
+            raise InputError(f"{name}: expected {len(self.names)} components on the last axis, got shape "
+                             f"{composition.shape}")
+        if not np.isfinite(composition).all():
+            where = tuple(int(i) for i in np.argwhere(~np.isfinite(composition))[0])
+            raise InputError(f"{name}{list(where)} = {composition[where]}: expected a finite number")
+        return composition
+
+    def _liquid_composition(self, x: ArrayLike) -> Array:
+        composition = self._checked("x", x)
+        if not self._all_liquid and not (composition[..., self._liquid].sum(-1) > 0).all():
+            raise InputError("x: no component that is a liquid of its own is present")
+        return composition
+
+    # transport --------------------------------------------------------------------------------------------------
+
+    def _vapor_transport(self, T: Array, P: Array, y: Array, density: Array, heat_capacity: Array) -> VaporTransport:
+        """Mixing rules at low pressure with a molar density (...) and partial molar heat capacities (..., n)."""
+        viscosity, conductivity = self._vapor_values(T)
+        phi = interaction_coefficients(viscosity, self.molar_mass)
+        shape = np.broadcast_shapes(T.shape, P.shape, y.shape[:-1])
+        n = len(self.names)
+        density = np.broadcast_to(density, shape)
+        return VaporTransport(density, density * (y @ self.molar_mass),
+                              np.broadcast_to(gas_mixture(y, viscosity, phi), shape),
+                              np.broadcast_to((y * heat_capacity).sum(-1), shape),
+                              np.broadcast_to(gas_mixture(y, conductivity, phi), shape),
+                              np.broadcast_to(self._gas_diffusivity(T, P), (*shape, n, n)))
+
+    def _liquid_transport(self, T: Array, P: Array, x: Array, density: Array | None, heat_capacity: Array
+                          ) -> LiquidTransport:
+        """Mixing rules with a molar density (...), None where volumes add up, and partial heat capacities (..., n)."""
+        volume, ln_viscosity, conductivity, tension = self._liquid_values(T)
+        own = x
+        if not self._all_liquid:
+            own = np.where(self._liquid, x, 0.0)
+            own = own / own.sum(-1, keepdims=True)
+        inside = x if self.condensable.all() else np.where(self.condensable, x, 0.0)
+        shape = np.broadcast_shapes(T.shape, P.shape, x.shape[:-1])
+        n = len(self.names)
+        density = np.broadcast_to(1.0 / (inside * volume).sum(-1) if density is None else density, shape)
+        sigma = surface_tension(own, tension, volume) if self._surface_tension is None else np.asarray(
+            self._surface_tension(T, x, tension), float)
+        diffusivity = self._liquid_diffusivity(T, x, np.exp(ln_viscosity))
+        return LiquidTransport(density, density * (inside @ self.molar_mass),
+                               np.broadcast_to(liquid_viscosity(own, ln_viscosity), shape),
+                               np.broadcast_to((inside * heat_capacity).sum(-1), shape),
+                               np.broadcast_to(liquid_conductivity(own, conductivity, self.molar_mass), shape),
+                               np.broadcast_to(diffusivity, (*shape, n, n)), np.broadcast_to(sigma, shape))
+
+    # saturation and report --------------------------------------------------------------------------------------
+
+    def bubble_point(self: PropertyModel, P: ArrayLike, x: ArrayLike, T_guess: ArrayLike | None = None, *,
+                     y_noncondensing: ArrayLike | None = None) -> tuple[Array, Array]:
+        """(T, y) at the bubble point; see `saturation.bubble_point`."""
+        return bubble_point(self, P, x, T_guess, y_noncondensing=y_noncondensing)
+
+    def dew_point(self: PropertyModel, P: ArrayLike, y: ArrayLike, T_guess: ArrayLike | None = None, *,
+                  x_nonvolatile: ArrayLike | None = None) -> tuple[Array, Array]:
+        """(T, x) at the dew point; see `saturation.dew_point`."""
+        return dew_point(self, P, y, T_guess, x_nonvolatile=x_nonvolatile)
+
+    def smallest_gamma_eigenvalue(self: PropertyModel, T: ArrayLike, P: ArrayLike, x: ArrayLike) -> Array:
+        """Smallest real part among the eigenvalues of [Gamma], (...)."""
+        return smallest_gamma_eigenvalue(self, T, P, x)
+
+    def summary(self) -> pd.DataFrame:
+        """Where every property comes from: component, property, method, T_low_K, T_high_K, source, fit_error, note."""
+        return records_frame(self._records)
+
+
+def thermodynamic_factor(x: Array, J: Array) -> Array:
+    """[Gamma], (..., n-1, n-1), from mole fractions and the mole-number derivatives of ln gamma or ln phi."""
+    n = x.shape[-1] - 1
+    gamma: Array = np.eye(n) + x[..., :n, None] * (J[..., :n, :n] - J[..., :n, n:])
+    return gamma
+
+
+def excess_enthalpy(T: Array, ln_gamma: Jet) -> Array:
+    """-R T2 dln(gamma_i)/dT, J/mol, (..., n), from a jet of order 1; the same of ln phi is the departure."""
+    result: Array = -GAS_CONSTANT * (np.asarray(T) ** 2)[..., None] * ln_gamma.terms[1]
+    return result
+
+
+def excess_heat_capacity(T: Array, ln_gamma: Jet) -> Array:
+    """Temperature derivative of `excess_enthalpy`, J/(mol K), (..., n), from a jet of order 2."""
+    T = np.asarray(T)[..., None]
+    result: Array = -GAS_CONSTANT * T * (2.0 * ln_gamma.terms[1] + T * ln_gamma.terms[2])
+    return result
