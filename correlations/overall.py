@@ -31,7 +31,7 @@ def oconnell(relative_volatility: Values, liquid_viscosity: Values) -> Array:
 @correlation("overall column efficiency", "trays, distillation", "-", _distillation(Confidence.CROSS_CHECKED),
              dimensional=True)
 def oconnell_lockett(relative_volatility: Values, liquid_viscosity: Values) -> Array:
-    """Overall efficiency of a distillation column, O'Connell's data as fitted by Lockett [-]: 0.492 (alpha mu)^-0.245."""
+    """Overall efficiency of a distillation column, Lockett's fit [-]: 0.492 (alpha mu)^-0.245."""
     return 0.492 * (relative_volatility * liquid_viscosity * 1e3) ** -0.245
 
 
