@@ -1,4 +1,7 @@
 """Distillation and absorption columns: equilibrium-stage and rate-based, side by side."""
+from .back_calculation import EfficiencyTable, HeightTable
+from .compare import Comparison, compare, feed_back_error
+from .contact import Averaged, FlowPattern, Mixed, Plug
 from .definition import (
     Column,
     ContactorPressure,
@@ -11,11 +14,13 @@ from .definition import (
     VaporDraw,
     VaporFeed,
 )
-from .contact import Averaged, FlowPattern, Mixed, Plug
+from .entropy import EntropyProduction
 from .equilibrium import solve_equilibrium
 from .feeds import FlashResult, flash
-from .ratebased import solve_ratebased
+from .from_table import column_from_mapping, column_from_table
 from .profile import ContactRecord, ProductStream, Profile, SolutionReport
+from .ratebased import solve_ratebased
+from .resize import GridRefinement, refine_grid, resized
 from .specifications import (
     BoilupRatio,
     BottomsRate,
@@ -24,13 +29,17 @@ from .specifications import (
     DistillateRate,
     Product,
     ProductPurity,
-    ReboilerDuty,
     RefluxRatio,
+    ReboilerDuty,
 )
+from .stage_system import Entering, StageBlocks, StageUnknowns, stage_residuals
 
 __all__ = [
-    "BoilupRatio", "BottomsRate", "Column", "ComponentRecovery", "CondenserDuty", "ContactRecord", "ContactorPressure",
-    "DistillateRate", "Feed", "FlashResult", "LiquidDraw", "LiquidFeed", "PartialCondenser", "Product", "ProductPurity",
-    "ProductStream", "Profile", "Reboiler", "RefluxRatio", "ReboilerDuty", "SolutionReport", "TotalCondenser",
-    "VaporDraw", "VaporFeed", "flash", "solve_equilibrium",
+    "Averaged", "BoilupRatio", "BottomsRate", "Column", "Comparison", "ComponentRecovery", "CondenserDuty",
+    "ContactRecord", "ContactorPressure", "DistillateRate", "EfficiencyTable", "Entering", "EntropyProduction", "Feed",
+    "FlashResult", "FlowPattern", "GridRefinement", "HeightTable", "LiquidDraw", "LiquidFeed", "Mixed",
+    "PartialCondenser", "Plug", "Product", "ProductPurity", "ProductStream", "Profile", "Reboiler", "ReboilerDuty",
+    "RefluxRatio", "SolutionReport", "StageBlocks", "StageUnknowns", "TotalCondenser", "VaporDraw", "VaporFeed",
+    "column_from_mapping", "column_from_table", "compare", "feed_back_error", "flash", "refine_grid", "resized",
+    "solve_equilibrium", "solve_ratebased", "stage_residuals",
 ]

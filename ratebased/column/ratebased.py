@@ -9,6 +9,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
+from ..arguments import positive_scalar
 from ..equipment.protocol import Hydraulics
 from ..errors import ConvergenceError, InputError
 from ..properties.protocol import Array, PropertyModel
@@ -45,7 +46,8 @@ class RateOutcome:
 
 def solve_ratebased(column: Column, properties: PropertyModel, contactor: ContactorLayout, *,
                     vapor: FlowPattern | None = None, liquid: FlowPattern | None = None,
-                    start: Profile | None = None, progress: Progress | None = None) -> Profile:
+                    start: Profile | None = None, area_factor: float = 1.0,
+                    progress: Progress | None = None) -> Profile:
     """The column with mass and heat transfer rates on its contact stages.
 
     Parameters
@@ -56,6 +58,7 @@ def solve_ratebased(column: Column, properties: PropertyModel, contactor: Contac
         what leaves, second order in the height) on packed segments. `Plug` is an exponential mean.
     start : a profile of the same column shape to start from (equilibrium or rate-based); None solves the equilibrium
         column first.
+    area_factor : multiplies the contactor's areas, to study how far the result depends on them.
     progress : called with iteration number and scaled residual.
 
     Returns
@@ -72,11 +75,12 @@ def solve_ratebased(column: Column, properties: PropertyModel, contactor: Contac
     """
     if column.search is not None:
         return with_search(column, lambda trial, last: solve_ratebased(trial, properties, contactor, vapor=vapor,
-                                                                       liquid=liquid))
+                                                                       liquid=liquid, area_factor=area_factor))
     packed = column.segment_height is not None
     default: FlowPattern = Averaged() if packed else Mixed()
     problem = make_problem(column, properties, None if start is None else start.P)
-    setup = RateSetup(problem, layout(contactor, column), vapor or default, liquid or default)
+    setup = RateSetup(problem, layout(contactor, column), vapor or default, liquid or default,
+                      positive_scalar("area_factor", area_factor))
     state = _given_start(setup, start) if start is not None else None
     path, outcome = _solve(setup, state, progress)
     if isinstance(column.pressure, ContactorPressure):
@@ -161,7 +165,7 @@ def _solve(setup: RateSetup, state: RateState | None, progress: Progress | None)
 
     def first(factor: float) -> RateState:
         at_ends = np.where(problem.column.contact, equilibrium.T, T_L)
-        return _start_from(replace(setup, area_factor=factor), equilibrium.v, at_ends, equilibrium.l, T_L)
+        return _start_from(replace(setup, area_factor=factor * setup.area_factor), equilibrium.v, at_ends, equilibrium.l, T_L)
 
     outcome = newton(setup, first(1.0), progress=progress)
     if outcome.converged:
@@ -275,7 +279,7 @@ def _area_continuation(setup: RateSetup, first: object, progress: Progress | Non
         else:
             guess = _lifted(setup.problem, outcome.state)
             guess.z[:, :setup.problem.n] *= reached / factor
-        trial = newton(replace(setup, area_factor=factor), guess, tolerance=TOLERANCE if factor == 1.0 else 1e-5, limit=40,
+        trial = newton(replace(setup, area_factor=factor * setup.area_factor), guess, tolerance=TOLERANCE if factor == 1.0 else 1e-5, limit=40,
                        progress=progress)
         if trial.converged:
             outcome, reached = trial, factor
