@@ -15,9 +15,9 @@ from numpy.typing import ArrayLike, NDArray
 from ..bootstrap import Bootstrap
 from ..maxwell_stefan import film_matrix, reduced, solve, wilke_resistance
 from .blocks import linearized_blocks
-from .exact import Counts, mean_resistance, solve_exact, stagnant_component
+from .exact import mean_resistance, solve_exact, stagnant_component
 from .methods import solve_frozen
-from .problem import Array, Codes, Composition, FilmProblem, FilmStatus, order_with_last, reordered
+from .problem import Array, Composition, Counts, FilmProblem, FilmStatus, Solved, order_with_last, reordered
 from .result import FilmFlux, RateFactor
 from .spectral import coth_values
 
@@ -33,7 +33,7 @@ def linearized(x0: ArrayLike, xd: ArrayLike, kappa: ArrayLike | Composition, c_t
     driving forces (a few per cent on published ternary films), worst at high total flux with unlike diffusivities.
     Source: Toor (1964), Stewart and Prober (1964).
     """
-    def solver(problem: FilmProblem) -> tuple[Array, Codes, Counts]:
+    def solver(problem: FilmProblem) -> Solved:
         return solve_exact(problem, form=linearized_blocks)
 
     return solve_frozen(solver, RateFactor.TOTAL, x0, xd, kappa, c_t, bootstrap, gamma, throw)
@@ -49,7 +49,7 @@ def effective(x0: ArrayLike, xd: ArrayLike, kappa: ArrayLike | Composition, c_t:
     misses osmotic and reverse diffusion entirely. Arguments, result and errors as in `krishna_standart`.
     Source: Wilke (1950); Taylor and Krishna (1993) ch. 6 (from memory).
     """
-    def solver(problem: FilmProblem) -> tuple[Array, Codes, Counts]:
+    def solver(problem: FilmProblem) -> Solved:
         return solve_effective(problem, bootstrap.component)
 
     return solve_frozen(solver, RateFactor.NONE, x0, xd, kappa, c_t, bootstrap, gamma, throw)
@@ -62,7 +62,7 @@ def explicit_krishna(x0: ArrayLike, xd: ArrayLike, kappa: ArrayLike | Compositio
     Arguments, result and errors as in `krishna_standart`. Source: Krishna (1979), as in Taylor and Krishna (1993)
     sec. 8.5 (from memory).
     """
-    def solver(problem: FilmProblem) -> tuple[Array, Codes, Counts]:
+    def solver(problem: FilmProblem) -> Solved:
         return _closed(problem, mean_diffusion(problem), 0.5 * (problem.x0 + problem.xd))
 
     return solve_frozen(solver, RateFactor.NONE, x0, xd, kappa, c_t, bootstrap, gamma, throw)
@@ -78,7 +78,7 @@ def explicit_burghardt_krupiczka(x0: ArrayLike, xd: ArrayLike, kappa: ArrayLike 
     faces. Arguments, result and errors as in `krishna_standart`. Source: Burghardt and Krupiczka (1975), as in Taylor
     and Krishna (1993) sec. 8.5 (from memory).
     """
-    def solver(problem: FilmProblem) -> tuple[Array, Codes, Counts]:
+    def solver(problem: FilmProblem) -> Solved:
         factor = np.asarray(coth_values(_flux_exponent(problem))[0], dtype=np.float64)
         return _closed(problem, factor[:, None] * mean_diffusion(problem), 0.5 * (problem.x0 + problem.xd))
 
@@ -93,7 +93,7 @@ def explicit_taylor_smith(x0: ArrayLike, xd: ArrayLike, kappa: ArrayLike | Compo
     For a given total flux F = N_t/(c_t k) of the mean pair. Arguments, result and errors as in `krishna_standart`.
     Source: Taylor and Smith (1982), as in Taylor and Krishna (1993) sec. 8.5 (from memory).
     """
-    def solver(problem: FilmProblem) -> tuple[Array, Codes, Counts]:
+    def solver(problem: FilmProblem) -> Solved:
         F = _flux_exponent(problem)
         factor = np.asarray(coth_values(F)[0], dtype=np.float64) - 0.5 * F
         return _closed(problem, factor[:, None] * mean_diffusion(problem), problem.x0)
@@ -124,7 +124,7 @@ def _flux_exponent(problem: FilmProblem) -> Array:
     return np.where(s == 0, closed, N_t * mean_resistance(2.0 * mean, problem.K))
 
 
-def _closed(problem: FilmProblem, J: Array, x: Array) -> tuple[Array, Codes, Counts]:
+def _closed(problem: FilmProblem, J: Array, x: Array) -> Solved:
     """N = J + x N_t with N_t from the bootstrap."""
     carried = (problem.nu * x).sum(-1)
     with np.errstate(divide="ignore", invalid="ignore"):
@@ -132,10 +132,10 @@ def _closed(problem: FilmProblem, J: Array, x: Array) -> tuple[Array, Codes, Cou
     found = np.isfinite(N).all(-1)
     N[~found] = np.nan
     status = np.where(found, FilmStatus.CONVERGED, FilmStatus.NOT_CONVERGED).astype(np.int8)
-    return N, status, np.ones(len(problem), dtype=np.int64)
+    return Solved(N, status, np.ones(len(problem), dtype=np.int64))
 
 
-def solve_effective(problem: FilmProblem, component: int | None) -> tuple[Array, Codes, Counts]:
+def solve_effective(problem: FilmProblem, component: int | None) -> Solved:
     """The effective-diffusivity film: one equation in the total flux, solved with a bracket."""
     n = problem.n
     mean = 0.5 * (problem.x0 + problem.xd)
@@ -161,7 +161,7 @@ def solve_effective(problem: FilmProblem, component: int | None) -> tuple[Array,
     N[~ok] = np.nan
     fluxes = np.empty_like(N)
     np.put_along_axis(fluxes, order, N, axis=1)
-    return fluxes, np.where(ok, FilmStatus.CONVERGED, FilmStatus.NOT_CONVERGED).astype(np.int8), steps
+    return Solved(fluxes, np.where(ok, FilmStatus.CONVERGED, FilmStatus.NOT_CONVERGED).astype(np.int8), steps)
 
 
 def _total_flux(slope: Array, weight: Array, rate: Array, s: Array) -> tuple[Array, NDArray[np.bool_], Counts]:

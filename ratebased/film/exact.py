@@ -6,13 +6,14 @@ tested against this path.
 from __future__ import annotations
 
 from collections.abc import Callable
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
 from ..maxwell_stefan import film_matrix, reduced, solve
 from .blocks import FilmBlocks, coth_blocks
-from .problem import Array, Codes, FilmProblem, FilmStatus, Mask, order_with_last, reordered
+from .problem import Array, Counts, FilmProblem, FilmStatus, Mask, Solved, order_with_last, reordered
 
 STEP_TOLERANCE = 1e-12
 """Newton stops when the step is below this fraction of max|N|, or when rounding keeps it from getting there."""
@@ -28,7 +29,9 @@ UNPHYSICAL_ROTATION = np.pi
 Measured on random films: physical roots never above 1.5, unphysical ones never below 5.
 """
 
-Counts = NDArray[np.int64]
+HIGH_FLUX = 50.0
+"""Largest |rate factor|, an eigenvalue of Gamma^-1 Phi, above which the film model itself is doubtful."""
+
 BlockForm = Callable[[Array, Array, Array, Array, Array | None], FilmBlocks]
 """`coth_blocks` or `linearized_blocks`: the film equations of a method."""
 
@@ -50,7 +53,11 @@ def low_flux_start(problem: FilmProblem) -> Array:
     """
     x0, xd, nu, s = problem.x0, problem.xd, problem.nu, problem.s
     D = x0 - xd
-    share = mean_weight((nu * x0).sum(-1), (nu * xd).sum(-1), s, nu, mean_resistance(x0 + xd, problem.K))
+    factor = None
+    if s.any():
+        with np.errstate(divide="ignore", invalid="ignore"):
+            factor = mean_resistance(x0 + xd, problem.K) * s / nu.mean(-1)
+    share = mean_weight((nu * x0).sum(-1), (nu * xd).sum(-1), s, factor)
     system = film_matrix(xd + share[:, None] * D, problem.K)
     right = D.copy()
     if problem.gamma is not None:
@@ -71,14 +78,17 @@ def mean_resistance(total: Array, K: Array) -> Array:
     return np.where(weight > 1e-12, mean, K.mean((-1, -2)))
 
 
-def mean_weight(a: Array, b: Array, s: Array, nu: Array, resistance: Array) -> Array:
-    """Share t of face 0 in x^ = t x0 + (1-t) xd, with a = nu . x0, b = nu . xd (M)."""
+def mean_weight(a: Array, b: Array, s: Array, factor: Array | None) -> Array:
+    """Share t of face 0 in x^ = t x0 + (1-t) xd, with a = nu . x0, b = nu . xd (M).
+
+    factor: s K/mean(nu), the flux factor of the mean resistance K, for the films with s != 0; None if there are none.
+    """
     with np.errstate(all="ignore"):
         ratio = np.log(b / a)
-        closed = np.where(np.abs(ratio) < 1e-3, 0.5 + ratio / 12.0, b / (b - a) - 1.0 / ratio)
-        factor = resistance * s / nu.mean(-1)
-        given = np.where(np.abs(factor) < 1e-3, 0.5 + factor / 12.0, 1.0 + 1.0 / np.expm1(factor) - 1.0 / factor)
-        share = np.where(s == 0, closed, given)
+        share = np.where(np.abs(ratio) < 1e-3, 0.5 + ratio / 12.0, b / (b - a) - 1.0 / ratio)
+        if factor is not None:
+            given = np.where(np.abs(factor) < 1e-3, 0.5 + factor / 12.0, 1.0 + 1.0 / np.expm1(factor) - 1.0 / factor)
+            share = np.where(s == 0, share, given)
     return np.where(np.isfinite(share), np.clip(share, 0.0, 1.0), 0.5)
 
 
@@ -159,14 +169,17 @@ def newton(problem: FilmProblem, N: Array, form: BlockForm = coth_blocks) -> tup
     return N, done, steps
 
 
-def physical(problem: FilmProblem, N: Array) -> Mask:
-    """Where the profile does not rotate out of the simplex."""
+def rate_factors(problem: FilmProblem, N: Array) -> NDArray[Any]:
+    """Eigenvalues of Gamma^-1 Phi, (M, n-1)."""
     Z = reduced(film_matrix(N, problem.K))
     if problem.gamma is not None:
         Z = solve(problem.gamma, Z)
-    if problem.n == 2:
-        return np.ones(len(problem), dtype=bool)
-    return np.asarray(np.abs(np.linalg.eigvals(Z).imag).max(-1) <= UNPHYSICAL_ROTATION)
+    return np.asarray(np.linalg.eigvals(Z))
+
+
+def physical(problem: FilmProblem, N: Array) -> Mask:
+    """Where the profile does not rotate out of the simplex."""
+    return np.asarray(np.abs(rate_factors(problem, N).imag).max(-1, initial=0.0) <= UNPHYSICAL_ROTATION)
 
 
 def other_branch(problem: FilmProblem, N: Array, form: BlockForm = coth_blocks) -> Mask:
@@ -208,8 +221,8 @@ def continuation(problem: FilmProblem, form: BlockForm = coth_blocks) -> tuple[A
 
 
 def solve_exact(problem: FilmProblem, start: Array | None = None, form: BlockForm = coth_blocks
-                ) -> tuple[Array, Codes, Counts]:
-    """Fluxes (M, n), `FilmStatus` codes and iterations of films that passed `existence`. NaN where none was found."""
+                ) -> Solved:
+    """The films that passed `existence`, from `start` (M, n) or from `low_flux_start`. NaN where none was found."""
     inner, order = pivoted(problem)
     first = low_flux_start(problem) if start is None else start
     N, ok, steps = newton(inner, np.take_along_axis(first, order, axis=1), form)
@@ -225,14 +238,10 @@ def solve_exact(problem: FilmProblem, start: Array | None = None, form: BlockFor
         steps[left] += used
     status = np.where(ok, FilmStatus.CONVERGED, FilmStatus.NOT_CONVERGED).astype(np.int8)
     suspect = np.flatnonzero(ok)
-    suspect = suspect[other_branch(inner.take(suspect), N[suspect], form)]
-    if len(suspect):
-        status[suspect] = FilmStatus.OTHER_BRANCH
-        again, found, used = continuation(inner.take(suspect), form)
-        steps[suspect] += used
-        N[suspect[found]] = again[found]
-        status[suspect[found]] = FilmStatus.CONVERGED
+    status[suspect[other_branch(inner.take(suspect), N[suspect], form)]] = FilmStatus.OTHER_BRANCH
+    N[~ok] = 0.0
+    high = np.abs(rate_factors(inner, N)).max(-1) > HIGH_FLUX
     N[~ok] = np.nan
     fluxes = np.empty_like(N)
     np.put_along_axis(fluxes, order, N, axis=1)
-    return fluxes, status, steps
+    return Solved(fluxes, status, steps, high)

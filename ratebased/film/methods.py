@@ -17,14 +17,12 @@ from ..errors import (
     OtherSolutionWarning,
     UnstableMixtureError,
 )
-from .exact import Counts, solve_exact
-from .problem import MESSAGES, Array, Codes, Composition, FilmProblem, FilmStatus, existence, film_names, pose
+from .exact import HIGH_FLUX, solve_exact
+from .problem import MESSAGES, Array, Composition, FilmProblem, FilmStatus, Solved, existence, film_names, pose
 from .result import FilmFlux, RateFactor
+from .ternary import solve_ternary
 
-Solver = Callable[[FilmProblem], tuple[Array, Codes, Counts]]
-
-HIGH_FLUX = 50.0
-"""|A(N)|_1, the rate factors of a film, above which the film model itself is doubtful."""
+Solver = Callable[[FilmProblem], Solved]
 
 FROZEN_GAMMA_DOUBT = 0.02
 """Estimated max|dN|/max|N| of freezing [Gamma] and kappa at the mean composition above which a warning is given."""
@@ -59,7 +57,7 @@ def krishna_standart(x0: ArrayLike, xd: ArrayLike, kappa: ArrayLike | Compositio
     `HighFluxWarning` (rate factors above 50), `ApproximationWarning` (gamma or kappa a function, and freezing it
     changes N by more than 2 %). Source: Krishna and Standart (1976).
     """
-    return solve_frozen(solve_exact, RateFactor.FLUXES, x0, xd, kappa, c_t, bootstrap, gamma, throw)
+    return solve_frozen(solve_film, RateFactor.FLUXES, x0, xd, kappa, c_t, bootstrap, gamma, throw)
 
 
 def solve_frozen(solver: Solver, rate: RateFactor, x0: ArrayLike, xd: ArrayLike, kappa: ArrayLike | Composition,
@@ -67,14 +65,14 @@ def solve_frozen(solver: Solver, rate: RateFactor, x0: ArrayLike, xd: ArrayLike,
     """Check, freeze what is a function of x at the mean composition, solve, report."""
     if not (callable(kappa) or callable(gamma)):
         problem = pose(x0, xd, kappa, c_t, bootstrap, gamma)
-        return report(problem, *solve_problem(solver, problem, throw), rate, throw)
+        return report(problem, solve_problem(solver, problem, throw), rate, throw)
     x0, xd = mole_fractions("x0", x0), mole_fractions("xd", xd)
     mean = 0.5 * (x0 + xd)
     problem = pose(x0, xd, evaluated("kappa", kappa, mean), c_t, bootstrap, evaluated_gamma(gamma, mean))
-    flux = report(problem, *solve_problem(solver, problem, throw), rate, throw)
+    flux = report(problem, solve_problem(solver, problem, throw), rate, throw)
     averaged = pose(x0, xd, _simpson("kappa", kappa, x0, xd), c_t, bootstrap,
                     None if gamma is None else _simpson("gamma", gamma, x0, xd))
-    other, _, _ = solve_problem(solver, averaged, False)
+    other = solve_problem(solver, averaged, False).N
     size = np.abs(flux.N).max(-1)
     change = np.abs(other.reshape(flux.N.shape) - flux.N).max(-1) / np.where(size > 0, size, 1.0)
     doubtful = change > FROZEN_GAMMA_DOUBT
@@ -101,7 +99,7 @@ def _simpson(name: str, value: ArrayLike | Composition, x0: Array, xd: Array) ->
     return (evaluated(name, value, x0) + 4.0 * mean + evaluated(name, value, xd)) / 6.0
 
 
-def solve_problem(solver: Solver, problem: FilmProblem, throw: bool) -> tuple[Array, Codes, Counts]:
+def solve_problem(solver: Solver, problem: FilmProblem, throw: bool) -> Solved:
     """Solve the films for which a solution may exist; `UnstableMixtureError` if `throw`."""
     status = existence(problem)
     if problem.gamma is not None:
@@ -114,9 +112,28 @@ def solve_problem(solver: Solver, problem: FilmProblem, throw: bool) -> tuple[Ar
         return solver(problem)
     N = np.full((len(problem), problem.n), np.nan)
     steps = np.zeros(len(problem), dtype=np.int64)
+    high = np.zeros(len(problem), dtype=bool)
     fit = np.flatnonzero(status == FilmStatus.CONVERGED)
-    N[fit], status[fit], steps[fit] = solver(problem.take(fit))
-    return N, status, steps
+    part = solver(problem.take(fit))
+    N[fit], status[fit], steps[fit] = part.N, part.status, part.steps
+    if part.high is not None:
+        high[fit] = part.high
+    return Solved(N, status, steps, high)
+
+
+def solve_film(problem: FilmProblem) -> Solved:
+    """The exact film: the fast path where there is one, what it leaves by the robust path."""
+    if problem.gamma is not None or problem.n != 3:
+        return solve_exact(problem)
+    fast = solve_ternary(problem)
+    left = np.flatnonzero(fast.status)
+    if len(left):
+        rest = solve_exact(problem.take(left), fast.N[left])
+        fast.N[left], fast.status[left] = rest.N, rest.status
+        fast.steps[left] += rest.steps
+        if fast.high is not None and rest.high is not None:
+            fast.high[left] = rest.high
+    return fast
 
 
 def unstable_films(gamma: Array) -> NDArray[np.bool_]:
@@ -124,17 +141,20 @@ def unstable_films(gamma: Array) -> NDArray[np.bool_]:
     return np.asarray(np.linalg.eigvals(gamma).real.min(-1) <= 0)
 
 
-def report(problem: FilmProblem, N: Array, status: Codes, steps: Counts, rate: RateFactor, throw: bool,
-           error: Array | None = None) -> FilmFlux:
+def report(problem: FilmProblem, solved: Solved, rate: RateFactor, throw: bool, error: Array | None = None) -> FilmFlux:
     """A `FilmFlux` in the caller's batch shape, with the errors and warnings that go with it."""
     shape, n = problem.shape, problem.n
-    flux = FilmFlux(N.reshape(*shape, n), problem.x0.reshape(*shape, n), problem.xd.reshape(*shape, n),
+    flux = FilmFlux(solved.N.reshape(*shape, n), problem.x0.reshape(*shape, n), problem.xd.reshape(*shape, n),
                     restored(problem.kappa, shape, 2), restored(problem.c_t, shape, 0), restored(problem.nu, shape, 1),
                     restored(problem.s, shape, 0),
                     None if problem.gamma is None else restored(problem.gamma, shape, 2),
-                    steps.reshape(shape), status.reshape(shape), None if error is None else error.reshape(shape), rate)
-    if status.any():
-        _complain(flux, status, shape, throw)
+                    solved.steps.reshape(shape), solved.status.reshape(shape),
+                    None if error is None else error.reshape(shape), rate)
+    if solved.status.any():
+        _complain(flux, solved.status, shape, throw)
+    if solved.high is not None and solved.high.any():
+        warnings.warn(f"{film_names(solved.high, shape)}: rate factors above {HIGH_FLUX:g}, the film model itself is "
+                      "doubtful", HighFluxWarning, stacklevel=4)
     return flux
 
 
@@ -146,7 +166,7 @@ def restored(array: Array, shape: tuple[int, ...], keep: int) -> Array:
     return array.reshape(*shape, *tail)
 
 
-def _complain(flux: FilmFlux, status: Codes, shape: tuple[int, ...], throw: bool) -> None:
+def _complain(flux: FilmFlux, status: NDArray[np.int8], shape: tuple[int, ...], throw: bool) -> None:
     for code in (FilmStatus.NO_SOLUTION, FilmStatus.UNDETERMINED, FilmStatus.NOT_CONVERGED):
         mask = status == code
         if throw and mask.any():
@@ -158,10 +178,3 @@ def _complain(flux: FilmFlux, status: Codes, shape: tuple[int, ...], throw: bool
         warnings.warn(f"{film_names(other, shape)}: {MESSAGES[FilmStatus.OTHER_BRANCH]}", OtherSolutionWarning,
                       stacklevel=5)
 
-
-def warn_high_flux(norm: Array, shape: tuple[int, ...]) -> None:
-    """`HighFluxWarning` where |A(N)|_1 exceeds `HIGH_FLUX`."""
-    high = norm > HIGH_FLUX
-    if high.any():
-        warnings.warn(f"{film_names(high, shape)}: rate factors above {HIGH_FLUX:g}, the film model itself is doubtful",
-                      HighFluxWarning, stacklevel=5)

@@ -5,6 +5,7 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from enum import IntEnum
 from functools import cached_property
+from typing import NamedTuple
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -17,6 +18,7 @@ from ..maxwell_stefan import resistances
 Array = NDArray[np.float64]
 Mask = NDArray[np.bool_]
 Codes = NDArray[np.int8]
+Counts = NDArray[np.int64]
 Composition = Callable[[Array], Array]
 """A function of the mole fractions (..., n) that gives a matrix (..., m, m) for each."""
 
@@ -33,6 +35,16 @@ class FilmStatus(IntEnum):
     UNDETERMINED = 3
     UNSTABLE = 4
     NOT_CONVERGED = 5
+
+
+class Solved(NamedTuple):
+    """What a solver gives back for M films: fluxes (M, n), `FilmStatus` codes, iterations, and where flux is so high
+    that the film model itself is doubtful (None: not looked at)."""
+
+    N: Array
+    status: Codes
+    steps: Counts
+    high: Mask | None = None
 
 
 MESSAGES = {
@@ -121,11 +133,11 @@ def flattened(array: Array, shape: tuple[int, ...], keep: int) -> Array:
 def pose(x0: ArrayLike, xd: ArrayLike, kappa: ArrayLike, c_t: ArrayLike, bootstrap: Bootstrap,
          gamma: ArrayLike | None = None) -> FilmProblem:
     """Check the arguments of a film method and put them on one batch axis. Raises InputError."""
-    x0 = mole_fractions("x0", x0)
+    x0 = checked_fractions("x0", x0)
     n = x0.shape[-1]
     if n < 2:
         raise InputError(f"x0: a film needs two components or more, got {n}")
-    xd = mole_fractions("xd", xd, n)
+    xd = checked_fractions("xd", xd, n)
     kappa = checked_pairs(kappa, n)
     c_t = positive_array("c_t", c_t)
     nu, s = bootstrap.linear_form(n)
@@ -143,6 +155,15 @@ def pose(x0: ArrayLike, xd: ArrayLike, kappa: ArrayLike, c_t: ArrayLike, bootstr
     return FilmProblem(flattened(x0, shape, 1), flattened(xd, shape, 1), flattened(kappa, shape, 2),
                        flattened(c_t, shape, 0), flattened(nu, shape, 1), flattened(s, shape, 0),
                        None if gamma is None else flattened(gamma, shape, 2), shape)
+
+
+def checked_fractions(name: str, x: ArrayLike, n: int | None = None) -> Array:
+    """`mole_fractions`, without a copy where the sums are one to rounding."""
+    if isinstance(x, np.ndarray) and x.dtype == np.float64 and x.ndim and x.size and (n is None or x.shape[-1] == n):
+        total = x @ np.ones(x.shape[-1])
+        if x.min() >= 0 and np.abs(total - 1.0).max() <= 1e-15:
+            return x
+    return mole_fractions(name, x, n)
 
 
 def checked_pairs(kappa: ArrayLike, n: int) -> Array:
@@ -170,10 +191,10 @@ def existence(problem: FilmProblem) -> Codes:
     equal diffusivities: one, or none.
     """
     nu, x0, xd = problem.nu, problem.x0, problem.xd
-    a, b = (nu * x0).sum(-1), (nu * xd).sum(-1)
     status = np.zeros(len(problem), dtype=np.int8)
+    a, b = np.einsum("mi,mi->m", nu, x0), np.einsum("mi,mi->m", nu, xd)
     product = a * b
-    if bool((product > 0).all()) and bool((nu >= 0).all()):   # nothing cancels
+    if product.min(initial=1.0) > 0 and nu.min(initial=0.0) >= 0:   # nothing cancels
         return status
     weight = np.abs(nu)
     zero0 = np.abs(a) <= ZERO_SUM * (weight * x0).sum(-1)
