@@ -5,10 +5,10 @@ Only physical cases are kept (all fractions positive, temperatures within reason
 """
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, fields, replace
 
 import numpy as np
-from interface_models import DifferentiatedMargules
+from interface_models import BatchVolatility, DifferentiatedMargules
 from scipy.linalg import expm
 
 from ratebased.film.blocks import film_matrix, resistances
@@ -52,8 +52,11 @@ def kappas(rng, shape, n, low, high, ratio):
     return k + np.swapaxes(k, -1, -2)
 
 
-def construct(rng, kind, n, count, *, limit=25.0, interaction=0.0, floor=0.15):
-    """`count` cases of one kind; `interaction`: bound of the Margules parameters; `floor`: of the eigenvalues of [Gamma].
+def construct(rng, kind, n, count, *, limit=25.0, interaction=0.0, floor=0.15, lean=False):
+    """`count` cases of one kind.
+
+    interaction: bound of the Margules parameters; floor: of the eigenvalues of [Gamma]; lean: a model of constant
+    volatility, without activity coefficients.
     """
     condensable, volatile = masks(rng, kind, n)
     parts, have = [], 0
@@ -62,12 +65,30 @@ def construct(rng, kind, n, count, *, limit=25.0, interaction=0.0, floor=0.15):
         parts.append(part)
         have += len(part["P"])
     d = {k: np.concatenate([p[k] for p in parts])[:count] for k in parts[0]}
-    model = DifferentiatedMargules(
-        tuple("abcdefgh"[:n]), d["alpha"], d["a"], d["b"], d["latent"], d["cp_V"], d["cp_L"], d["T_ref"], condensable,
-        volatile, d["A"], np.zeros((n, n)), np.zeros((n, n)))
+    parameters = (tuple("abcdefgh"[:n]), d["alpha"], d["a"], d["b"], d["latent"], d["cp_V"], d["cp_L"], d["T_ref"],
+                  condensable, volatile)
+    model = BatchVolatility(*parameters) if lean else DifferentiatedMargules(
+        *parameters, d["A"], np.zeros((n, n)), np.zeros((n, n)))
     return Constructed(Bulk(d["y"], d["T_V"], d["kappa_V"], d["h_V"], d["c_V"]),
                        Bulk(d["x"], d["T_L"], d["kappa_L"], d["h_L"], d["c_L"]), model, d["P"], d["N"], d["x_I"],
                        d["T_I"])
+
+
+def merged(cases, rng):
+    """Several constructed sets of one mixture size as one, shuffled."""
+    order = rng.permutation(sum(len(c.P) for c in cases))
+
+    def together(values):
+        return np.concatenate(values)[order]
+
+    def bulk(bulks):
+        return Bulk(*(together([getattr(b, f.name) for b in bulks]) for f in fields(Bulk)))
+
+    first = cases[0].model
+    model = replace(first, **{k: together([getattr(c.model, k) for c in cases]) for k in
+                              ("alpha", "a", "b", "latent", "vapor_cp", "liquid_cp", "reference_temperature")})
+    return Constructed(bulk([c.vapor for c in cases]), bulk([c.liquid for c in cases]), model,
+                       *(together([getattr(c, k) for c in cases]) for k in ("P", "N", "x_I", "T_I")))
 
 
 def _draw(rng, kind, n, B, condensable, volatile, limit, interaction, floor):

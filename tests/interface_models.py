@@ -99,6 +99,54 @@ class DifferentiatedMargules(Margules):
         return KDerivatives(np.where(self.ordinary, by_T, 0.0), liquid + 0.0 * vapor, vapor + 0.0 * liquid)
 
 
+@dataclass(frozen=True)
+class BatchVolatility:
+    """Constant relative volatility with parameters of a whole batch: K_i = alpha_i exp(a - b/T)/P."""
+
+    names: tuple[str, ...]
+    alpha: np.ndarray
+    a: np.ndarray
+    b: np.ndarray
+    latent: np.ndarray
+    vapor_cp: np.ndarray
+    liquid_cp: np.ndarray
+    reference_temperature: np.ndarray
+    condensable: np.ndarray
+    volatile: np.ndarray
+
+    @property
+    def ordinary(self):
+        return self.condensable & self.volatile
+
+    def entries(self, index):
+        own = ("alpha", "a", "b", "latent", "vapor_cp", "liquid_cp", "reference_temperature")
+        return replace(self, **{k: getattr(self, k)[index] for k in own})
+
+    def k_value(self, T, P, x, y):
+        return self.alpha * np.where(self.ordinary, (np.exp(self.a - self.b / T) / P)[..., None], 0.0)
+
+    def k_value_derivatives(self, T, P, x, y):
+        slope = np.where(self.ordinary, (self.b / T ** 2)[..., None], 0.0)
+        none = np.zeros((*slope.shape, slope.shape[-1]))
+        return KDerivatives(slope, none, none)
+
+    def thermodynamic_factor(self, T, P, x):
+        m = x.shape[-1] - 1
+        return np.broadcast_to(np.eye(m), (*x.shape[:-1], m, m))
+
+    def vapor_enthalpy(self, T, P, y):
+        return self.latent + self.vapor_cp * (T - self.reference_temperature)[..., None]
+
+    def liquid_enthalpy(self, T, P, x):
+        return self.liquid_cp * (T - self.reference_temperature)[..., None]
+
+    def vapor_heat_capacity(self, T, P, y):
+        return self.vapor_cp
+
+    def liquid_heat_capacity(self, T, P, x):
+        return self.liquid_cp
+
+
 def symmetric(rng, size, n):
     A = np.triu(rng.uniform(-size, size, (n, n)), 1)
     return A + A.T

@@ -156,7 +156,7 @@ def evaluate(problem: InterfaceProblem, z: Array, y_guess: Array, bulk_derivativ
                   0.5 * (p.T_V + T), p.P, p.volatile, p.limits)
     liquid = _film(p.rows, N, p.K_L, closed(eq.x_I), p.x, None if p.ideal_liquid else p.properties.thermodynamic_factor,
                    0.5 * (p.T_L + T), p.P, p.condensable, p.limits)
-    energy_V, energy_L = _energies(p, N, T, bulk_derivatives)
+    energy_V, energy_L = energies(p, N, T, bulk_derivatives)
 
     batch = np.broadcast_shapes(z.shape[:-1], vapor.blocks.residual.shape[:-1], liquid.blocks.residual.shape[:-1],
                                 energy_V.E.shape, energy_L.E.shape)
@@ -204,7 +204,7 @@ def evaluate(problem: InterfaceProblem, z: Array, y_guess: Array, bulk_derivativ
                            rate_factor, eq.y_I, eq.x_I, eq.K, vapor.gamma, liquid.gamma)
 
 
-def _energies(p: InterfaceProblem, N: Array, T: Array, bulk_derivatives: bool) -> tuple[FilmEnergy, FilmEnergy]:
+def energies(p: InterfaceProblem, N: Array, T: Array, bulk_derivatives: bool) -> tuple[FilmEnergy, FilmEnergy]:
     """Energy fluxes of the vapour and of the liquid film."""
     model = p.properties
     H_V, H_L = np.asarray(model.vapor_enthalpy(T, p.P, p.y)), np.asarray(model.liquid_enthalpy(T, p.P, p.x))

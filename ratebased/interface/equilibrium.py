@@ -70,11 +70,11 @@ def _assemble(problem: InterfaceProblem, x_I: Array, y: Array, K: Array, by_T: A
     n = problem.n
     passing = np.where(ordinary, y, 0.0)
     dy_dT: Array = passing * by_T
-    dy_du = (passing / x_sum[..., None])[..., None] * np.where(condensable, by_x, 0.0)
+    dy_du: Array = (passing / x_sum[..., None])[..., None] * np.where(condensable, by_x, 0.0)
     diagonal = np.arange(n)
     dy_du[..., diagonal, diagonal] += np.where(condensable, K, 1.0)
     if inner is not None:
-        solved: Array = np.linalg.solve(inner, np.concatenate((dy_du, dy_dT[..., None]), axis=-1))
+        solved = np.asarray(np.linalg.solve(inner, np.concatenate((dy_du, dy_dT[..., None]), axis=-1)), float)
         return Equilibrium(x_I, y, K, solved[..., :-1], solved[..., -1])
     return Equilibrium(x_I, y, K, dy_du, dy_dT)
 

@@ -98,8 +98,9 @@ class DifferencedRows:
             options["throw"] = False
         with warnings.catch_warnings():
             warnings.simplefilter("ignore", RateBasedWarning)     # about iterates, not about the answer
-            N = self.film(x0, xd, kappa, np.ones(()), bootstrap, **options).N
-        return np.asarray(N, dtype=float)
+            N: Any = self.film(x0, xd, kappa, np.ones(()), bootstrap, **options).N
+        fluxes: Array = np.asarray(N, dtype=float)
+        return fluxes
 
 
 def _on_simplex(x: Array) -> Array:

@@ -7,7 +7,7 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from ..film.blocks import resistances
+from ..film.blocks import coth_blocks, resistances
 from ..properties.protocol import Mask, PropertyModel
 from .film_rows import FilmMethod, FilmRows, rows_of
 from .records import Bulk
@@ -64,6 +64,11 @@ class InterfaceProblem:
         """Temperature range of the property model, K; wide open where it states none."""
         low, high = getattr(self.properties, "T_range", (1.0, 1e5))
         return float(low), float(high)
+
+    @property
+    def exact_films(self) -> bool:
+        """True where the films are those of Krishna and Standart, not an approximation of them."""
+        return self.rows is coth_blocks
 
     def take(self, index: Any) -> InterfaceProblem:
         """The entries `index` of a problem with one batch axis."""
