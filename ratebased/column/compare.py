@@ -25,6 +25,8 @@ if TYPE_CHECKING:
 ONE_EFFICIENCY = "equilibrium, one efficiency"
 FED_BACK = "equilibrium, component efficiencies"
 RATE_BASED = "rate-based"
+NEGLIGIBLE = 1e-7
+"""Mole fraction: below it two columns are the same."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -124,9 +126,14 @@ def compare(column: Column, properties: PropertyModel, contactor: ContactorLayou
 
 def key_components(profile: Profile) -> tuple[int, int]:
     """Light and heavy key: of the components in order of their K, the neighbours whose recoveries at the top lie furthest
-    apart. Masked components take no part."""
+    apart; of an absorber or a stripper without ends twice the component that changes phase most. Masked ones take no part.
+    """
     model = profile.model_or(None)
     ordinary = np.flatnonzero(model.condensable & model.volatile)
+    if not profile.duties:
+        removed = np.abs(profile.feeds.vapor.sum(0) - profile.products["top"].flows)[ordinary]
+        k = int(ordinary[np.argmax(removed)])
+        return k, k
     if ordinary.size == 1:
         return int(ordinary[0]), int(ordinary[0])
     c = profile.contact_index
@@ -200,14 +207,17 @@ def stages_for_purity(solve: Callable[[int], Profile], known: Profile, component
 def _differences(profiles: dict[str, Profile]) -> list[str]:
     """The largest differences from the rate-based column in words, those of the models in turn."""
     rate = profiles[RATE_BASED]
-    sentences = []
+    sentences: list[tuple[float, str]] = []
     for model in (ONE_EFFICIENCY, FED_BACK):
         other = profiles[model]
+        error = feed_back_error(other, rate)
+        if error < NEGLIGIBLE:
+            sentences.append((0.0, f"{model}: the same column as the rate-based one, to {error:.1g} mole fraction."))
+            continue
         dx = np.abs(other.x - rate.x)
-        j, i = np.unravel_index(int(np.argmax(dx)), dx.shape)
-        words = (f"{model}: the largest difference in the liquid is {dx[j, i]:.2g} mole fraction, {rate.names[i]} on stage "
-                 f"{j + 1} ({other.x[j, i]:.4f} against {rate.x[j, i]:.4f} rate-based)")
-        sentences.append((float(dx[j, i]), words + "."))
+        j, i = (int(k) for k in np.unravel_index(int(np.argmax(dx)), dx.shape))
+        sentences.append((error, f"{model}: the largest difference in the liquid is {error:.2g} mole fraction, "
+                          f"{rate.names[i]} on stage {j + 1} ({other.x[j, i]:.4f} against {rate.x[j, i]:.4f} rate-based)."))
         dT = np.abs(other.T_L - rate.T_L)
         j = int(np.argmax(dT))
         sentences.append((float(dT[j]) / 100.0, f"{model}: the largest temperature difference is {dT[j]:.2g} K, on stage "
@@ -218,9 +228,9 @@ def _differences(profiles: dict[str, Profile]) -> list[str]:
             sentences.append((float(abs(z[i] - w[i])), f"{model}: {rate.names[i]} in the {product} product comes out at "
                               f"{z[i]:.4f}, {w[i]:.4f} rate-based."))
         for end, q in rate.duties.items():
-            share = abs(other.duties[end] / q - 1.0) if q else 0.0
-            sentences.append((share, f"{model}: the {end} duty is {100 * (other.duties[end] / q - 1.0) if q else 0.0:+.2g} % "
-                              f"off ({other.duties[end] / 1e3:.1f} kW against {q / 1e3:.1f} kW)."))
+            off = other.duties[end] / q - 1.0 if q else 0.0
+            sentences.append((abs(off), f"{model}: the {end} duty is {100 * off:+.2g} % off ({other.duties[end] / 1e3:.1f} kW "
+                              f"against {q / 1e3:.1f} kW)."))
     return [words for _, words in sorted(sentences, key=lambda s: -s[0])]
 
 

@@ -5,13 +5,14 @@ the internal flows: the products must be right. The Jacobian is analytic, d ln K
 """
 from __future__ import annotations
 
+import warnings
 from collections.abc import Callable
 from dataclasses import dataclass, replace
 
 import numpy as np
 
 from ..efficiency_set import EfficiencyBasis, EfficiencyKind, EfficiencySet, uniform_murphree
-from ..errors import InputError
+from ..errors import InputError, PlausibilityWarning
 from ..properties.differences import liquid_heat_capacity, vapor_heat_capacity
 from ..properties.protocol import Array, PropertyModel
 from .banded import block_tridiagonal
@@ -30,6 +31,8 @@ TOLERANCE = 1e-10
 MAX_ITERATIONS = 100
 LARGEST_TEMPERATURE_STEP = 10.0
 """K. Each stage's own temperature step is cut to it; 20 and 30 do as well, 50 loses one column in twenty."""
+
+LARGEST_REFLUX = 1e5
 
 Progress = Callable[[int, float], None]
 """Called after each iteration with its number and the scaled residual."""
@@ -228,6 +231,10 @@ def newton(problem: Problem, rows: StageRows, state: State, *, largest_step: flo
     names = problem.properties.names
     reason, residual, worst = "the iteration limit", np.inf, ""
     floor = 1e2 * np.finfo(float).eps
+    low, high = problem.temperature_limits
+    offsets = np.stack((np.zeros(S), rows.vapor_offset, rows.liquid_offset))
+    low, high = low - offsets.min(0), high - offsets.max(0)
+    state = replace(state, T=np.clip(state.T, low, high))
     for iteration in range(1, limit + 1):
         if problem.total_condenser:
             y_condenser = bubble_vapor(problem, state.T[:1], state.l[:1], y_condenser)
@@ -255,8 +262,12 @@ def newton(problem: Problem, rows: StageRows, state: State, *, largest_step: flo
             least = min(final.v.min(), final.l.min()) / problem.F
             if least > -1e-10:
                 return NewtonOutcome(final, True, iteration, residual, worst)
-        state = State(limited(state.v, dv), state.T + np.clip(dT, -largest_step, largest_step), limited(state.l, dl))
-    return NewtonOutcome(state, False, limit if reason == "the iteration limit" else iteration, residual, worst, reason)
+        T = np.clip(state.T + np.clip(dT, -largest_step, largest_step), low, high)
+        state = State(limited(state.v, dv), T, limited(state.l, dl))
+    at_limit = np.flatnonzero((state.T <= low) | (state.T >= high))
+    if at_limit.size:
+        reason += f" (stage {at_limit[0] + 1} at the limit of the property model's range, {state.T[at_limit[0]]:.1f} K)"
+    return NewtonOutcome(state, False, limit if reason.startswith("the iteration") else iteration, residual, worst, reason)
 
 
 def solve_equilibrium(column: Column, properties: PropertyModel, efficiency: EfficiencySet | float | None = None, *,
@@ -306,6 +317,13 @@ def solve_state(problem: Problem, efficiency: EfficiencySet | None, progress: Pr
     """The solved state; falls back on smaller steps, on continuation in the efficiencies and in the reflux ratio."""
     rows = stage_rows(problem, efficiency)
     start = starting_state(problem)
+    margin = dry_margin(problem, start)
+    if margin is not None and margin <= 0:
+        warnings.warn(f"the specifications seem to leave a section without vapour or liquid (smallest section flow "
+                      f"{margin:.2g} times the distillate, an estimate)", PlausibilityWarning, stacklevel=3)
+    if isinstance(problem.top, RefluxRatio) and problem.top.value > LARGEST_REFLUX:
+        warnings.warn(f"RefluxRatio = {problem.top.value:g}: products are lost in the rounding of the internal flows; total "
+                      "reflux is a problem of its own", PlausibilityWarning, stacklevel=3)
     tried = []
     outcome = newton(problem, rows, start, progress=progress)
     if outcome.converged:
@@ -326,7 +344,7 @@ def solve_state(problem: Problem, efficiency: EfficiencySet | None, progress: Pr
         if outcome.converged:
             return outcome.state, outcome, rows
         tried.append(f"continuation in the reflux ratio: {outcome.reason}")
-    raise convergence_error("equilibrium column", tried, first.worst, first.residual, dry_margin(problem, start), first.state)
+    raise convergence_error("equilibrium column", tried, first.worst, first.residual, margin, first.state)
 
 
 def _efficiency_continuation(problem: Problem, efficiency: EfficiencySet, start: State, progress: Progress | None

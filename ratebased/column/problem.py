@@ -73,6 +73,12 @@ class Problem:
         return condenser.subcooling if isinstance(condenser, TotalCondenser) else 0.0
 
     @property
+    def temperature_limits(self) -> tuple[float, float]:
+        """Range of the property model, K; wide open where it states none."""
+        low, high = getattr(self.properties, "T_range", (1.0, 1e5))
+        return float(low), float(high)
+
+    @property
     def feed_components(self) -> Array:
         """Component flows of all feeds, (n,)."""
         total: Array = (self.feeds.vapor + self.feeds.liquid).sum(0)

@@ -5,13 +5,14 @@ equilibrium column, so no guess is asked of the user.
 """
 from __future__ import annotations
 
+import warnings
 from dataclasses import dataclass, replace
 
 import numpy as np
 
 from ..arguments import positive_scalar
 from ..equipment.protocol import Hydraulics
-from ..errors import ConvergenceError, InputError
+from ..errors import ApproximationWarning, ConvergenceError, InputError
 from ..properties.protocol import Array, PropertyModel
 from .banded import block_tridiagonal
 from .contact import Averaged, ContactorLayout, FlowPattern, Mixed, film_transfer_units, layout, transfer
@@ -30,6 +31,8 @@ PRESSURE_TOLERANCE = 1e-7
 """Relative change of the pressures at which the hydraulics and the column agree."""
 MAX_PRESSURE_ROUNDS = 30
 INTERFACE_TEMPERATURE_STEP = 10.0
+LARGEST_SEGMENT = 2.0
+"""Transfer units of a packed segment above which a warning is given."""
 
 
 @dataclass(frozen=True)
@@ -87,10 +90,32 @@ def solve_ratebased(column: Column, properties: PropertyModel, contactor: Contac
         setup, outcome = _with_pressure_drop(setup, outcome, progress)
         problem = setup.problem
     system = rate_system(setup, outcome.state)
+    _warn_coarse(setup, outcome.state, system)
     record = _record(setup, outcome.state, system)
     s = outcome.state
     return make_profile(problem, s.v, s.T_V, s.l, s.T_L, "rate-based", outcome.iterations, outcome.residual, path, record,
                         float(system.blocks.films.size.max()))
+
+
+def _warn_coarse(setup: RateSetup, state: RateState, system: RateSystem) -> None:
+    """A stage whose bulk is a mean of both ends overshoots when it is too long."""
+    if not isinstance(setup.vapor, Averaged):
+        return
+    units = transfer_units(setup.problem, state, system)
+    if (units > LARGEST_SEGMENT).any():
+        j = int(np.argmax(units))
+        warnings.warn(f"stage {int(setup.problem.contact[j]) + 1}: {units[j]:.2g} transfer units in one segment, keep them "
+                      f"below {LARGEST_SEGMENT:g}: use more segments", ApproximationWarning, stacklevel=3)
+
+
+def transfer_units(problem: Problem, state: RateState, system: RateSystem) -> Array:
+    """Transfer units of each contact stage, both films in series with a stripping factor of one, (C,)."""
+    k, c = system.transfer, problem.contact
+    V, L = state.v[c].sum(1), state.l[c].sum(1)
+    area = np.broadcast_to(k.coefficients.area, (c.size,))
+    vapor = film_transfer_units(k.coefficients.kappa_vapor, k.c_vapor, area, V)
+    liquid = film_transfer_units(k.coefficients.kappa_liquid, k.c_liquid, area, L)
+    return 1.0 / (1.0 / vapor + 1.0 / liquid)
 
 
 # ------------------------------------------------------------------------------------------------------------- start
@@ -192,6 +217,7 @@ def newton(setup: RateSetup, state: RateState, *, tolerance: float = TOLERANCE, 
     band = block_tridiagonal(S, m, n + 1, n + 1, width, width)
     reason, residual, worst, iteration = "the iteration limit", np.inf, "", 0
     floor = 1e2 * np.finfo(float).eps
+    low, high = problem.temperature_limits
     for iteration in range(1, limit + 1):
         try:
             system = rate_system(setup, state)
@@ -228,8 +254,9 @@ def newton(setup: RateSetup, state: RateState, *, tolerance: float = TOLERANCE, 
         z = state.z + f * dz
         z[:, n:2 * n] = limited(state.z[:, n:2 * n], f * dz[:, n:2 * n])
         z[:, 2 * n] = state.z[:, 2 * n] + np.clip(f * dz[:, 2 * n], -INTERFACE_TEMPERATURE_STEP, INTERFACE_TEMPERATURE_STEP)
-        state = RateState(limited(state.v, f * dv), state.T_V + f * dT_V, limited(state.l, f * dl), state.T_L + f * dT_L, z,
-                          system.blocks.films.y_I, state.y_condenser)
+        z[:, 2 * n] = np.clip(z[:, 2 * n], low, high)
+        state = RateState(limited(state.v, f * dv), np.clip(state.T_V + f * dT_V, low, high), limited(state.l, f * dl),
+                          np.clip(state.T_L + f * dT_L, low, high), z, system.blocks.films.y_I, state.y_condenser)
         state = replace(state, y_condenser=updated_condenser_vapor(problem, state))
     return RateOutcome(state, False, iteration, residual, worst, reason)
 

@@ -181,10 +181,10 @@ def _boiling(problem: Problem, x: Array, T: Array) -> tuple[Array, Array]:
 
 def _bubble_sweeps(problem: Problem, V: Array, L: Array) -> State:
     S = problem.S
-    z = np.tile(problem.feed_components / problem.F, (S, 1))
-    T, y = _boiling(problem, z, np.full(S, problem.mean_feed_temperature))
-    x = z
-    v, l = z.copy(), z.copy()
+    z = np.where(problem.gas, 0.0, problem.feed_components)
+    x = np.tile(z / z.sum(), (S, 1))
+    T, y = _boiling(problem, x, np.full(S, problem.mean_feed_temperature))
+    v, l = y, x
     for _ in range(SWEEPS):
         K = problem.properties.k_value(T, problem.P, x, y)
         v, l = _liquid_profile(problem, K, V, L)
