@@ -114,6 +114,21 @@ class EfficiencySet:
                              np.round(self.vapor_offset, places), np.round(self.liquid_offset, places), self.basis,
                              self.given)
 
+    def tamed(self, low: float = 0.0, high: float = 1.5) -> EfficiencySet:
+        """Murphree values outside (low, high) replaced by the median of the others of their stage (1 without any).
+
+        A start for the set itself: equations with values far from one have several solutions, and the column with tame
+        values lies close to the right one.
+        """
+        used = self.given[:, None] & (np.arange(self.values.shape[1]) != self.dependent[:, None])
+        tame = used & (self.values > low) & (self.values < high)
+        masked = np.where(tame, self.values, np.nan)
+        some = tame.any(1)
+        middle = np.ones(tame.shape[0])
+        middle[some] = np.nanmedian(masked[some], axis=1)
+        return EfficiencySet(self.kind, np.where(tame, self.values, middle[:, None]), self.dependent, self.vapor_offset,
+                             self.liquid_offset, self.basis, self.given)
+
     def toward_equilibrium(self, share: float) -> EfficiencySet:
         """Efficiencies and offsets at a share (0..1) of their way from the equilibrium stage: for continuation."""
         return EfficiencySet(self.kind, 1.0 + share * (self.values - 1.0), self.dependent, share * self.vapor_offset,

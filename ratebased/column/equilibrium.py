@@ -325,6 +325,13 @@ def solve_state(problem: Problem, efficiency: EfficiencySet | None, progress: Pr
         warnings.warn(f"RefluxRatio = {problem.top.value:g}: products are lost in the rounding of the internal flows; total "
                       "reflux is a problem of its own", PlausibilityWarning, stacklevel=3)
     tried = []
+    if efficiency is not None and efficiency.kind is EfficiencyKind.MURPHREE_VAPOR:
+        tame = newton(problem, stage_rows(problem, efficiency.tamed()), start, progress=progress)
+        if tame.converged:
+            outcome = newton(problem, rows, positive(problem, tame.state), progress=progress)
+            if outcome.converged:
+                return outcome.state, outcome, rows
+            tried.append(f"Newton from the column with odd efficiencies replaced: residual {outcome.residual:.2g}")
     outcome = newton(problem, rows, start, progress=progress)
     if outcome.converged:
         return outcome.state, outcome, rows
