@@ -9,7 +9,7 @@ from contextlib import contextmanager
 from pathlib import Path
 from typing import Any
 
-from .errors import ConvergenceError, InputError
+from .errors import ConvergenceError, InputError, NoPhysicalRootError
 
 DONE, NO_SOLUTION, BAD_INPUT = 0, 1, 2
 
@@ -38,7 +38,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
         except InputError as error:
             print(f"ratebased: bad input: {error}", file=sys.stderr)
             return BAD_INPUT
-        except ConvergenceError as error:
+        except (ConvergenceError, NoPhysicalRootError) as error:
             print(f"ratebased: no solution: {error}", file=sys.stderr)
             return NO_SOLUTION
         except BrokenPipeError:

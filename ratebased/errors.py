@@ -11,9 +11,10 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
+from correlations.errors import InputError as InputError
+from correlations.errors import NoPhysicalRootError as NoPhysicalRootError
 
-class InputError(ValueError):
-    """Bad input: the message names the argument, the entry and the value."""
+# One class for both packages: bad input, a ValueError; the message names the argument, the entry and the value.
 
 
 class UnstableMixtureError(InputError):

@@ -19,6 +19,7 @@ from ..stage import (
     FrothPoint,
     LiquidMixing,
     PointMethod,
+    PointResult,
     Pools,
     SegmentResult,
     TrayResult,
@@ -36,6 +37,8 @@ from .definitions import (
     small_driving_force,
     vaporization,
 )
+
+UNMIXED = "no tray with its liquid path mixed this way has this leaving liquid: rated with mixed liquid"
 
 
 @dataclass(frozen=True)
@@ -97,7 +100,7 @@ class PackedRows:
 class RatedRows:
     """Contact rows of a profile, rated; arrays over rows (R) and components (R, n).
 
-    number, kind; P Pa; T_L, T_V_in, T_V (of the computed vapour), T_bubble (of the leaving liquid, K; None on the
+    ordinary: components in both phases, (n); number, kind; P Pa; T_L, T_V_in, T_V (of the computed vapour), T_bubble (of the leaving liquid, K; None on the
     liquid-temperature basis); V_in, V_out, L mol/s; x, y_in, y_out, y_star, y_profile; murphree and `flagged` (a
     driving force too small); vaporization; dependent: component with the largest y_out, the one to leave out when n-1
     efficiencies are used; flux mol/(m2 s), transferred mol/s, energy W, area m2, basis of the area; residuals of the
@@ -105,6 +108,7 @@ class RatedRows:
     """
 
     names: tuple[str, ...]
+    ordinary: Mask
     number: NDArray[np.int64]
     kind: tuple[str, ...]
     P: Array
@@ -130,7 +134,7 @@ class RatedRows:
     area: Array
     area_basis: tuple[str, ...]
     star_basis: str
-    equilibrium_residual: Array
+    interface_residual: Array
     energy_residual: Array
     component_closure: Array
     energy_closure: Array
@@ -212,13 +216,13 @@ def rate_rows(profile: StageProfile, hardware: Hardware, properties: PropertyMod
     g_in = entering.V[:, None] * entering.y
     closure = np.abs(g_in - total.transferred - V_out[:, None] * y_out).max(-1) / entering.V
     return RatedRows(
-        names=profile.names, number=number, kind=kind, P=P, T_L=T_L, T_V_in=entering.T_V, T_V=T_V,
+        names=profile.names, ordinary=ordinary, number=number, kind=kind, P=P, T_L=T_L, T_V_in=entering.T_V, T_V=T_V,
         T_bubble=star.temperature if star.basis == "bubble point" else None, V_in=entering.V, V_out=V_out,
         L=total.L, x=x, y_in=entering.y, y_out=y_out, y_star=star.composition, y_profile=profile.y[rows],
         murphree=murphree, flagged=small_driving_force(entering.y, star.composition, options.driving_force_limit),
         vaporization=vaporization(K, x, y_out, ordinary), dependent=y_out.argmax(-1), flux=total.flux,
         transferred=total.transferred, energy=total.energy, area=total.area, area_basis=tuple(total.basis),
-        star_basis=star.basis, equilibrium_residual=total.equilibrium, energy_residual=total.heat,
+        star_basis=star.basis, interface_residual=total.films, energy_residual=total.heat,
         component_closure=closure, energy_closure=total.energy_closure, vapor_entropy_share=total.share,
         hydraulics=total.hydraulics(), pools=total.pools,
         packed=_packed_rows(profile, rows, entering, bulk, packed, total, properties) if packed.any() else None,
@@ -301,7 +305,7 @@ class _Collected:
         self.y, self.transferred, self.flux = (np.zeros((R, n)) for _ in range(3))
         self.y_I, self.x_I = np.zeros((R, n)), np.zeros((R, n))
         self.V, self.T_V, self.L, self.energy, self.area, self.pools = (np.zeros(R) for _ in range(6))
-        self.equilibrium, self.heat, self.energy_closure, self.share = (np.zeros(R) for _ in range(4))
+        self.films, self.heat, self.energy_closure, self.share = (np.zeros(R) for _ in range(4))
         self.basis = [""] * R
         self.limits: dict[str, Array] = {}
         self.notes: dict[str, Mask] = {}
@@ -316,9 +320,12 @@ class _Collected:
         self.L[member] = group.bulk.L
         interface = result.point.middle if isinstance(result, TrayResult) else result.interface
         worst = result.point if isinstance(result, TrayResult) else result.interface
-        self.equilibrium[member], self.heat[member] = worst.equilibrium_residual, worst.energy_residual
+        self.films[member] = worst.interface_residual if isinstance(worst, PointResult) else worst.residual
+        self.heat[member] = worst.energy_residual
         if isinstance(result, TrayResult):
             self.energy_closure[member] = result.point.energy_closure
+            if result.unmixed.any():
+                self.notes.setdefault(UNMIXED, np.zeros(self.V.size, bool))[member] = result.unmixed
         self.share[member] = interface.vapor_entropy_share
         self.y_I[member], self.x_I[member] = interface.y_I, interface.x_I
         for row in member:

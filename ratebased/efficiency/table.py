@@ -22,7 +22,7 @@ LEGEND = (
     "stage are independent (sum of E (y* - y_in) is zero). [..]: y_out - y_in where |y* - y_in| is too small for E to "
     "mean anything. eta: vaporisation efficiency y_out/(K x), K at the leaving liquid's temperature; with the "
     "superheat it reproduces the stage in an equilibrium-stage column. N: mean flux from vapour to liquid, "
-    "mmol/(m2 s) of {area}.")
+    "mol/(m2 s) of {area}.")
 
 
 @dataclass(frozen=True)
@@ -44,12 +44,10 @@ class EfficiencyTable:
         """One text a row: what to know before using its figures."""
         r = self.rows
         texts: list[list[str]] = [[] for _ in r.number]
-        for j, i in np.argwhere(r.flagged):
-            texts[j].append(f"{r.names[i]}: driving force too small")
-        for j, i in np.argwhere(~r.flagged & (r.murphree < 0)):
-            texts[j].append(f"{r.names[i]}: negative")
-        for j, i in np.argwhere(~r.flagged & (r.murphree > 1)):
-            texts[j].append(f"{r.names[i]}: above one")
+        for where, words in ((r.flagged & r.ordinary, "driving force too small"), (~r.flagged & r.ordinary & (r.murphree < 0), "negative"),
+                             (~r.flagged & r.ordinary & (r.murphree > 1), "above one")):
+            for j in np.flatnonzero(where.any(-1)):
+                texts[j].append(f"{', '.join(np.array(r.names)[where[j]])}: {words}")
         for limit, words in (("flooding", "above flooding"), ("weeping", "weeping"), ("downcomer", "downcomer full")):
             value = getattr(r.hydraulics, limit)
             if value is not None:
@@ -97,7 +95,7 @@ class EfficiencyTable:
                 columns[label] = value
         columns |= self._packed_columns()
         columns |= {"vapor_film_share": r.vapor_entropy_share, "distance_y": self.distance,
-                    "equilibrium_residual": r.equilibrium_residual, "energy_residual": r.energy_residual,
+                    "interface_residual": r.interface_residual, "energy_residual": r.energy_residual,
                     "component_closure": r.component_closure, "energy_closure": r.energy_closure,
                     "flags": self.flags()}
         return pd.DataFrame(columns)
@@ -151,12 +149,13 @@ class EfficiencyTable:
 
     def _cells(self) -> list[list[str]]:
         r = self.rows
+        shown = np.flatnonzero(r.ordinary)
+        names = [r.names[i] for i in shown]
         head = ["stage", "T / K", "P / kPa", "flood", "superheat / K"]
-        for name in r.names:
-            head += [f"E {name}"]
-        head += [f"eta {name}" for name in r.names] + [f"N {name}" for name in r.names]
+        for symbol in ("E", "eta", "N"):
+            head += [f"{symbol} {name}" for name in names]
         if r.packed is not None:
-            head += [f"HETP {name} / m" for name in r.names]
+            head += [f"HETP {name} / m" for name in names]
         rows = [[*head, "remarks"]]
         flood = r.hydraulics.flooding
         where = {} if r.packed is None else {int(k): m for m, k in enumerate(r.packed.position)}
@@ -165,12 +164,11 @@ class EfficiencyTable:
             cells = [str(r.number[j]), f"{r.T_L[j]:.2f}", f"{r.P[j] / 1e3:.2f}",
                      "" if flood is None or np.isnan(flood[j]) else f"{flood[j]:.2f}", f"{r.T_V[j] - r.T_L[j]:+.2f}"]
             dy = r.y_out[j] - r.y_in[j]
-            cells += [f"[{dy[i]:+.1e}]" if r.flagged[j, i] else f"{r.murphree[j, i]:.3f}" for i in range(len(r.names))]
-            cells += [f"{value:.4f}" for value in r.vaporization[j]] + [f"{1e3 * value:.2f}" for value in r.flux[j]]
+            cells += [f"[{dy[i]:+.1e}]" if r.flagged[j, i] else f"{r.murphree[j, i]:.3f}" for i in shown]
+            cells += [f"{r.vaporization[j, i]:.4f}" for i in shown] + [f"{r.flux[j, i]:+.2e}" for i in shown]
             if r.packed is not None:
                 m = where.get(j)
-                cells += ["" if m is None or r.packed.undefined[m, i] else f"{r.packed.HETP[m, i]:.3f}"
-                          for i in range(len(r.names))]
+                cells += ["" if m is None or r.packed.undefined[m, i] else f"{r.packed.HETP[m, i]:.3f}" for i in shown]
             rows.append([*cells, flags[j]])
         return rows
 

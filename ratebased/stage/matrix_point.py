@@ -11,9 +11,9 @@ from scipy.linalg import expm
 
 from ..equipment.protocol import Array
 from ..maxwell_stefan import resistance_matrix
-from ..properties.differences import k_value_derivatives, vapor_heat_capacity
+from ..properties.differences import vapor_heat_capacity
 from ..properties.protocol import PropertyModel
-from ..properties.saturation import bubble_point
+from .bubble_line import bubble_line
 from .point import FrothPoint
 
 
@@ -116,25 +116,16 @@ def augmented_matrix(point: FrothPoint, properties: PropertyModel) -> MatrixPoin
 
 
 def _linear(point: FrothPoint, properties: PropertyModel) -> _Linear:
-    n = point.x.shape[-1]
-    T_b, y_star = bubble_point(properties, point.P, point.x, point.T_L)
+    line = bubble_line(properties, point.P, point.x, point.T_L)
+    T_b, y_star, tau = line.temperature, line.vapor, line.temperature_slope
     y_ref = (point.y_in + y_star) / 2.0
-    derivatives = k_value_derivatives(properties, T_b, point.P, point.x, y_star)
-    # y*_i = K_i x_i with sum y* = 1 along the bubble line, by mole numbers: dx_i/dn_j = delta_ij - x_i.
-    log_x = np.eye(n) - point.x[..., None]
-    by_mole = derivatives.liquid * y_star[..., None] + properties.k_value(T_b, point.P, point.x, y_star)[
-        ..., None] * log_x
-    rise = (y_star * derivatives.temperature).sum(-1)[..., None]
-    slope_T = -by_mole.sum(-2) / rise
-    along = by_mole + (y_star * derivatives.temperature)[..., None] * slope_T[..., None, :]
-    K_eq = (along[..., :, :-1] - along[..., :, -1:])[..., :-1, :]
-    T_slope = slope_T[..., :-1] - slope_T[..., -1:]
     latent = (properties.vapor_enthalpy(T_b, point.P, y_star) - properties.liquid_enthalpy(T_b, point.P, point.x))
     c = point.coefficients
     gamma = properties.thermodynamic_factor(T_b, point.P, point.x)
     k_vapor = np.linalg.inv(resistance_matrix(y_ref, c.kappa_vapor))
     k_liquid = np.linalg.inv(resistance_matrix(point.x, c.kappa_liquid)) @ gamma
-    return _Linear(y_star, T_b, y_ref, k_vapor, k_liquid, K_eq, T_slope, latent)
+    return _Linear(y_star, T_b, y_ref, k_vapor, k_liquid, line.equilibrium_matrix, tau[..., :-1] - tau[..., -1:],
+                   latent)
 
 
 def _bootstrap_matrix(z: Array, latent: Array) -> Array:

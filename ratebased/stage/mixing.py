@@ -1,11 +1,11 @@
 """Mixing of the liquid along its path over a tray, from what the froth does at the outlet.
 
-With w = (l_1..l_n, T_L) the liquid and R(w) what the whole tray would give it at the state w, pools in series obey
+With w the component flows of the liquid and R(w) what the whole tray would give it at the state w, pools in series obey
 w_(k-1) = w_k - R(w_k)/p. Linearised at the leaving liquid, R_k = R_p + [B](w_k - w_p), the mean over the tray is
 f(-[B]) R_p with f(z) = ((1 + z/p)^p - 1)/z; plug flow and eddy diffusion differ in f alone. With constant flows and the
 liquid on its bubble line this is [E_MV] = [E] f([S][E]) of the textbooks (Gerster et al., AIChE Bubble-Tray Design
-Manual 1958; matrix form, Krishna, Martinez, Sreedhar & Standart, Trans. IChemE 55 (1977) 178); here flows and
-temperatures may change and components may be masked.
+Manual 1958; matrix form, Krishna, Martinez, Sreedhar & Standart, Trans. IChemE 55 (1977) 178); here flows may
+change and components may be masked.
 """
 from __future__ import annotations
 
@@ -22,13 +22,25 @@ Complex = NDArray[np.complex128]
 SMALL = 1e-3
 """Below this |z| the factors are taken from their series (three terms: relative error below 1e-10)."""
 
+PLUG_POOLS = 40.0
+"""Pools that stand for plug flow where it has to be marched."""
+
 
 class LiquidMixing(Protocol):
-    """How the liquid is mixed along its path: `factor` is f(z), `factor_slope` (f(z) - 1)/z."""
+    """How the liquid is mixed along its path.
+
+    `factor` is f(z), `factor_slope` (f(z) - 1)/z. `stretch(share)`: the mixing of a part of the path, None where the
+    path cannot be cut (its parts mix with each other). `pools`: the number of pools that mixes alike.
+    """
 
     def factor(self, z: Complex) -> Complex: ...
 
     def factor_slope(self, z: Complex) -> Complex: ...
+
+    def stretch(self, share: float) -> LiquidMixing | None: ...
+
+    @property
+    def pools(self) -> Array: ...
 
 
 @dataclass(frozen=True)
@@ -40,6 +52,13 @@ class WellMixed:
 
     def factor_slope(self, z: Complex) -> Complex:
         return np.zeros_like(z)
+
+    def stretch(self, share: float) -> LiquidMixing | None:
+        return None
+
+    @property
+    def pools(self) -> Array:
+        return np.ones(())
 
 
 @dataclass(frozen=True)
@@ -59,6 +78,13 @@ class Pools:
         return _quotient(z, self.factor(z) - 1.0,
                          q * (1.0 + z * (1.0 - 2.0 / p) / 3.0 * (1.0 + z * (1.0 - 3.0 / p) / 4.0)))
 
+    def stretch(self, share: float) -> LiquidMixing | None:
+        return Pools(np.asarray(self.count) * share)
+
+    @property
+    def pools(self) -> Array:
+        return np.asarray(self.count, float)
+
 
 @dataclass(frozen=True)
 class PlugFlow:
@@ -69,6 +95,13 @@ class PlugFlow:
 
     def factor_slope(self, z: Complex) -> Complex:
         return _quotient(z, self.factor(z) - 1.0, 0.5 * (1.0 + z / 3.0 * (1.0 + z / 4.0)))
+
+    def stretch(self, share: float) -> LiquidMixing | None:
+        return self
+
+    @property
+    def pools(self) -> Array:
+        return np.asarray(PLUG_POOLS)
 
 
 @dataclass(frozen=True)
@@ -88,6 +121,13 @@ class EddyDiffusion:
     def factor_slope(self, z: Complex) -> Complex:
         Pe = np.asarray(self.peclet, float)[..., None]
         return _quotient(z, self.factor(z) - 1.0, self._first(Pe) + 0.0 * z)
+
+    def stretch(self, share: float) -> LiquidMixing | None:
+        return None
+
+    @property
+    def pools(self) -> Array:
+        return np.asarray((np.asarray(self.peclet, float) + 2.0) / 2.0)
 
     @staticmethod
     def _first(Pe: Array) -> Array:

@@ -53,9 +53,10 @@ class PointResult:
     V mol/s, y (..., n), T_V K: the vapour that leaves. transferred: to the liquid, mol/s, (..., n). energy: enthalpy
     transferred to the liquid, W. sensitivity_vapor: d(g, T_V) out by d(g, T_V) in, (..., n+1, n+1).
     sensitivity_liquid: by (x, T_L), (..., n+1, n+1). flux: mean interfacial flux, mol/(m2 s), (..., n).
-    equilibrium_residual, energy_residual: worst of the interfaces solved. energy_closure: (enthalpy in - out -
-    transferred) over the sum of the magnitudes of the enthalpy transferred by each component. error: estimate of
-    max|y|, (...). solutions: how many batched interface solutions it took. middle: the interface at the mean state.
+    interface_residual (films, equilibrium and sums, scaled), energy_residual: worst of the interfaces solved.
+    energy_closure: (enthalpy in - out - transferred) over the sum of the magnitudes of the enthalpy transferred by each
+    component. error: estimate of max|y|, (...). solutions: how many batched interface solutions it took. middle: the
+    interface at the mean state.
     """
 
     V: Array
@@ -66,7 +67,7 @@ class PointResult:
     sensitivity_vapor: Array
     sensitivity_liquid: Array
     flux: Array
-    equilibrium_residual: Array
+    interface_residual: Array
     energy_residual: Array
     energy_closure: Array
     error: Array
@@ -138,7 +139,7 @@ def integral(point: FrothPoint, properties: PropertyModel, *, local: LocalCoeffi
         state = flat.reshape(*u0.shape[:-1], n + 2)
         last, f, energy = froth.slope(state[..., :-1] * scale, last)
         solutions += 1
-        worst[0] = np.maximum(worst[0], last.equilibrium_residual)
+        worst[0] = np.maximum(worst[0], last.residual)
         worst[1] = np.maximum(worst[1], last.energy_residual)
         rate = np.concatenate((f / scale, (energy / enthalpy_scale)[..., None]), -1)
         return rate.ravel()
@@ -156,7 +157,7 @@ def integral(point: FrothPoint, properties: PropertyModel, *, local: LocalCoeffi
     result = froth.result(u, u0[..., :n] - u[..., :n], end[..., -1] * enthalpy_scale, quick.sensitivity_vapor,
                           quick.sensitivity_liquid, np.full(u.shape[:-1], rtol), solutions + quick.solutions,
                           quick.middle)
-    return replace(result, equilibrium_residual=np.maximum(worst[0], quick.equilibrium_residual),
+    return replace(result, interface_residual=np.maximum(worst[0], quick.interface_residual),
                    energy_residual=np.maximum(worst[1], quick.energy_residual))
 
 
@@ -185,7 +186,7 @@ class _Froth:
             liquid = replace(liquid, kappa=coefficients.kappa_liquid, heat_transfer=coefficients.h_liquid)
         vapor = Bulk(y, T_V, coefficients.kappa_vapor, coefficients.h_vapor, c_vapor)
         answer = interface_flux(vapor, liquid, self.properties, p.P, start=last, derivatives=derivatives)
-        self.worst[0] = np.maximum(self.worst[0], answer.equilibrium_residual)
+        self.worst[0] = np.maximum(self.worst[0], answer.residual)
         self.worst[1] = np.maximum(self.worst[1], answer.energy_residual)
         return answer, coefficients.area
 
@@ -239,7 +240,7 @@ class _Froth:
         area = p.coefficients.area
         return PointResult(V=V, y=y, T_V=T_V, transferred=transferred, energy=given, sensitivity_vapor=vapor,
                            sensitivity_liquid=liquid, flux=transferred / area[..., None],
-                           equilibrium_residual=self.worst[0], energy_residual=self.worst[1],
+                           interface_residual=self.worst[0], energy_residual=self.worst[1],
                            energy_closure=np.abs(lost - given) / np.where(size > 0, size, 1.0), error=error,
                            solutions=solutions, middle=middle)
 

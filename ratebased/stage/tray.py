@@ -1,16 +1,23 @@
 """A tray with its leaving liquid given: the froth at the outlet, then the mixing of the liquid along its path."""
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
 from ..equipment.protocol import Array
 from ..errors import ConvergenceError
-from ..properties.differences import liquid_heat_capacity, vapor_heat_capacity
-from ..properties.protocol import PropertyModel
+from ..interface.problem import entries
+from ..properties.differences import vapor_heat_capacity
+from ..properties.protocol import Mask, PropertyModel
+from ..properties.saturation import bubble_point
+from .bubble_line import bubble_line
+from .march import march_upstream, taken
 from .mixing import LiquidMixing, mixed_tray
 from .point import FrothPoint, LocalCoefficients, PointMethod, PointResult, exponential_midpoint
+
+STRETCHES = 3
+"""Parts of the liquid's path that are linearised one after the other: within about 1 % of the march pool by pool."""
 
 
 @dataclass(frozen=True)
@@ -18,7 +25,8 @@ class TrayResult:
     """Vapour leaving a tray, mixed, batched over trays.
 
     V mol/s, y (..., n), T_V K: leaving. transferred: to the liquid, mol/s, (..., n). energy: to the liquid, W. area m2.
-    flux: mean over the area, mol/(m2 s), (..., n). point: the froth over the leaving liquid.
+    flux: mean over the area, mol/(m2 s), (..., n). point: the froth over the leaving liquid. unmixed: where no tray
+    mixed as asked has this leaving liquid (its liquid would hold less than nothing upstream); rated with one pool.
     """
 
     V: Array
@@ -28,6 +36,7 @@ class TrayResult:
     energy: Array
     flux: Array
     point: PointResult
+    unmixed: Mask
 
 
 def tray_from_leaving_liquid(point: FrothPoint, liquid_flow: Array, properties: PropertyModel, mixing: LiquidMixing, *,
@@ -35,53 +44,87 @@ def tray_from_leaving_liquid(point: FrothPoint, liquid_flow: Array, properties: 
                              local: LocalCoefficients | None = None) -> TrayResult:
     """What leaves a tray whose leaving liquid (point.x, point.T_L, `liquid_flow` mol/s before draws) is known.
 
-    The point over the leaving liquid by `method`; upstream pools by the linearised response of that point to the
-    liquid's flows and temperature (`mixing.mixed_tray`). With a well-mixed liquid the point is the answer.
+    One batch axis. The froth over the leaving liquid by `method`; then upstream in `STRETCHES` stretches, each by the
+    linearised response of the froth at its outlet (`mixing.mixed_tray`), the liquid on its bubble line; the few trays
+    this carries out of bounds are marched pool by pool (`march_upstream`). A well-mixed tray is its point.
     """
-    n = point.x.shape[-1]
     froth = method(point, properties, local=local)
-    L = liquid_flow[..., None]
-    l = L * point.x
-    HL = properties.liquid_enthalpy(point.T_L, point.P, point.x)
-    cp_L = liquid_heat_capacity(properties, point.T_L, point.P, point.x)
-    heat = (l * cp_L).sum(-1)
-    warm = heat > 0
-    safe = np.where(warm, heat, 1.0)
-    sensible = froth.energy - (froth.transferred * HL).sum(-1)
-    transfer = np.concatenate((froth.transferred, np.where(warm, sensible / safe, 0.0)[..., None]), -1)
-
-    # Response of the outputs to w = (l, T_L): by way of (x, T_L), dx_i/dl_j = (delta_ij - x_i)/L.
-    S = froth.sensitivity_liquid
-    by_x, by_T = S[..., :n], S[..., n:]
-    by_l = (by_x - np.einsum("...ij,...j->...i", by_x, point.x)[..., None]) / L[..., None]
-    out = np.concatenate((by_l, by_T), -1)
-    g = froth.V[..., None] * froth.y
-    HV = properties.vapor_enthalpy(froth.T_V, point.P, froth.y)
-    cp_V = vapor_heat_capacity(properties, froth.T_V, point.P, froth.y)
-    d_transferred = -out[..., :n, :]
-    d_energy = -(HV[..., None, :] @ out[..., :n, :])[..., 0, :] - ((g * cp_V).sum(-1)[..., None] * out[..., n, :])
-    d_sensible = d_energy - (HL[..., None, :] @ d_transferred)[..., 0, :]
-    d_sensible[..., n] -= (froth.transferred * cp_L).sum(-1)
-    slope = np.concatenate((d_transferred, np.where(warm[..., None], d_sensible / safe[..., None], 0.0)[..., None, :]),
-                           -2)
-    inert = ~(properties.condensable & properties.volatile)
-    slope[..., :n, :][..., inert, :] = 0.0
-    slope[..., :, :n][..., :, inert] = 0.0
-
-    mean, departure = mixed_tray(mixing, transfer, slope)
-    transferred = np.where(inert, froth.transferred, mean[..., :n])
-    energy = froth.energy + np.einsum("...i,...i->...", d_energy, departure)
-    g_out = point.V_in[..., None] * point.y_in - transferred
-    if (g_out < 0).any():
-        where = tuple(int(i) for i in np.argwhere(g_out < 0)[0])
-        raise ConvergenceError(f"tray {where[:-1]}: the mixing correction would take more of "
-                               f"{properties.names[where[-1]]} than enters with the vapour")
+    part = mixing.stretch(1.0 / STRETCHES)
+    count, way = (1, mixing) if part is None else (STRETCHES, part)
+    transferred, energy = np.zeros_like(froth.transferred), np.zeros_like(froth.energy)
+    lost = np.zeros(froth.energy.shape, bool)
+    here, l, at = froth, liquid_flow[:, None] * point.x, point
+    for k in range(count):
+        given, heat = _stretch(here, at, l.sum(-1), properties, way, 1.0 / count)
+        transferred, energy = transferred + given, energy + heat
+        upstream = l - given
+        lost |= (upstream < 0).any(-1)
+        l = np.where(lost[:, None], liquid_flow[:, None] * point.x, upstream)
+        if k + 1 < count:
+            at = _upstream(point, at, l, properties)
+            here = exponential_midpoint(at, properties, local=local)
+    lost |= (point.V_in[:, None] * point.y_in - transferred < 0).any(-1)
+    unmixed = np.zeros_like(lost)
+    if lost.any():
+        index = np.flatnonzero(lost)
+        march = march_upstream(taken(point, index), froth, index, liquid_flow[index], entries(properties, index),
+                               np.broadcast_to(mixing.pools, lost.shape)[index])
+        unmixed[index] = ~march.feasible
+        transferred[index] = np.where(march.feasible[:, None], march.transferred, froth.transferred[index])
+        energy[index] = np.where(march.feasible, march.energy, froth.energy[index])
+    g_out = point.V_in[:, None] * point.y_in - transferred
     V = g_out.sum(-1)
-    H_in = (point.V_in[..., None] * point.y_in * properties.vapor_enthalpy(point.T_V_in, point.P, point.y_in)).sum(-1)
-    y = g_out / V[..., None]
+    H_in = (point.V_in[:, None] * point.y_in * properties.vapor_enthalpy(point.T_V_in, point.P, point.y_in)).sum(-1)
     T_V = vapor_temperature(properties, point.P, g_out, H_in - energy, froth.T_V)
-    area = point.coefficients.area
-    return TrayResult(V, y, T_V, transferred, energy, transferred / area[..., None], froth)
+    return TrayResult(V, g_out / V[:, None], T_V, transferred, energy, transferred / point.coefficients.area[:, None],
+                      froth, unmixed)
+
+
+def _stretch(froth: PointResult, point: FrothPoint, L: Array, properties: PropertyModel, mixing: LiquidMixing,
+             share: float) -> tuple[Array, Array]:
+    """Component flows and enthalpy a stretch of the tray gives its liquid, from the froth at the stretch's outlet."""
+    n = point.x.shape[-1]
+    # Response to the liquid's flows l by way of (x, T_L), dx_i/dl_j = (delta_ij - x_i)/L.
+    by_l = (froth.sensitivity_liquid[..., :n] + froth.sensitivity_liquid[..., n:]
+            * _temperature_slope(point, properties)[..., None, :])
+    out = (by_l - np.einsum("...ij,...j->...i", by_l, point.x)[..., None]) / L[:, None, None]
+    g = froth.V[:, None] * froth.y
+    HV = properties.vapor_enthalpy(froth.T_V, point.P, froth.y)
+    cp = (g * vapor_heat_capacity(properties, froth.T_V, point.P, froth.y)).sum(-1)
+    slope = -out[:, :n, :]
+    by_energy = -(HV[:, None, :] @ out[:, :n, :])[:, 0, :] - cp[:, None] * out[:, n, :]
+    inert = ~(properties.condensable & properties.volatile)
+    slope[:, inert, :] = 0.0
+    slope[:, :, inert] = 0.0
+    mean, departure = mixed_tray(mixing, share * froth.transferred, share * slope)
+    given = np.where(inert, share * froth.transferred, mean)
+    return given, share * (froth.energy + np.einsum("...i,...i->...", by_energy, departure))
+
+
+def _upstream(point: FrothPoint, at: FrothPoint, l: Array, properties: PropertyModel) -> FrothPoint:
+    """The point at the inlet of a stretch: its liquid l, as far from its bubble line as the leaving liquid."""
+    x = l / l.sum(-1, keepdims=True)
+    if not _on_bubble_line(properties):
+        return replace(at, x=x)
+    leaving = bubble_point(properties, point.P, point.x, point.T_L)[0]
+    T = bubble_point(properties, point.P, x, at.T_L)[0]
+    return replace(at, x=x, T_L=T + (point.T_L - leaving))
+
+
+def _on_bubble_line(properties: PropertyModel) -> bool:
+    """True where the liquid's temperature follows its bubble line along the path.
+
+    It does so at once (a departure condenses or evaporates away within a few per cent of the path). With a masked
+    component a bubble line means nothing: the liquid then keeps its leaving temperature.
+    """
+    return bool((properties.condensable & properties.volatile).all())
+
+
+def _temperature_slope(point: FrothPoint, properties: PropertyModel) -> Array:
+    """dT_L/dn_j along the liquid's path, (B, n)."""
+    if not _on_bubble_line(properties):
+        return np.zeros_like(point.x)
+    return bubble_line(properties, point.P, point.x, point.T_L).temperature_slope
 
 
 def vapor_temperature(properties: PropertyModel, P: Array, g: Array, enthalpy: Array, T: Array) -> Array:
