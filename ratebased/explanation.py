@@ -18,7 +18,10 @@ if TYPE_CHECKING:
 
 @dataclass(frozen=True)
 class FilmExplanation:
-    """One film of an interface. split: parts of the fluxes (n); regime: of each component (n); driving: x_0 - x_delta."""
+    """One film of an interface.
+
+    split : parts of the fluxes. regime : of each component. driving : x_0 - x_delta, (n).
+    """
 
     phase: str
     split: FluxSplit

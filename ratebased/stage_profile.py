@@ -33,7 +33,7 @@ LOWEST_PRESSURE = 200.0
 
 
 @dataclass(frozen=True)
-class Feed:
+class ProfileFeed:
     """A feed in one phase, joining the vapour or the liquid that enters its stage.
 
     stage: number. phase: "vapor" or "liquid". flow: mol/s. composition: mole fractions, (n,). temperature: K.
@@ -47,7 +47,7 @@ class Feed:
 
 
 @dataclass(frozen=True)
-class Draw:
+class ProfileDraw:
     """A side draw with the composition and temperature of the leaving stream. stage; phase; flow, mol/s."""
 
     stage: int
@@ -74,8 +74,8 @@ class StageProfile:
     x: Array
     y: Array
     height: Array | None
-    feeds: tuple[Feed, ...]
-    draws: tuple[Draw, ...]
+    feeds: tuple[ProfileFeed, ...]
+    draws: tuple[ProfileDraw, ...]
     source: str
 
     @property
@@ -92,8 +92,8 @@ class StageProfile:
         return int(rows[0])
 
     @classmethod
-    def read_csv(cls, path: str | Path, names: Sequence[str], *, feeds: Sequence[Feed] = (),
-                 draws: Sequence[Draw] = (), fraction_tolerance: float = 1e-4,
+    def read_csv(cls, path: str | Path, names: Sequence[str], *, feeds: Sequence[ProfileFeed] = (),
+                 draws: Sequence[ProfileDraw] = (), fraction_tolerance: float = 1e-4,
                  balance_tolerance: float = 0.02) -> StageProfile:
         """The profile in a CSV file; see `from_frame`."""
         import pandas as pd
@@ -109,8 +109,8 @@ class StageProfile:
                               balance_tolerance=balance_tolerance, source=str(path))
 
     @classmethod
-    def from_frame(cls, frame: pd.DataFrame, names: Sequence[str], *, feeds: Sequence[Feed] = (),
-                   draws: Sequence[Draw] = (), fraction_tolerance: float = 1e-4, balance_tolerance: float = 0.02,
+    def from_frame(cls, frame: pd.DataFrame, names: Sequence[str], *, feeds: Sequence[ProfileFeed] = (),
+                   draws: Sequence[ProfileDraw] = (), fraction_tolerance: float = 1e-4, balance_tolerance: float = 0.02,
                    source: str = "profile") -> StageProfile:
         """The profile in a DataFrame.
 
@@ -161,7 +161,7 @@ class StageProfile:
                 if not (np.isfinite(stream.flow) and stream.flow > 0):
                     raise InputError(f"{label} to stage {stream.stage}: flow = {stream.flow}, expected a number above "
                                      "zero, mol/s")
-                if isinstance(stream, Feed) and stream.composition.shape != (len(self.names),):
+                if isinstance(stream, ProfileFeed) and stream.composition.shape != (len(self.names),):
                     raise InputError(f"feed to stage {row + 1}: composition has shape {stream.composition.shape}, "
                                      f"expected ({len(self.names)},)")
 

@@ -18,7 +18,7 @@ from typing import TYPE_CHECKING
 from ..efficiency import RatingOptions
 from ..equipment import Section
 from ..stage import PlugFlow, WellMixed, exponential_midpoint, integral
-from ..stage_profile import Draw, Feed, StageProfile
+from ..stage_profile import ProfileDraw, ProfileFeed, StageProfile
 from ..toml_table import TomlTable
 from .hardware import hardware_from
 from .mixture import properties_from
@@ -62,15 +62,15 @@ def read_rate_case(path: Path) -> RateCase:
     return RateCase(title, properties, profile, sections, options, (path, file))
 
 
-def _feed(table: TomlTable, names: list[str]) -> Feed:
-    feed = Feed(table.whole("stage"), table.text("phase"), table.number("flow_mol_s", above=0.0),
+def _feed(table: TomlTable, names: list[str]) -> ProfileFeed:
+    feed = ProfileFeed(table.whole("stage"), table.text("phase"), table.number("flow_mol_s", above=0.0),
                 table.composition("composition", names), table.number("T_K", above=100.0))
     table.finish()
     return feed
 
 
-def _draw(table: TomlTable) -> Draw:
-    draw = Draw(table.whole("stage"), table.text("phase"), table.number("flow_mol_s", above=0.0))
+def _draw(table: TomlTable) -> ProfileDraw:
+    draw = ProfileDraw(table.whole("stage"), table.text("phase"), table.number("flow_mol_s", above=0.0))
     table.finish()
     return draw
 

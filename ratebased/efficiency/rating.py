@@ -100,11 +100,13 @@ class PackedRows:
 class RatedRows:
     """Contact rows of a profile, rated; arrays over rows (R) and components (R, n).
 
-    ordinary: components in both phases, (n); number, kind; P Pa; T_L, T_V_in, T_V (of the computed vapour), T_bubble (of the leaving liquid, K; None on the
-    liquid-temperature basis); V_in, V_out, L mol/s; x, y_in, y_out, y_star, y_profile; murphree and `flagged` (a
-    driving force too small); vaporization; dependent: component with the largest y_out, the one to leave out when n-1
-    efficiencies are used; flux mol/(m2 s), transferred mol/s, energy W, area m2, basis of the area; residuals of the
-    interfaces; closure of component and energy balances; hydraulics; pools: number in series; notes: remark -> rows.
+    ordinary: components in both phases, (n). number, kind; P Pa; T_L, T_V_in, T_V (of the computed vapour), T_bubble (of
+    the leaving liquid, None on the liquid-temperature basis), K; V_in, V_out, L mol/s; x, y_in, y_out, y_star,
+    y_profile. murphree, and `flagged` where its driving force is too small; vaporization; dependent: the component with
+    the largest y_out, to be left out when n-1 efficiencies are used. flux mol/(m2 s), transferred mol/s, energy W; area
+    m2 and its basis. interface_residual, energy_residual: of the interfaces; component_closure, energy_closure: of the
+    balances. vapor_entropy_share: of the vapour film at the middle of the froth. hydraulics; pools: number in series;
+    notes: remark -> rows.
     """
 
     names: tuple[str, ...]

@@ -8,7 +8,7 @@ import numpy as np
 
 from ..equipment import Hardware
 from ..properties.protocol import Array, PropertyModel
-from ..stage_profile import Draw, Feed, StageProfile
+from ..stage_profile import ProfileDraw, ProfileFeed, StageProfile
 from .rating import RatedRows, RatingOptions, rate_rows
 
 if TYPE_CHECKING:
@@ -44,8 +44,9 @@ class EfficiencyTable:
         """One text a row: what to know before using its figures."""
         r = self.rows
         texts: list[list[str]] = [[] for _ in r.number]
-        for where, words in ((r.flagged & r.ordinary, "driving force too small"), (~r.flagged & r.ordinary & (r.murphree < 0), "negative"),
-                             (~r.flagged & r.ordinary & (r.murphree > 1), "above one")):
+        sound = r.ordinary & ~r.flagged
+        for where, words in ((r.ordinary & r.flagged, "driving force too small"),
+                             (sound & (r.murphree < 0), "negative"), (sound & (r.murphree > 1), "above one")):
             for j in np.flatnonzero(where.any(-1)):
                 texts[j].append(f"{', '.join(np.array(r.names)[where[j]])}: {words}")
         for limit, words in (("flooding", "above flooding"), ("weeping", "weeping"), ("downcomer", "downcomer full")):
@@ -181,7 +182,7 @@ class EfficiencyTable:
 
 
 def efficiency_table(profile: pd.DataFrame | StageProfile, hardware: Hardware, properties: PropertyModel, *,
-                     feeds: tuple[Feed, ...] = (), draws: tuple[Draw, ...] = (),
+                     feeds: tuple[ProfileFeed, ...] = (), draws: tuple[ProfileDraw, ...] = (),
                      options: RatingOptions | None = None) -> EfficiencyTable:
     """Component efficiencies (trays) and HETPs (packings) of every contact row of a profile.
 
