@@ -14,59 +14,54 @@ from dataclasses import dataclass
 
 import numpy as np
 from numpy.polynomial import chebyshev
+from numpy.typing import ArrayLike, NDArray
 
 from ..errors import InputError, PropertyRangeError
 from .protocol import Array
 
 ScalarFunction = Callable[[float], float]
 
-DEGREES = (16, 24, 32, 48)
-FIT_TOLERANCE = 2e-12
+DEGREES = (16, 20, 26, 36, 48)
+FIT_TOLERANCE = 1e-11
 SHORTEST_SEGMENT = 1e-3
 """K: limits closer together than this are one limit."""
 
 
 @dataclass(frozen=True)
-class BankView:
-    """Some functions of a bank, some with derivatives: the columns of one matrix product."""
+class Basis:
+    """Temperatures made ready for any view of a bank: Chebyshev polynomials (m, degree + 1) and segments, flattened."""
 
-    low: float
-    high: float
-    edges: Array
-    coefficients: tuple[Array, ...]
+    polynomials: Array
+    segment: NDArray[np.intp] | None
+    shape: tuple[int, ...]
+
+
+@dataclass(frozen=True)
+class BankView:
+    """Some functions of a bank, some with derivatives: the columns of one matrix product.
+
+    `coefficients` (degree + 1, segments x columns), the columns of the first segment first.
+    """
+
+    coefficients: Array
+    segments: int
     count: int
 
-    def __call__(self, T: Array) -> list[Array]:
-        """The functions asked for, in that order, each (..., n), at temperatures T (...) in K.
-
-        Raises `PropertyRangeError` for a temperature outside the range of the bank.
-        """
-        T = np.asarray(T, float)
-        if T.size and not (self.low <= T.min() and T.max() <= self.high):
-            self._refuse(T)
-        flat = T.reshape(-1)
-        if len(self.coefficients) == 1:
-            values = _series(flat, self.low, self.high, self.coefficients[0])
-        else:
-            values = np.empty((flat.size, self.coefficients[0].shape[1]))
-            segment = np.clip(np.searchsorted(self.edges, flat, side="right") - 1, 0, len(self.coefficients) - 1)
-            for s, coefficients in enumerate(self.coefficients):
-                inside = segment == s
-                if inside.any():
-                    values[inside] = _series(flat[inside], self.edges[s], self.edges[s + 1], coefficients)
-        values = values.reshape(*T.shape, self.count, -1)
+    def __call__(self, basis: Basis) -> list[Array]:
+        """The functions asked for, in that order, each (..., n), at the temperatures of a basis."""
+        values = basis.polynomials @ self.coefficients
+        if basis.segment is not None:
+            every = values.reshape(len(values), self.segments, -1)
+            values = every[np.arange(len(values)), basis.segment]
+        values = values.reshape(*basis.shape, self.count, -1)
         return [values[..., k, :] for k in range(self.count)]
 
-    def _refuse(self, T: Array) -> None:
-        bad = ~((T >= self.low) & (T <= self.high))
-        where = tuple(int(i) for i in np.argwhere(bad)[0])
-        raise PropertyRangeError(f"T{list(where) if where else ''} = {T[where]:.8g} K is outside the range "
-                                 f"{self.low:g} to {self.high:g} K the properties were built for")
 
-
-def _series(T: Array, low: float, high: float, coefficients: Array) -> Array:
+def _series(T: Array, low: ArrayLike, high: ArrayLike, degree: int) -> Array:
+    """Chebyshev polynomials 0 to degree of T scaled to (low, high), (m, degree + 1)."""
+    low, high = np.asarray(low), np.asarray(high)
     scaled = np.clip((2.0 * T - (high + low)) / (high - low), -1.0, 1.0)
-    values: Array = np.cos(np.arccos(scaled)[:, None] * np.arange(len(coefficients))) @ coefficients
+    values: Array = np.cos(np.arccos(scaled)[:, None] * np.arange(degree + 1))
     return values
 
 
@@ -80,7 +75,7 @@ class TemperatureBank:
     limits : temperatures inside the range where some function has a kink; a new series starts there.
 
     `fit_error[name]` (n,) is the largest error found between the nodes, relative to the largest value of the
-    function. The degree is the smallest of 16, 24, 32, 48 that brings every function below 2e-12; a function that no
+    function. The degree is the smallest of `DEGREES` that brings every function below 1e-11; a function that no
     degree brings there does not raise the degree of the others.
     """
 
@@ -104,10 +99,28 @@ class TemperatureBank:
         scale = np.max([fit[2] for fit in fits], axis=0)
         error = np.max([fit[1] for fit in fits], axis=0) / np.where(scale > 0, scale, 1.0)
         self.fit_error = {name: error[where] for name, where in self._slices.items()}
-        self._coefficients = tuple(fit[0] for fit in fits)
+        self.degree = max(len(fit[0]) for fit in fits) - 1
+        self._coefficients = [np.pad(fit[0], ((0, self.degree + 1 - len(fit[0])), (0, 0))) for fit in fits]
+
+    def basis(self, T: Array) -> Basis:
+        """Temperatures T (...) in K made ready for the views of this bank.
+
+        Raises `PropertyRangeError` for a temperature outside the range of the bank.
+        """
+        T = np.asarray(T, float)
+        low, high = self.T_range
+        if T.size and not (low <= T.min() and T.max() <= high):
+            where = tuple(int(i) for i in np.argwhere(~((T >= low) & (T <= high)))[0])
+            raise PropertyRangeError(f"T{list(where) if where else ''} = {T[where]:.8g} K is outside the range "
+                                     f"{low:g} to {high:g} K the properties were built for")
+        flat = T.reshape(-1)
+        if len(self._coefficients) == 1:
+            return Basis(_series(flat, low, high, self.degree), None, T.shape)
+        segment = np.clip(np.searchsorted(self.edges, flat, side="right") - 1, 0, len(self._coefficients) - 1)
+        return Basis(_series(flat, self.edges[segment], self.edges[segment + 1], self.degree), segment, T.shape)
 
     def view(self, *wanted: tuple[str, int]) -> BankView:
-        """An evaluator of (name, order of the temperature derivative) pairs."""
+        """An evaluator of (name, order of the temperature derivative) pairs, for a `basis` of this bank."""
         matrices = []
         for coefficients, a, b in zip(self._coefficients, self.edges[:-1], self.edges[1:]):
             blocks = []
@@ -118,7 +131,7 @@ class TemperatureBank:
                     block = np.concatenate([derived, np.zeros((order, block.shape[1]))])
                 blocks.append(block)
             matrices.append(np.concatenate(blocks, axis=1))
-        return BankView(*self.T_range, self.edges, tuple(matrices), len(wanted))
+        return BankView(np.concatenate(matrices, axis=1), len(matrices), len(wanted))
 
 
 def _sample(functions: Sequence[ScalarFunction], T: Array) -> Array:
@@ -137,7 +150,7 @@ def _fit(functions: Sequence[ScalarFunction], low: float, high: float) -> tuple[
         values = _sample(functions, 0.5 * (high - low) * nodes + 0.5 * (high + low))
         coefficients = chebyshev.chebvander(nodes, degree).T @ values * (2.0 / (degree + 1))
         coefficients[0] *= 0.5
-        error = np.abs(_series(check, low, high, coefficients) - truth).max(0)
+        error = np.abs(_series(check, low, high, degree) @ coefficients - truth).max(0)
         done = error <= FIT_TOLERANCE * scale
         if best is None:
             best, pending = (coefficients, error), ~done

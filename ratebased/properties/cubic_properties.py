@@ -93,10 +93,11 @@ class CubicProperties(MixtureModel):
     # enthalpies -------------------------------------------------------------------------------------------------
 
     def _enthalpy(self, T: Array, P: Array, z: Array, phase: Phase) -> Array:
-        return self._gas_enthalpy(T)[0] + excess_enthalpy(T, self.equation.ln_phi(T, P, z, phase, 1))
+        return self._gas_enthalpy(self._bank.basis(T))[0] + excess_enthalpy(T, self.equation.ln_phi(T, P, z, phase, 1))
 
     def _heat_capacity(self, T: Array, P: Array, z: Array, phase: Phase) -> Array:
-        return self._gas_heat_capacity(T)[0] + excess_heat_capacity(T, self.equation.ln_phi(T, P, z, phase, 2))
+        departure = excess_heat_capacity(T, self.equation.ln_phi(T, P, z, phase, 2))
+        return self._gas_heat_capacity(self._bank.basis(T))[0] + departure
 
     def vapor_enthalpy(self, T: ArrayLike, P: ArrayLike, y: ArrayLike) -> Array:
         """Partial molar enthalpies of the vapour above the ideal gas at 298.15 K, J/mol, (..., n)."""
@@ -120,14 +121,14 @@ class CubicProperties(MixtureModel):
         """Density and heat capacity of the equation of state, the other properties those of a gas at low pressure."""
         T, P, y = self._state(T, P, "y", y)
         density = P / (GAS_CONSTANT * T * self.equation.compressibility(T, P, y, Phase.VAPOR))
-        return self._vapor_transport(T, P, y, density, self._heat_capacity(T, P, y, Phase.VAPOR))
+        return self._vapor_transport(self._bank.basis(T), T, P, y, density, self._heat_capacity(T, P, y, Phase.VAPOR))
 
     def liquid_transport(self, T: ArrayLike, P: ArrayLike, x: ArrayLike) -> LiquidTransport:
         """Density (volume-shifted) and heat capacity of the equation of state, mixing rules of `transport`."""
         T, P, x = self._state(T, P, "x", x)
         volume = GAS_CONSTANT * T / P * self.equation.compressibility(T, P, x, Phase.LIQUID)
         density = 1.0 / (volume - x @ self.equation.volume_shift)
-        return self._liquid_transport(T, P, x, density, self._heat_capacity(T, P, x, Phase.LIQUID))
+        return self._liquid_transport(self._bank.basis(T), T, P, x, density, self._heat_capacity(T, P, x, Phase.LIQUID))
 
     # saturation -------------------------------------------------------------------------------------------------
 

@@ -11,6 +11,9 @@ from correlations.mixture_diffusivity import kooijman_taylor
 
 from .protocol import Array, Mask
 
+REFERENCE_TEMPERATURE = 300.0
+REFERENCE_PRESSURE = 1e5
+
 
 class GasDiffusivity(Protocol):
     """Pair diffusivities of a gas mixture, m2/s, (..., n, n), from T (...) K and P (...) Pa."""
@@ -37,12 +40,21 @@ class Fuller:
     """
 
     def __init__(self, molar_mass: Array, volume: Array) -> None:
-        self._masses = molar_mass[:, None], molar_mass[None, :]
-        self._volumes = volume[:, None], volume[None, :]
+        self._pairs = molar_mass[:, None], molar_mass[None, :], volume[:, None], volume[None, :]
+        self._reference = fuller.silent(REFERENCE_TEMPERATURE, REFERENCE_PRESSURE, *self._pairs)
+        ranges = fuller.record.validity.ranges
+        self._T_range, self._P_range = ranges["temperature"], ranges["pressure"]
 
     def __call__(self, T: Array, P: Array) -> Array:
-        """Pair diffusivities, m2/s, (..., n, n)."""
-        return fuller(np.asarray(T)[..., None, None], np.asarray(P)[..., None, None], *self._masses, *self._volumes)
+        """Pair diffusivities, m2/s, (..., n, n); the correlation's own warning outside its range."""
+        T, P = np.asarray(T, float), np.asarray(P, float)
+        if any(interval is not None and interval.outside(value).any()
+               for interval, value in ((self._T_range, T), (self._P_range, P))):
+            return fuller(T[..., None, None], P[..., None, None], *self._pairs)
+        # Inside it the pairs and the state separate, T^1.75/P.
+        scale = (T / REFERENCE_TEMPERATURE) ** 1.75 * (REFERENCE_PRESSURE / P)
+        result: Array = scale[..., None, None] * self._reference
+        return result
 
 
 class WilkeChang:
@@ -52,14 +64,14 @@ class WilkeChang:
     """
 
     def __init__(self, molar_mass: Array, volume: Array, association_factor: Array) -> None:
-        self._solvent_mass = molar_mass[None, :]
-        self._solute_volume = volume[:, None]
-        self._factor = association_factor[None, :]
+        # The correlation is linear in T/viscosity.
+        self._per_fluidity = wilke_chang.silent(1.0, 1.0, molar_mass[None, :], volume[:, None],
+                                                association_factor[None, :])
 
     def __call__(self, T: Array, viscosity: Array) -> Array:
         """Dilute diffusivities, m2/s, (..., n, n)."""
-        return wilke_chang(np.asarray(T)[..., None, None], viscosity[..., None, :], self._solvent_mass,
-                           self._solute_volume, self._factor)
+        result: Array = self._per_fluidity * (np.asarray(T, float)[..., None] / viscosity)[..., None, :]
+        return result
 
 
 class HaydukMinhas:

@@ -1,13 +1,16 @@
 """What the property models built from pure-component data share: names, checks, transport, saturation, summary."""
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Sequence
+from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 import numpy as np
 from numpy.typing import ArrayLike
 
 from ..errors import InputError
+from .bank import Basis
 from .components import PropertyRecord, PureComponents, Role, records_frame
 from .diffusion import GasDiffusivity, LiquidDiffusivity
 from .jet import Jet
@@ -20,6 +23,20 @@ if TYPE_CHECKING:
 
 SurfaceTension = Callable[[Array, Array, Array], Array]
 """(T, x, sigma) -> N/m of the mixture, sigma (..., n) of the pure liquids."""
+
+
+@dataclass(frozen=True)
+class StageProperties:
+    """Everything a stage needs at one state, each field as the method of that name gives it."""
+
+    k_value: Array
+    thermodynamic_factor: Array
+    vapor_enthalpy: Array
+    liquid_enthalpy: Array
+    vapor_heat_capacity: Array
+    liquid_heat_capacity: Array
+    vapor: VaporTransport
+    liquid: LiquidTransport
 
 
 class MixtureModel:
@@ -43,7 +60,7 @@ class MixtureModel:
         self._liquid_diffusivity = liquid_diffusivity
         self._surface_tension = surface_tension
         self._records = (*components.records, *records)
-        bank = components.bank
+        bank = self._bank = components.bank
         self._gas_enthalpy = bank.view(("gas_enthalpy", 0))
         self._gas_heat_capacity = bank.view(("gas_enthalpy", 1))
         self._vapor_values = bank.view(("gas_viscosity", 0), ("gas_conductivity", 0))
@@ -55,7 +72,7 @@ class MixtureModel:
         if composition.shape[-1:] != (len(self.names),):
             raise InputError(f"{name}: expected {len(self.names)} components on the last axis, got shape "
                              f"{composition.shape}")
-        if not np.isfinite(composition).all():
+        if not math.isfinite(composition.sum()):
             where = tuple(int(i) for i in np.argwhere(~np.isfinite(composition))[0])
             raise InputError(f"{name}{list(where)} = {composition[where]}: expected a finite number")
         return composition
@@ -68,23 +85,23 @@ class MixtureModel:
 
     # transport --------------------------------------------------------------------------------------------------
 
-    def _vapor_transport(self, T: Array, P: Array, y: Array, density: Array, heat_capacity: Array) -> VaporTransport:
+    def _vapor_transport(self, basis: Basis, T: Array, P: Array, y: Array, density: Array, heat_capacity: Array
+                         ) -> VaporTransport:
         """Mixing rules at low pressure with a molar density (...) and partial molar heat capacities (..., n)."""
-        viscosity, conductivity = self._vapor_values(T)
+        viscosity, conductivity = self._vapor_values(basis)
         phi = interaction_coefficients(viscosity, self.molar_mass)
         shape = np.broadcast_shapes(T.shape, P.shape, y.shape[:-1])
         n = len(self.names)
-        density = np.broadcast_to(density, shape)
-        return VaporTransport(density, density * (y @ self.molar_mass),
-                              np.broadcast_to(gas_mixture(y, viscosity, phi), shape),
-                              np.broadcast_to((y * heat_capacity).sum(-1), shape),
-                              np.broadcast_to(gas_mixture(y, conductivity, phi), shape),
-                              np.broadcast_to(self._gas_diffusivity(T, P), (*shape, n, n)))
+        density = spread(density, shape)
+        mixed = gas_mixture(y, np.stack([viscosity, conductivity], -2), phi)
+        return VaporTransport(density, density * (y @ self.molar_mass), spread(mixed[..., 0], shape),
+                              spread((y * heat_capacity).sum(-1), shape), spread(mixed[..., 1], shape),
+                              spread(self._gas_diffusivity(T, P), (*shape, n, n)))
 
-    def _liquid_transport(self, T: Array, P: Array, x: Array, density: Array | None, heat_capacity: Array
-                          ) -> LiquidTransport:
+    def _liquid_transport(self, basis: Basis, T: Array, P: Array, x: Array, density: Array | None,
+                          heat_capacity: Array) -> LiquidTransport:
         """Mixing rules with a molar density (...), None where volumes add up, and partial heat capacities (..., n)."""
-        volume, ln_viscosity, conductivity, tension = self._liquid_values(T)
+        volume, ln_viscosity, conductivity, tension = self._liquid_values(basis)
         own = x
         if not self._all_liquid:
             own = np.where(self._liquid, x, 0.0)
@@ -92,15 +109,15 @@ class MixtureModel:
         inside = x if self.condensable.all() else np.where(self.condensable, x, 0.0)
         shape = np.broadcast_shapes(T.shape, P.shape, x.shape[:-1])
         n = len(self.names)
-        density = np.broadcast_to(1.0 / (inside * volume).sum(-1) if density is None else density, shape)
+        density = spread(1.0 / (inside * volume).sum(-1) if density is None else density, shape)
         sigma = surface_tension(own, tension, volume) if self._surface_tension is None else np.asarray(
             self._surface_tension(T, x, tension), float)
         diffusivity = self._liquid_diffusivity(T, x, np.exp(ln_viscosity))
         return LiquidTransport(density, density * (inside @ self.molar_mass),
-                               np.broadcast_to(liquid_viscosity(own, ln_viscosity), shape),
-                               np.broadcast_to((inside * heat_capacity).sum(-1), shape),
-                               np.broadcast_to(liquid_conductivity(own, conductivity, self.molar_mass), shape),
-                               np.broadcast_to(diffusivity, (*shape, n, n)), np.broadcast_to(sigma, shape))
+                               spread(liquid_viscosity(own, ln_viscosity), shape),
+                               spread((inside * heat_capacity).sum(-1), shape),
+                               spread(liquid_conductivity(own, conductivity, self.molar_mass), shape),
+                               spread(diffusivity, (*shape, n, n)), spread(sigma, shape))
 
     # saturation and report --------------------------------------------------------------------------------------
 
@@ -121,6 +138,11 @@ class MixtureModel:
     def summary(self) -> pd.DataFrame:
         """Where every property comes from: component, property, method, T_low_K, T_high_K, source, fit_error, note."""
         return records_frame(self._records)
+
+
+def spread(array: Array, shape: tuple[int, ...]) -> Array:
+    """`array` broadcast to a shape, itself where it has that shape already (which is the usual case, and quicker)."""
+    return array if array.shape == shape else np.broadcast_to(array, shape)
 
 
 def thermodynamic_factor(x: Array, J: Array) -> Array:

@@ -8,7 +8,7 @@ from __future__ import annotations
 
 import numpy as np
 
-from .bank import BankView, TemperatureBank
+from .bank import BankView, Basis, TemperatureBank
 from .components import PureComponents, Role
 from .jet import Jet
 from .protocol import GAS_CONSTANT, Array
@@ -20,6 +20,7 @@ class PureLiquids:
 
     vapor : model of the vapour, whose fugacity coefficients at saturation correct the vapour pressure; None takes an
     ideal gas. poynting : whether the fugacity of a liquid depends on pressure.
+    Every method takes `basis`, the temperatures T made ready for the bank of the components, beside T and P.
     A component that is no liquid with a vapour pressure of its own has ln f0 = 0 and no latent heat.
     """
 
@@ -36,51 +37,51 @@ class PureLiquids:
                                  ("liquid_volume", 1), ("liquid_volume", 2))
         self._phi: BankView | None = None
         if vapor is not None:
-            saturated = _saturated_vapor(components, vapor, self._has)
+            saturated = self._saturated = _saturated_vapor(components, vapor, self._has)
             self._phi = saturated.view(("ln_phi", 0))
             self._phi_slope = saturated.view(("ln_phi", 1))
             self._departure = saturated.view(("departure", 0))
             self._departure_slope = saturated.view(("departure", 1))
 
-    def ln_fugacity(self, T: Array, P: Array) -> Array:
+    def ln_fugacity(self, basis: Basis, T: Array, P: Array) -> Array:
         """ln f0, f0 in Pa, (..., n)."""
-        result = self._pressure(T)[0]
+        result = self._pressure(basis)[0]
         if self._phi is not None:
-            result = result + self._phi(T)[0]
+            result = result + self._phi(self._saturated.basis(T))[0]
         if self._poynting:
-            result = result + self._pressure_correction(T, P)[0]
+            result = result + self._pressure_correction(basis, T, P)[0]
         return result
 
-    def ln_fugacity_slope(self, T: Array, P: Array) -> Array:
+    def ln_fugacity_slope(self, basis: Basis, T: Array, P: Array) -> Array:
         """d ln f0/dT at constant pressure, 1/K, (..., n)."""
-        result = self._pressure_slope(T)[0]
+        result = self._pressure_slope(basis)[0]
         if self._phi is not None:
-            result = result + self._phi_slope(T)[0]
+            result = result + self._phi_slope(self._saturated.basis(T))[0]
         if self._poynting:
-            result = result + self._pressure_correction(T, P)[1]
+            result = result + self._pressure_correction(basis, T, P)[1]
         return result
 
-    def enthalpy_below_gas(self, T: Array, P: Array) -> Array:
+    def enthalpy_below_gas(self, basis: Basis, T: Array, P: Array) -> Array:
         """Enthalpy of the ideal gas less that of the liquid at T and P, J/mol, (..., n)."""
-        result = self._latent(T)[0]
+        result = self._latent(basis)[0]
         if self._phi is not None:
-            result = result - self._departure(T)[0]
+            result = result - self._departure(self._saturated.basis(T))[0]
         if self._poynting:
-            result = result - self._pressure_correction(T, P)[2]
+            result = result - self._pressure_correction(basis, T, P)[2]
         return result
 
-    def heat_capacity_below_gas(self, T: Array, P: Array) -> Array:
+    def heat_capacity_below_gas(self, basis: Basis, T: Array, P: Array) -> Array:
         """Temperature derivative of `enthalpy_below_gas`, J/(mol K), (..., n)."""
-        result = self._latent_slope(T)[0]
+        result = self._latent_slope(basis)[0]
         if self._phi is not None:
-            result = result - self._departure_slope(T)[0]
+            result = result - self._departure_slope(self._saturated.basis(T))[0]
         if self._poynting:
-            result = result - self._pressure_correction(T, P)[3]
+            result = result - self._pressure_correction(basis, T, P)[3]
         return result
 
-    def _pressure_correction(self, T: Array, P: Array) -> tuple[Array, Array, Array, Array]:
+    def _pressure_correction(self, basis: Basis, T: Array, P: Array) -> tuple[Array, Array, Array, Array]:
         """Poynting's term and its slope, the enthalpy by pressure and its slope; volumes taken as incompressible."""
-        ln_pressure, slope, V, dV, ddV = self._volume(T)
+        ln_pressure, slope, V, dV, ddV = self._volume(basis)
         T, P = np.asarray(T, float)[..., None], np.asarray(P, float)[..., None]
         saturation = np.exp(ln_pressure)
         excess = P - saturation
@@ -97,11 +98,11 @@ class PureLiquids:
 
 def _saturated_vapor(components: PureComponents, vapor: VaporModel, has: Array) -> TemperatureBank:
     """ln phi and the enthalpy departure of every pure saturated vapour, as a bank over the same range."""
-    pressure = components.bank.view(("ln_vapor_pressure", 0), ("ln_vapor_pressure", 1))
+    pressure = components.bank.view(("ln_vapor_pressure", 0))
     n = len(components.names)
 
     def at(T: float, i: int) -> Jet:
-        return vapor.ln_phi(np.array(T), np.exp(pressure(np.array(T))[0][i]), np.eye(n)[i], 1)
+        return vapor.ln_phi(np.array(T), np.exp(pressure(components.bank.basis(np.array(T)))[0][i]), np.eye(n)[i], 1)
 
     def ln_phi(i: int, T: float) -> float:
         return float(at(T, i).value[i])

@@ -315,7 +315,7 @@ def _air_function(data: ComponentData, spec: _Spec) -> tuple[ScalarFunction, Pro
     def mixed(T: float) -> float:
         phi = interaction_coefficients(np.array([v.T_dependent_property(T) for v in viscosities]), masses)
         values = np.array([correlation.T_dependent_property(T) for _, correlation in parts])
-        return float(gas_mixture(z, values, phi))
+        return float(gas_mixture(z, values[None], phi)[0])
 
     record = PropertyRecord("air", spec.name, "mixture of nitrogen, oxygen and argon", None, None, _source(),
                             note="mole fractions 0.7812, 0.2096, 0.0092")

@@ -9,10 +9,19 @@ from numpy.typing import ArrayLike
 
 from ..errors import InputError
 from .activity import ActivityModel, DissolvedGases
+from .bank import Basis
 from .components import PropertyRecord, PureComponents, Role
 from .diffusion import GasDiffusivity, LiquidDiffusivity
 from .henry import HenryLaw
-from .mixture import MixtureModel, SurfaceTension, excess_enthalpy, excess_heat_capacity, thermodynamic_factor
+from .mixture import (
+    MixtureModel,
+    StageProperties,
+    SurfaceTension,
+    excess_enthalpy,
+    excess_heat_capacity,
+    spread,
+    thermodynamic_factor,
+)
 from .protocol import GAS_CONSTANT, Array, KDerivatives, LiquidTransport, VaporTransport
 from .standard_state import PureLiquids
 from .vapor import VaporModel
@@ -89,7 +98,7 @@ class ThermoProperties(MixtureModel):
         T (...) K, P (...) Pa, x and y (..., n). Raises `PropertyRangeError` outside `T_range`.
         """
         T, P, x = np.asarray(T, float), np.asarray(P, float), self._liquid_composition(x)
-        ln_fugacity = self._pure.ln_fugacity(T, P) + self.activity.ln_gamma(T, x).value
+        ln_fugacity = self._pure.ln_fugacity(self._bank.basis(T), T, P) + self.activity.ln_gamma(T, x).value
         if self._vapor is not None:
             ln_fugacity = ln_fugacity - self._vapor.ln_phi(T, P, self._checked("y", y)).value
         K: Array = np.exp(ln_fugacity) / P[..., None]
@@ -98,7 +107,7 @@ class ThermoProperties(MixtureModel):
     def k_value_derivatives(self, T: ArrayLike, P: ArrayLike, x: ArrayLike, y: ArrayLike) -> KDerivatives:
         """Analytic derivatives of ln K by temperature and mole numbers, see `KDerivatives`."""
         T, P, x = np.asarray(T, float), np.asarray(P, float), self._liquid_composition(x)
-        slope = self._pure.ln_fugacity_slope(T, P) + self.activity.ln_gamma(T, x, 1).terms[1]
+        slope = self._pure.ln_fugacity_slope(self._bank.basis(T), T, P) + self.activity.ln_gamma(T, x, 1).terms[1]
         by_liquid = self.activity.mole_number_derivatives(T, x)
         shape = np.broadcast_shapes(slope.shape[:-1], P.shape, np.shape(y)[:-1])
         n = len(self.names)
@@ -111,7 +120,7 @@ class ThermoProperties(MixtureModel):
             slope = np.where(self._ordinary, slope, 0.0)
             by_liquid = np.where(self._ordinary[:, None] & self.condensable, by_liquid, 0.0)
             by_vapor = np.where(self._ordinary[:, None] & self.volatile, by_vapor, 0.0)
-        return KDerivatives(np.broadcast_to(slope, (*shape, n)), np.broadcast_to(by_liquid, (*shape, n, n)), by_vapor)
+        return KDerivatives(spread(slope, (*shape, n)), spread(by_liquid, (*shape, n, n)), by_vapor)
 
     def thermodynamic_factor(self, T: ArrayLike, P: ArrayLike, x: ArrayLike) -> Array:
         """[Gamma] of the liquid, (..., n-1, n-1): delta_ij + x_i (J_ij - J_in), J the mole-number derivatives."""
@@ -131,29 +140,35 @@ class ThermoProperties(MixtureModel):
     def vapor_enthalpy(self, T: ArrayLike, P: ArrayLike, y: ArrayLike) -> Array:
         """Partial molar enthalpies of the vapour above the ideal gas at 298.15 K, J/mol, (..., n)."""
         T, P, y = np.asarray(T, float), np.asarray(P, float), self._checked("y", y)
-        h = self._gas_enthalpy(T)[0]
+        h = self._gas_enthalpy(self._bank.basis(T))[0]
         if self._vapor is not None:
             h = h + excess_enthalpy(T, self._vapor.ln_phi(T, P, y, 1))
-        return np.broadcast_to(h, np.broadcast_shapes(h.shape, y.shape)).copy()
+        return spread(h, np.broadcast_shapes(h.shape, y.shape))
 
     def liquid_enthalpy(self, T: ArrayLike, P: ArrayLike, x: ArrayLike) -> Array:
         """Partial molar enthalpies of the liquid above the ideal gas at 298.15 K, J/mol, (..., n)."""
         T, P, x = np.asarray(T, float), np.asarray(P, float), self._liquid_composition(x)
-        pure = self._gas_enthalpy(T)[0] - self._pure.enthalpy_below_gas(T, P)
+        basis = self._bank.basis(T)
+        pure = self._gas_enthalpy(basis)[0] - self._pure.enthalpy_below_gas(basis, T, P)
         return pure + excess_enthalpy(T, self.activity.ln_gamma(T, x, 1))
 
     def vapor_heat_capacity(self, T: ArrayLike, P: ArrayLike, y: ArrayLike) -> Array:
         """dH_i/dT of the vapour at constant pressure and composition, J/(mol K), (..., n)."""
         T, P, y = np.asarray(T, float), np.asarray(P, float), self._checked("y", y)
-        cp = self._gas_heat_capacity(T)[0]
-        if self._vapor is not None:
-            cp = cp + excess_heat_capacity(T, self._vapor.ln_phi(T, P, y, 2))
-        return np.broadcast_to(cp, np.broadcast_shapes(cp.shape, y.shape)).copy()
+        cp = self._vapor_cp(self._bank.basis(T), T, P, y)
+        return spread(cp, np.broadcast_shapes(cp.shape, y.shape))
+
+    def _vapor_cp(self, basis: Basis, T: Array, P: Array, y: Array) -> Array:
+        cp = self._gas_heat_capacity(basis)[0]
+        return cp if self._vapor is None else cp + excess_heat_capacity(T, self._vapor.ln_phi(T, P, y, 2))
 
     def liquid_heat_capacity(self, T: ArrayLike, P: ArrayLike, x: ArrayLike) -> Array:
         """dH_i/dT of the liquid at constant pressure and composition, J/(mol K), (..., n)."""
         T, P, x = np.asarray(T, float), np.asarray(P, float), self._liquid_composition(x)
-        pure = self._gas_heat_capacity(T)[0] - self._pure.heat_capacity_below_gas(T, P)
+        return self._liquid_cp(self._bank.basis(T), T, P, x)
+
+    def _liquid_cp(self, basis: Basis, T: Array, P: Array, x: Array) -> Array:
+        pure = self._gas_heat_capacity(basis)[0] - self._pure.heat_capacity_below_gas(basis, T, P)
         return pure + excess_heat_capacity(T, self.activity.ln_gamma(T, x, 2))
 
     # transport --------------------------------------------------------------------------------------------------
@@ -168,7 +183,8 @@ class ThermoProperties(MixtureModel):
         density = P / (GAS_CONSTANT * T)
         if self._vapor is not None:
             density = density / self._vapor.compressibility(T, P, y)
-        return self._vapor_transport(T, P, y, density, self.vapor_heat_capacity(T, P, y))
+        basis = self._bank.basis(T)
+        return self._vapor_transport(basis, T, P, y, density, self._vapor_cp(basis, T, P, y))
 
     def liquid_transport(self, T: ArrayLike, P: ArrayLike, x: ArrayLike) -> LiquidTransport:
         """Volumes that add up, logarithmic viscosity, mixing rules of `transport`, generalised Vignes diffusivities.
@@ -177,4 +193,36 @@ class ThermoProperties(MixtureModel):
         the diffusivities; a component not in the liquid counts nowhere. Fields (...), diffusivity (..., n, n).
         """
         T, P, x = np.asarray(T, float), np.asarray(P, float), self._liquid_composition(x)
-        return self._liquid_transport(T, P, x, None, self.liquid_heat_capacity(T, P, x))
+        basis = self._bank.basis(T)
+        return self._liquid_transport(basis, T, P, x, None, self._liquid_cp(basis, T, P, x))
+
+    # all at once ------------------------------------------------------------------------------------------------
+
+    def evaluate(self, T: ArrayLike, P: ArrayLike, x: ArrayLike, y: ArrayLike) -> StageProperties:
+        """What the methods give at one temperature for both phases, with the shared work done once.
+
+        T (...) K, P (...) Pa, x and y (..., n). About two thirds of the time of the separate calls.
+        """
+        T, P, x = np.asarray(T, float), np.asarray(P, float), self._liquid_composition(x)
+        y = self._checked("y", y)
+        basis = self._bank.basis(T)
+        ln_gamma = self.activity.ln_gamma(T, x, 2)
+        J = self.activity.mole_number_derivatives(T, x)
+        ln_fugacity = self._pure.ln_fugacity(basis, T, P) + ln_gamma.value
+        gas_enthalpy, gas_cp = self._gas_enthalpy(basis)[0], self._gas_heat_capacity(basis)[0]
+        liquid_enthalpy = gas_enthalpy - self._pure.enthalpy_below_gas(basis, T, P) + excess_enthalpy(T, ln_gamma)
+        liquid_cp = gas_cp - self._pure.heat_capacity_below_gas(basis, T, P) + excess_heat_capacity(T, ln_gamma)
+        density = P / (GAS_CONSTANT * T)
+        if self._vapor is not None:
+            ln_phi = self._vapor.ln_phi(T, P, y, 2)
+            ln_fugacity = ln_fugacity - ln_phi.value
+            gas_enthalpy = gas_enthalpy + excess_enthalpy(T, ln_phi)
+            gas_cp = gas_cp + excess_heat_capacity(T, ln_phi)
+            density = density / self._vapor.compressibility(T, P, y)
+        K: Array = np.exp(ln_fugacity) / P[..., None]
+        shape = np.broadcast_shapes(gas_enthalpy.shape, y.shape)
+        return StageProperties(
+            K if self._all_ordinary else np.where(self._ordinary, K, 0.0), thermodynamic_factor(x, J),
+            spread(gas_enthalpy, shape), liquid_enthalpy, spread(gas_cp, shape), liquid_cp,
+            self._vapor_transport(basis, T, P, y, density, gas_cp),
+            self._liquid_transport(basis, T, P, x, None, liquid_cp))

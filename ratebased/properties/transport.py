@@ -22,13 +22,13 @@ def interaction_coefficients(viscosity: Array, molar_mass: Array) -> Array:
 
 
 def gas_mixture(y: Array, values: Array, phi: Array) -> Array:
-    """sum_i y_i v_i / sum_j y_j phi_ij, (...): Wilke's viscosity, or a conductivity.
+    """sum_i y_i v_i / sum_j y_j phi_ij, (..., m): Wilke's viscosity, Wassiljewa's conductivity, of values (..., m, n).
 
-    With conductivities it is Wassiljewa's form with the coefficients of Mason & Saxena, Phys. Fluids 1 (1958) 361, in
-    the practice of Poling, Prausnitz & O'Connell (5th ed. 2001, ch. 10): the same phi as for the viscosity.
+    Conductivities take the same phi as the viscosity: Wassiljewa's form with the coefficients of Mason & Saxena, Phys.
+    Fluids 1 (1958) 361, in the practice of Poling, Prausnitz & O'Connell (5th ed. 2001, ch. 10).
     """
-    weights = (phi @ y[..., :, None])[..., 0]
-    total: Array = (y * values / weights).sum(-1)
+    weights = y / (phi @ y[..., :, None])[..., 0]
+    total: Array = (values @ weights[..., None])[..., 0]
     return total
 
 

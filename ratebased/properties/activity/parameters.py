@@ -48,8 +48,8 @@ class PairFunction:
         return total + self._constant
 
 
-_SHAPES = {"b": lambda T: T ** -1.0, "c": lambda T: T.log(), "d": lambda T: T, "e": lambda T: T ** -2.0,
-           "f": lambda T: T ** 2.0}
+_SHAPES = {"b": lambda T: T.reciprocal(), "c": lambda T: T.log(), "d": lambda T: T, "e": lambda T: (T * T).reciprocal(),
+           "f": lambda T: T * T}
 
 
 def pair_coefficients(name: str, value: ArrayLike, size: int) -> Array:

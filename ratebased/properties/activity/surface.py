@@ -46,7 +46,7 @@ def _fractions(x: Array, r: Array, q: Array, r_exponent: float) -> tuple[Array, 
 def segment_activity(theta: Array, psi: Jet) -> Jet:
     """ln Gamma_k / Q_k for area fractions theta (..., m, G) and interactions psi (..., G, G): (..., m, G)."""
     E = theta @ psi
-    return 1.0 - E.log() - (theta / E) @ psi.transpose()
+    return -(E.log() + (E.reciprocal() * theta) @ psi.transpose()) + 1.0
 
 
 def residual_mole_derivatives(x: Array, areas: Array, psi: Array) -> Array:
@@ -63,5 +63,7 @@ def residual_mole_derivatives(x: Array, areas: Array, psi: Array) -> Array:
     total = total[..., None]
     e = (areas @ psi / E[..., None, :] - molecule) / total
     dw = (areas / E[..., None, :] - molecule * w[..., None, :]) / total - w[..., None, :] * e
-    derivative: Array = areas @ np.swapaxes(-e - dw @ np.swapaxes(psi, -1, -2), -1, -2)
+    # rows j, columns k of d ln Gamma_k/d n_j; the sum over the groups of i gives J_ji, which is symmetric
+    by_segment = e + dw @ np.ascontiguousarray(np.swapaxes(psi, -1, -2))
+    derivative: Array = -by_segment @ areas.T
     return derivative

@@ -39,13 +39,14 @@ class Unifac:
         for name, vector in (("R", volume), ("Q", area)):
             if vector.shape != (n_groups,):
                 raise InputError(f"{name}: expected {n_groups} entries, one a group, got shape {vector.shape}")
-        self._coefficients: list[Array] = []
+        coefficients: list[Array] = []
         for name, value in (("a", a), ("b", b), ("c", c)):
             matrix = np.zeros((n_groups, n_groups)) if value is None else finite_array(name, value)
             if matrix.shape != (n_groups, n_groups) or np.diagonal(matrix).any():
                 raise InputError(f"{name}: expected a ({n_groups}, {n_groups}) matrix with a zero diagonal, got shape "
                                  f"{matrix.shape}")
-            self._coefficients.append(matrix)
+            coefficients.append(-matrix)
+        self._minus_a, self._minus_b, self._minus_c = coefficients
         self.r, self.q = groups @ volume, groups @ area
         self.r_exponent = r_exponent
         self.label = label
@@ -53,22 +54,29 @@ class Unifac:
         self._pure_fractions = self._areas / self.q[:, None]
 
     def _psi(self, T: Array, order: int) -> Jet:
-        a, b, c = self._coefficients
         jet = temperature(np.asarray(T, float)[..., None, None], order)
-        exponent = jet.reciprocal() * a
-        if b.any() or c.any():
-            exponent = exponent + b + jet * c
-        return (-exponent).exp()
+        exponent = jet.reciprocal() * self._minus_a
+        if self._minus_b.any() or self._minus_c.any():
+            exponent = exponent + self._minus_b + jet * self._minus_c
+        return exponent.exp()
 
     def ln_gamma(self, T: Array, x: Array, order: int = 0) -> Jet:
         """ln gamma with temperature derivatives, (..., n)."""
         x = np.asarray(x, float)
         psi = self._psi(T, order)
         amount = x @ self._areas
-        theta = amount / amount.sum(-1, keepdims=True)
-        difference = segment_activity(theta[..., None, :], psi) - segment_activity(self._pure_fractions, psi)
-        residual = (difference * self._areas).sum(-1)
-        return residual + combinatorial(x, self.r, self.q, self.r_exponent)
+        theta = (amount / amount.sum(-1, keepdims=True))[..., None, :]
+        # The mixture and every pure component in one product: many small matrices cost by their number.
+        pure = np.broadcast_to(self._pure_fractions, (*theta.shape[:-2], *self._pure_fractions.shape))
+        every = segment_activity(np.concatenate([theta, pure], -2), psi)
+        mixed = every[..., 0, :] @ self._areas.T
+        alone = every[..., 1:, :].linear(self._molecule)
+        return mixed - alone + combinatorial(x, self.r, self.q, self.r_exponent)
+
+    def _molecule(self, segment: Array) -> Array:
+        """Sum over the groups of each molecule, (..., n, G) -> (..., n)."""
+        total: Array = np.einsum("...ik,ik->...i", segment, self._areas)
+        return total
 
     def mole_number_derivatives(self, T: Array, x: Array) -> Array:
         """d ln gamma_i / d n_j at one mole in all, (..., n, n)."""
