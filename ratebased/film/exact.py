@@ -183,13 +183,15 @@ def physical(problem: FilmProblem, N: Array) -> Mask:
 
 
 def other_branch(problem: FilmProblem, N: Array, form: BlockForm = coth_blocks) -> Mask:
-    """Where the determinant of the film equations has another sign at N than at zero flux: a fold lies between."""
-    def sign(fluxes: Array) -> Array:
-        J = np.concatenate((form(fluxes, problem.K, problem.x0, problem.xd, problem.gamma).dN,
-                            problem.nu[:, None, :]), axis=1)
-        return np.asarray(np.linalg.slogdet(J)[0], dtype=np.float64)
+    """Where the determinant of the film equations has another sign at N than at zero flux: a fold lies between.
 
-    return np.asarray(sign(N) * sign(np.zeros_like(N)) < 0)
+    At zero flux the rows are those of [M](x_m), a singular M-matrix with null vector x_m, so that bordered with nu its
+    determinant has the sign of nu . x_m.
+    """
+    blocks = form(N, problem.K, problem.x0, problem.xd, problem.gamma)
+    J = np.concatenate((blocks.dN, problem.nu[:, None, :]), axis=1)
+    at_zero = (problem.nu * (problem.x0 + problem.xd)).sum(-1)
+    return np.asarray(np.linalg.slogdet(J)[0] * at_zero < 0)
 
 
 def continuation(problem: FilmProblem, form: BlockForm = coth_blocks) -> tuple[Array, Mask, Counts]:

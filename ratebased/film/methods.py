@@ -20,7 +20,11 @@ from ..errors import (
 from .exact import HIGH_FLUX, solve_exact
 from .problem import MESSAGES, Array, Composition, FilmProblem, FilmStatus, Solved, existence, film_names, pose
 from .result import FilmFlux, RateFactor
+from .taylor import solve_series
 from .ternary import solve_ternary
+
+FEW_FILMS = 8
+"""Batches of four or more components below this size are not worth the fast path."""
 
 Solver = Callable[[FilmProblem], Solved]
 
@@ -123,9 +127,9 @@ def solve_problem(solver: Solver, problem: FilmProblem, throw: bool) -> Solved:
 
 def solve_film(problem: FilmProblem) -> Solved:
     """The exact film: the fast path where there is one, what it leaves by the robust path."""
-    if problem.gamma is not None or problem.n != 3:
+    if problem.gamma is not None or problem.n == 2 or (problem.n > 3 and len(problem) < FEW_FILMS):
         return solve_exact(problem)
-    fast = solve_ternary(problem)
+    fast = solve_ternary(problem) if problem.n == 3 else solve_series(problem)
     left = np.flatnonzero(fast.status)
     if len(left):
         rest = solve_exact(problem.take(left), fast.N[left])

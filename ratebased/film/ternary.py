@@ -1,9 +1,9 @@
 """Ternary films in closed form: the coth form with the two eigenvalues of the rate factor written out.
 
 On composition differences A(N) has two eigenvalues l1 and l2, with sum tau = sum_i w_i, w = K N, and product
-delta = N_t (K12 K13 N1 + K12 K23 N2 + K13 K23 N3); films where they are complex are left to the robust path. So
-C(A) D = a D + b A D, where b = (c1 - c2)/(l1 - l2), a = c1 - b l1 and c = (l/2) coth(l/2), and Newton needs no matrix
-function at all. The equations of the first two components are used, the most abundant being put last.
+delta = N_t (K12 K13 N1 + K12 K23 N2 + K13 K23 N3); in some films they are a complex pair. So C(A) D = a D + b A D with
+b = (c1 - c2)/(l1 - l2), a = c1 - b l1 and c = (l/2) coth(l/2), and Newton needs no matrix function at all. The
+equations of the first two components are used, the most abundant being put last.
 
 Written in plain arithmetic, so that it runs on arrays (a chunk of films) and on floats (one film) alike.
 """
@@ -16,7 +16,7 @@ from typing import Any, NamedTuple
 import numpy as np
 from numpy.typing import NDArray
 
-from .exact import HIGH_FLUX, mean_weight
+from .exact import HIGH_FLUX, UNPHYSICAL_ROTATION, mean_weight
 from .problem import Array, FilmProblem, FilmStatus, Mask, Solved
 
 CHUNK = 4096
@@ -88,42 +88,70 @@ def solve_three(r1: tuple[Real, Real, Real], r2: tuple[Real, Real, Real], nu: tu
     return (f1 * a1 + f2 * b1, f1 * a2 + f2 * b2, f1 * a3 + f2 * b3), det
 
 
-def newton_step(g: Geometry, N: tuple[Real, Real, Real], use: Functions, log_law: Real | None
-                ) -> tuple[tuple[Real, Real, Real], Real, Real, Real]:
-    """Newton step of the coth form, determinant of its Jacobian, discriminant and largest eigenvalue of A(N).
+class Function(NamedTuple):
+    """C on the plane spanned by D and A D: C(A) D = a D + b A D, and the slopes of a and b by tau and delta.
+
+    radius: largest |eigenvalue|. sound: where the eigenvalues are of the kind assumed and belong to a physical film.
+    """
+
+    a: Real
+    b: Real
+    a_tau: Real
+    a_delta: Real
+    b_tau: Real
+    b_delta: Real
+    radius: Real
+    sound: Any
+
+
+def real_pair(half: Real, discriminant: Real, use: Functions) -> Function:
+    """Eigenvalues l = half +- r, r^2 = discriminant; the slopes follow from l^2 - tau l + delta = 0."""
+    r = use.sqrt(use.larger(discriminant, SMALLEST_GAP * SMALLEST_GAP))
+    l1, l2, gap = half + r, half - r, 2.0 * r
+    c1, s1 = _coth(l1, use)
+    c2, s2 = _coth(l2, use)
+    b = (c1 - c2) / gap
+    e1, e2 = (s1 - b) / gap, (b - s2) / gap
+    b_delta, b_tau = (e2 - e1) / gap, (e1 * l1 - e2 * l2) / gap
+    return Function(c1 - b * l1, b, e1 * l1 - l1 * b_tau, -e1 - l1 * b_delta, b_tau, b_delta,
+                    use.larger(abs(l1), abs(l2)), discriminant > -SMALLEST_GAP * SMALLEST_GAP)
+
+
+def complex_pair(half: Array, discriminant: Array, use: Functions) -> Function:
+    """The same for l = half +- i omega, arrays only."""
+    omega = np.sqrt(np.maximum(-discriminant, SMALLEST_GAP * SMALLEST_GAP))
+    z = 0.5 * (half + 1j * omega)
+    k = 1.0 / np.tanh(z)
+    c, slope = z * k, 0.5 * (k - z * (k * k - 1.0))
+    b = c.imag / omega
+    b_delta = 0.5 * (slope.real - b) / (omega * omega)
+    e = 0.5 * (slope.imag - 1j * (slope.real - b)) / omega
+    turned = e * (2.0 * z)
+    b_tau = turned.imag / omega
+    return Function(c.real - b * half, b, turned.real - half * b_tau, -e.real - half * b_delta, b_tau, b_delta,
+                    2.0 * np.abs(z), (discriminant < 0) & (omega < UNPHYSICAL_ROTATION))
+
+
+def newton_step(g: Geometry, N: tuple[Real, Real, Real], pair: Callable[[Real, Real, Functions], Function],
+                use: Functions, log_law: Real | None) -> tuple[tuple[Real, Real, Real], Real, Function]:
+    """Newton step of the coth form, determinant of its Jacobian, and C.
 
     log_law: ln(xd/x0) of the first component where that is the stagnant one and its integrated equation is used.
     """
     k12, k13, k23 = g.k12, g.k13, g.k23
     N1, N2, N3 = N
     w1, w2 = k12 * N2 + k13 * N3, k12 * N1 + k23 * N3
-    tau = w1 + w2 + k13 * N1 + k23 * N2
+    half = 0.5 * (w1 + w2 + k13 * N1 + k23 * N2)
     g1, g2, g3 = k12 * k13, k12 * k23, k13 * k23
     total, carried = N1 + N2 + N3, g1 * N1 + g2 * N2 + g3 * N3
-    delta = total * carried
-    half = 0.5 * tau
-    discriminant = half * half - delta
-    r = use.sqrt(use.larger(discriminant, SMALLEST_GAP * SMALLEST_GAP))
-    # c and its slope at l1 = half + r and l2 = half - r
-    l1 = half + r
-    gap = 2.0 * r
-    l2 = half - r
-    c1, s1 = _coth(l1, use)
-    c2, s2 = _coth(l2, use)
-    b = (c1 - c2) / gap
-    a = c1 - b * l1
+    C = pair(half, half * half - total * carried, use)
+    a, b = C.a, C.b
     d1, d2 = g.d
     p1, p2 = w1 * d1 - N1 * g.k[0], w2 * d2 - N2 * g.k[1]       # A D
     f1 = a * d1 + b * p1 - N1 * g.h[0] + g.x[0] * w1
     f2 = a * d2 + b * p2 - N2 * g.h[1] + g.x[1] * w2
-    # slopes of b and a by tau and delta, from l^2 - tau l + delta = 0
-    e1, e2 = (s1 - b) / gap, (b - s2) / gap
-    b_delta = (e2 - e1) / gap
-    b_tau = (e1 * l1 - e2 * l2) / gap
-    a_delta = -e1 - l1 * b_delta
-    a_tau = e1 * l1 - l1 * b_tau
-    u1, u2 = a_tau * d1 + b_tau * p1, a_tau * d2 + b_tau * p2
-    v1, v2 = a_delta * d1 + b_delta * p1, a_delta * d2 + b_delta * p2
+    u1, u2 = C.a_tau * d1 + C.b_tau * p1, C.a_tau * d2 + C.b_tau * p2
+    v1, v2 = C.a_delta * d1 + C.b_delta * p1, C.a_delta * d2 + C.b_delta * p2
     y1, y2 = g.x[0] + b * d1, g.x[1] + b * d2
     t1, t2, t3 = k12 + k13, k12 + k23, k13 + k23                # slopes of tau
     q1, q2, q3 = carried + total * g1, carried + total * g2, carried + total * g3       # and of delta
@@ -132,7 +160,7 @@ def newton_step(g: Geometry, N: tuple[Real, Real, Real], use: Functions, log_law
     if log_law is not None:
         first, f1 = (0.0 * k12, -k12, -k13), k12 * N2 + k13 * N3 - log_law
     step, det = solve_three(first, second, g.nu, f1, f2)
-    return step, det, discriminant, use.larger(abs(l1), abs(l2))
+    return step, det, C
 
 
 def _coth(l: Real, use: Functions) -> tuple[Real, Real]:
@@ -204,36 +232,55 @@ def _chunk(problem: FilmProblem, part: Any, stagnant: int | None, solved: Solved
     log_law = None if stagnant is None else np.log(xd[0] / x0[0])
     count = len(s)
     fluxes = np.empty((3, count))
-    status = np.empty(count, dtype=np.int8)
-    steps = np.empty(count, dtype=np.int64)
-    high = np.empty(count, dtype=bool)
-    films: Any = slice(None)
-    previous = None
-    for step in range(1, MAX_STEPS + 1):
-        v, det, discriminant, radius = newton_step(g, N, ARRAYS, log_law)
-        N = (N[0] + v[0], N[1] + v[1], N[2] + v[2])
-        done, previous = converged(v, N, previous, ARRAYS)
-        done &= discriminant > -SMALLEST_GAP**2
-        if step == 1 or not (step > 4 or np.count_nonzero(done) > 0.7 * len(done)):
-            continue
-        fluxes[0][films], fluxes[1][films], fluxes[2][films] = N
-        status[films] = np.where(done, np.where(det * mean_carried(g) < 0, FilmStatus.OTHER_BRANCH, 0),
-                                 FilmStatus.NOT_CONVERGED)
-        steps[films], high[films] = step + 1, radius > HIGH_FLUX
-        left = np.flatnonzero(~done)
-        if not len(left):
-            break
-        films = left if isinstance(films, slice) else films[left]
-        g = Geometry(*(value[left] if isinstance(value, np.ndarray) else tuple(entry[left] for entry in value)
-                       for value in g))
-        N, previous = (N[0][left], N[1][left], N[2][left]), previous[left]
-        log_law = None if log_law is None else log_law[left]
+    state = Solved(fluxes, np.empty(count, dtype=np.int8), np.empty(count, dtype=np.int64), np.empty(count, dtype=bool))
+    _iterate(g, N, log_law, real_pair, slice(None), state)
+    twisted = np.flatnonzero(state.status == FilmStatus.NOT_CONVERGED)
+    if len(twisted):
+        rest = _taken(g, twisted)
+        _iterate(rest, (fluxes[0][twisted], fluxes[1][twisted], fluxes[2][twisted]),
+                 None if log_law is None else log_law[twisted], complex_pair, twisted, state)
     _swap(fluxes, swap0, swap1)
     if stagnant is not None and stagnant > 0:
         fluxes[[0, stagnant]] = fluxes[[stagnant, 0]]
-    solved.N[part], solved.status[part], solved.steps[part] = fluxes.T, status, steps
+    solved.N[part], solved.status[part], solved.steps[part] = fluxes.T, state.status, state.steps
     if solved.high is not None:
-        solved.high[part] = high
+        solved.high[part] = state.high
+
+
+def _iterate(g: Geometry, N: tuple[Array, Array, Array], log_law: Array | None,
+             pair: Callable[[Real, Real, Functions], Function], films: Any, state: Solved) -> None:
+    """Newton on the films of a chunk, its results put into `state` (fluxes (3, chunk))."""
+    previous = None
+    for step in range(1, MAX_STEPS + 1):
+        v, det, C = newton_step(g, N, pair, ARRAYS, log_law)
+        N = (N[0] + v[0], N[1] + v[1], N[2] + v[2])
+        done, previous = converged(v, N, previous, ARRAYS)
+        settled = done | ~C.sound if step > 2 else done
+        if step == 1 or not (step > 4 or np.count_nonzero(settled) > 0.7 * len(done)):
+            continue
+        done &= C.sound
+        for row, flux in zip(state.N, N):
+            row[films] = flux
+        state.status[films] = np.where(done, np.where(det * mean_carried(g) < 0, FilmStatus.OTHER_BRANCH, 0),
+                                       FilmStatus.NOT_CONVERGED)
+        state.steps[films] = step + 1
+        if state.high is not None:
+            state.high[films] = C.radius > HIGH_FLUX
+        left = np.flatnonzero(~settled)
+        if not len(left):
+            break
+        films = left if isinstance(films, slice) else films[left]
+        g = _taken(g, left)
+        N, previous = (N[0][left], N[1][left], N[2][left]), previous[left]
+        log_law = None if log_law is None else log_law[left]
+
+
+def _taken(g: Geometry, films: NDArray[np.intp]) -> Geometry:
+    """The films of `films`."""
+    def take(values: tuple[Array, ...]) -> Any:
+        return tuple(value[films] for value in values)
+
+    return Geometry(g.k12[films], g.k13[films], g.k23[films], take(g.x), take(g.d), take(g.h), take(g.k), take(g.nu))
 
 
 def mean_carried(g: Geometry) -> Real:
@@ -276,7 +323,7 @@ def converged(v: tuple[Real, Real, Real], N: tuple[Real, Real, Real], previous: 
     done = error <= STEP_TOLERANCE
     if previous is not None:
         # e^2 is what remains, e^2 (e/e_last^2) where the constant of convergence is above one
-        done = done | ((error < 1e-5) & (error * error * use.larger(1.0, error / (previous * previous)) <= 1e-13))
+        done = done | ((error < 1e-5) & (error * error * use.larger(1.0, error / (previous * previous)) <= 1e-12))
     return done, error
 
 
@@ -298,11 +345,12 @@ def _one_film(problem: FilmProblem) -> Solved:
         N = linear_start(g, _one_share(g, a0, ad, s), s, a0, ad)
         previous = None
         for step in range(1, MAX_STEPS + 1):
-            v, det, discriminant, radius = newton_step(g, N, FLOATS, log_law)
+            v, det, C = newton_step(g, N, real_pair, FLOATS, log_law)
             N = (N[0] + v[0], N[1] + v[1], N[2] + v[2])
             done, previous = converged(v, N, previous, FLOATS)
+            radius = C.radius
             if done and step > 1:
-                if discriminant > -SMALLEST_GAP**2:
+                if C.sound:
                     status = FilmStatus.OTHER_BRANCH if det * mean_carried(g) < 0 else FilmStatus.CONVERGED
                 break
         fluxes[0, order] = N
@@ -323,4 +371,5 @@ def _one_share(g: Geometry, x0: tuple[float, float, float], xd: tuple[float, flo
     factor = 3.0 * pair_resistance(g) * s / (nu[0] + nu[1] + nu[2])
     if abs(factor) > 700.0:
         return float(factor > 0)
-    return 0.5 + factor / 12.0 if abs(factor) < 1e-3 else 1.0 + 1.0 / math.expm1(factor) - 1.0 / factor
+    share: float = 0.5 + factor / 12.0 if abs(factor) < 1e-3 else 1.0 + 1.0 / math.expm1(factor) - 1.0 / factor
+    return share
