@@ -80,8 +80,7 @@ def froth_height(clear_liquid_height: Values, froth_density: Values) -> Array:
     return clear_liquid_height / froth_density
 
 
-@correlation("froth height", "sieve trays", "m", _plain("bennett_1997", remark="top of the two-phase layer with jets"),
-             dimensional=True)
+@correlation("froth height", "sieve trays", "m", _plain("bennett_1997", remark="top of the two-phase layer with jets"))
 def bennett_two_phase_height(clear_liquid_height: Values, froth_density: Values, hole_diameter: Values,
                              active_velocity: Values, vapor_density: Values, liquid_density: Values,
                              hole_area_fraction: Values) -> Array:

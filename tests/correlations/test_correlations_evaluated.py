@@ -9,6 +9,8 @@ from types import SimpleNamespace
 
 import numpy as np
 import pytest
+from numpy.testing import assert_allclose
+
 from correlations import (
     gas_diffusivity,
     heat_transfer,
@@ -27,7 +29,6 @@ from correlations import (
     tray_limits,
     tray_transfer,
 )
-from numpy.testing import assert_allclose
 
 RTOL = 6e-6
 RTOL_G = 2e-4
@@ -247,6 +248,10 @@ class TestRandomPacking:
         assert_allclose(packing_limits.morris_jackson(self.a) * 3600, 9.008)
 
     def test_shulman(self):
+        density = 107e3 * 0.011 / (8.314 * 300)
+        k = packing_coefficients.shulman_vapor(1.3e-5, 0.716 / density, density, 1e-5, 0.0472, 0.75, 0.0334066)
+        F = k * 107e3 / (8.314 * 300) / 1e3
+        assert_allclose(F, 1.913179e-3, rtol=5e-4)  # inputs rounded in the script
         k_L = packing_coefficients.shulman_liquid(4.71e-10, 2.71 / 840, 840.0, 2e-3, 0.0472)
         assert_allclose(k_L, 1.15682e-4, rtol=RTOL)
 
@@ -374,8 +379,8 @@ class TestTray:
         assert_allclose([N_G, N_L], [2.77973, 1.56449], rtol=RTOL)
 
     def test_bennett(self):
-        N = tray_transfer.bennett_overall_units(3.0, 8.5e-6, 9.0, 0.0331871, 0.374569, 0.0127, 0.10, 4.5e-6, 4.0e-9, 1.1,
-                                                3.0, 660.0)
+        N = tray_transfer.bennett_overall_units(3.0, 8.5e-6, 9.0, 0.0331871, 0.374569, 0.0127, 0.10, 4.5e-6, 4.0e-9,
+                                                1.1, 3.0, 660.0)
         assert_allclose(N, 1.37102, rtol=RTOL)
 
     def test_mixing(self):
@@ -440,9 +445,9 @@ class TestTray:
                         [23.8044, 23.8888], rtol=RTOL)
 
 
-@pytest.mark.parametrize("X, si, us", [(0.01, 0.217680, 0.207014), (0.05, 0.161669, 0.174523), (0.1, 0.119151, 0.132023),
-                                       (0.5, 0.0388897, 0.0428494), (1.0, 0.0201151, 0.0214882),
-                                       (2.0, 0.00935227, 0.00952159)])
+@pytest.mark.parametrize("X, si, us", [(0.01, 0.217680, 0.207014), (0.05, 0.161669, 0.174523),
+                                       (0.1, 0.119151, 0.132023), (0.5, 0.0388897, 0.0428494),
+                                       (1.0, 0.0201151, 0.0214882), (2.0, 0.00935227, 0.00952159)])
 def test_two_fits_of_the_flooding_chart(X, si, us):
     """Ordinate of the chart (lb, ft, s, cP; water): the metric fit in the units of the other."""
     ratio = X / (1.2 / 998.0) ** 0.5
