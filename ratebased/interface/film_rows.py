@@ -99,8 +99,7 @@ class DifferencedRows:
         with warnings.catch_warnings():
             warnings.simplefilter("ignore", RateBasedWarning)     # about iterates, not about the answer
             N: Any = self.film(x0, xd, kappa, np.ones(()), bootstrap, **options).N
-        fluxes: Array = np.asarray(N, dtype=float)
-        return fluxes
+        return np.array(N, dtype=np.float64)
 
 
 def _on_simplex(x: Array) -> Array:

@@ -11,7 +11,7 @@ entry, and with latent heats and dlnK/dT above zero the determinant has the sign
 """
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -28,9 +28,17 @@ LARGEST = 8.0
 """|A|_1 up to which a film is shot: rounding grows with its exponential."""
 WORTHWHILE = 256
 """Batch below which the call overhead of the two paths is the same."""
-FIRST_ROUND, MAX_ITERATIONS = 6, 10
+FIRST_ROUND, MAX_ITERATIONS = 7, 11
 """Iterations before the unfinished problems of all chunks are brought together, and after that."""
-COMPACT = 0.2
+SLOPE_ACCURACY = 1e-3
+"""Last term kept in the series of a derivative."""
+CHUNK = 2000
+"""Problems handled at a time: few enough for the cache, enough to hide the calls."""
+FULL = 4
+"""Jacobians taken at most; after that only updates of the last one."""
+SURE = 7
+"""Iterations up to which the sign of the determinant carried along is taken for that at the answer."""
+COMPACT = 0.4
 """Share of a chunk that must be finished before it is taken out."""
 RESIDUAL = 1e-9
 PHYSICAL = -1e-10
@@ -70,7 +78,9 @@ def _columns(p: InterfaceProblem) -> _Columns:
     K_V = np.ascontiguousarray(np.moveaxis(p.K_V, 0, -1))
     K_L = np.ascontiguousarray(np.moveaxis(p.K_L, 0, -1))
     ordinary = p.ordinary[:, None].astype(float)
-    return _Columns(p, np.ascontiguousarray(p.y.T), np.ascontiguousarray(p.x.T), K_V, K_L, ordinary,
+    elsewhere = np.empty((len(p.y), 0))                       # the resistances go with the columns from here
+    return _Columns(replace(p, K_V=elsewhere, K_L=elsewhere), np.ascontiguousarray(p.y.T),
+                    np.ascontiguousarray(p.x.T), K_V, K_L, ordinary,
                     (1.0 - ordinary) / p.flux_scale, 2.0 * np.maximum(K_V.max((0, 1)), K_L.max((0, 1))))
 
 
@@ -102,14 +112,14 @@ def _order(norm: float, smallest: float) -> int:
 def _shoot(N: Array, K: Array, x: Array, sign: int, jacobian: bool) -> tuple[Array, Array | None, Array]:
     """exp(sign A(N)) x, its derivative by N if wanted, |A|_1: the series in Horner's form.
 
-    The derivative is cut at 1e-6: it steers the steps, the values alone decide what is accepted.
+    The derivative is cut earlier: it steers the steps, the values alone decide what is accepted.
     """
     A = _film_matrix(N, K)
     size = np.abs(A).sum(0).max(0)
     top = min(float(size.max()), LARGEST)
     if sign < 0:
         np.negative(A, out=A)
-    order, order_slope = _order(top, 1e-17), _order(top, 1e-6)
+    order, order_slope = _order(top, 1e-17), _order(top, SLOPE_ACCURACY)
     p, G = x, None
     for k in range(order, 0, -1):
         if jacobian and k <= order_slope:
@@ -205,115 +215,136 @@ def _step(c: _Columns, d: Array, size: Array) -> tuple[Array, Array]:
     return d * t, t
 
 
-def _inverse(J: Array) -> Array:
-    """Inverse with the batch last; NaN for a singular matrix."""
+def _inverse(J: Array) -> tuple[Array, Array]:
+    """Inverse with the batch last, NaN for a singular matrix, and the sign of the determinant."""
     first = np.ascontiguousarray(np.moveaxis(J, -1, 0))
     try:
         inverse = np.linalg.inv(first)
     except np.linalg.LinAlgError:
         inverse = solve_linear(first, np.broadcast_to(np.eye(first.shape[-1]), first.shape))
-    return np.ascontiguousarray(np.moveaxis(inverse, 0, -1))
+    return np.ascontiguousarray(np.moveaxis(inverse, 0, -1)), _sign(first)
+
+
+def _sign(J: Array) -> Array:
+    """Sign of det J, batch first."""
+    return np.sign(np.linalg.det(np.where(np.isfinite(J), J, 0.0)))
 
 
 def solve(problem: InterfaceProblem, tolerance: float) -> Shot:
     """Solve what converges; the rest is marked."""
     n, B = problem.n, len(problem.y)
-    chunk = max(128, 20000 // n ** 2)
-    N, T, size = np.empty((n, B)), zero_flux_temperature(problem, 1e-2), np.empty(B)
-    for first in range(0, B, chunk):
-        part = slice(first, first + chunk)
-        c = _columns(problem.take(part))
-        with np.errstate(all="ignore"):
-            F, J = _rows(c, np.zeros_like(c.y), T[part], True, at_rest=True).system
-            d, _ = _step(c, -_apply(_inverse(J), F), np.zeros(len(T[part])))
-        N[:, part] = d[:n]
-        T[part] += d[n]
-        size[part] = np.abs(d[:n]).max(0) * c.largest_K
+    T = zero_flux_temperature(problem, 1e-2)
+    shot = Shot(np.full((B, 2 * n + 1), np.nan), np.full((B, n), np.nan), np.full((B, n), np.nan), np.zeros(B, bool),
+                np.zeros(B, bool), np.full(B, np.nan), np.full(B, np.nan), np.zeros(B, np.int64))
+    N = np.zeros((n, B))
     # films of one size together: the largest of a chunk sets the length of the series
-    order = np.argsort(np.where(np.isfinite(size), size, np.inf), kind="stable")
-    done, count = np.zeros(B, bool), np.zeros(B, np.int64)
+    order = np.argsort(_expected_size(problem, T), kind="stable")
     for limit in (FIRST_ROUND, MAX_ITERATIONS):              # the slow ones of all chunks together
-        order = order[~done[order]]
-        for first in range(0, len(order), chunk):
-            index = order[first:first + chunk]
-            N[:, index], T[index], done[index], used = _iterate(_columns(problem.take(index)), N[:, index], T[index],
-                                                                tolerance, limit)
-            count[index] += used
-    return _accepted(problem, N, T, done, count + 1, np.argsort(size), chunk)
+        order = order[~shot.solved[order]]
+        for first in range(0, len(order), CHUNK):
+            index = order[first:first + CHUNK]
+            c = _columns(problem.take(index))
+            run = _iterate(c, N[:, index], T[index], tolerance, limit)
+            N[:, index], T[index] = run.N, run.T
+            shot.iterations[index] += run.iterations
+            _accept(c, run, index, shot)
+    return shot
 
 
-def _accepted(problem: InterfaceProblem, N: Array, T: Array, done: NDArray[np.bool_], iterations: NDArray[np.int64],
-              order: NDArray[np.int64], chunk: int) -> Shot:
-    """Residual, signs of the fractions and of the determinant at the end points."""
-    n, B = N.shape
-    y, x, residual, size = np.full((B, n), np.nan), np.full((B, n), np.nan), np.full(B, np.nan), np.full(B, np.nan)
-    solved, connected = np.zeros(B, bool), np.zeros(B, bool)
-    sign = -1.0 if problem.ordinary.sum() % 2 == 0 else 1.0
-    order = order[done[order]]
-    for first in range(0, len(order), chunk):
-        index = order[first:first + chunk]
-        with np.errstate(all="ignore"):
-            rows = _rows(_columns(problem.take(index)), N[:, index], T[index], True)
-            F, J = rows.system
-            worst = np.abs(F).max(0)
-            fine = (worst < RESIDUAL) & (rows.y.min(0) >= PHYSICAL) & (rows.x.min(0) >= PHYSICAL)
-            fine &= rows.size < LARGEST
-            determinant = np.linalg.det(np.ascontiguousarray(np.moveaxis(np.where(fine, J, 0.0), -1, 0)))
-        solved[index], connected[index] = fine, determinant * sign > 0
-        y[index], x[index], residual[index], size[index] = rows.y.T, rows.x.T, worst, rows.size
-    z = np.concatenate((N.T, np.where(problem.condensable, x, y), T[:, None]), axis=1)
-    return Shot(z, y, x, solved, connected, residual, size, iterations)
+def _expected_size(problem: InterfaceProblem, T: Array) -> Array:
+    """A rough |A|_1 beforehand: from the distance of the bulks, in composition and in temperature."""
+    K = np.asarray(problem.properties.k_value(T, problem.P, problem.x, problem.y))
+    apart = np.where(problem.ordinary, np.abs(problem.y - K * problem.x), 0.0).max(-1)
+    heat = problem.h_V * np.abs(problem.T_V - T) + problem.h_L * np.abs(problem.T_L - T)
+    latent = np.abs(problem.H_V - problem.H_L).max(-1)
+    size: Array = apart + heat / (latent * problem.flux_scale)
+    return size
+
+
+def _accept(c: _Columns, run: _Run, index: NDArray[np.int64], shot: Shot) -> None:
+    """Residual and fractions at the end points of a run; the sign of det J anew where the way there was long."""
+    n = len(run.N)
+    expected = -1.0 if c.problem.ordinary.sum() % 2 == 0 else 1.0
+    with np.errstate(all="ignore"):
+        rows = _rows(c, run.N, run.T, False)
+        worst = np.abs(rows.F).max(0)
+        good = run.converged & (worst < RESIDUAL) & (rows.size < LARGEST)
+        good &= (rows.y.min(0) >= PHYSICAL) & (rows.x.min(0) >= PHYSICAL)
+        sign = run.sign
+        slow = np.flatnonzero(good & (shot.iterations[index] > SURE))
+        if len(slow):
+            _, J = _rows(_kept(c, slow), run.N[:, slow], run.T[slow], True).system
+            sign[slow] = _sign(np.ascontiguousarray(np.moveaxis(J, -1, 0)))
+    kept = index[good]
+    shot.solved[kept], shot.connected[kept] = True, sign[good] == expected
+    shot.residual[kept], shot.size[kept] = worst[good], rows.size[good]
+    shot.y_I[kept], shot.x_I[kept] = rows.y.T[good], rows.x.T[good]
+    shot.z[kept, :n], shot.z[kept, 2 * n] = run.N.T[good], run.T[good]
+    shot.z[kept, n:2 * n] = np.where(c.problem.condensable, shot.x_I[kept], shot.y_I[kept])
 
 
 def _apply(H: Array, F: Array) -> Array:
     return np.asarray(np.einsum("ijm,jm->im", H, F))
 
 
-def _iterate(c: _Columns, N: Array, T: Array, tolerance: float, limit: int
-             ) -> tuple[Array, Array, NDArray[np.bool_], NDArray[np.int64]]:
-    """Newton, then Broyden's update, from (N, T): last point, converged, iterations; finished problems leave."""
-    M = N.shape[1]
-    n = len(N)
-    N_end, T_end = N.copy(), T.copy()
-    done, count = np.zeros(M, bool), np.full(M, limit)
-    index, fresh = np.arange(M), True
-    before = np.full(M, np.inf)
-    F_before = s = H = np.empty(0)
+@dataclass(frozen=True)
+class _Run:
+    """Last point (n, M) and (M), converged, iterations, and the sign of det J.
+
+    The sign is that of the last Jacobian evaluated, turned by every update whose factor s.s/(s.H dF) is negative.
+    """
+
+    N: Array
+    T: Array
+    converged: NDArray[np.bool_]
+    iterations: NDArray[np.int64]
+    sign: Array
+
+
+def _iterate(c: _Columns, N: Array, T: Array, tolerance: float, limit: int) -> _Run:
+    """Newton, then Broyden's update, from (N, T); finished problems leave."""
+    n, M = N.shape
+    end = _Run(N.copy(), T.copy(), np.zeros(M, bool), np.full(M, limit), np.zeros(M))
+    index, before = np.arange(M), np.full(M, np.inf)
+    fresh, at_rest = True, not N.any()
+    F_before = s = H = sign = np.empty(0)
     with np.errstate(all="ignore"):
         for iteration in range(1, limit + 1):
-            rows = _rows(c, N, T, fresh)
+            rows = _rows(c, N, T, fresh, at_rest)
             if fresh and rows.J is not None:
-                H = _inverse(rows.J)
+                H, sign = _inverse(rows.J)
             else:
                 Hy = _apply(H, rows.F - F_before)
                 scale = np.einsum("im,im->m", s, Hy)
                 w = (s - Hy) / np.where(scale == 0, 1.0, scale)
                 H += w[:, None] * np.einsum("im,ijm->jm", s, H)[None]
+                sign = np.where(scale < 0, -sign, sign)
             s, t = _step(c, -_apply(H, rows.F), rows.size)
             N, T = N + s[:n], T + s[n]
             e = np.maximum(np.abs(s[:n]).max(0) / (np.abs(N).max(0) + 1e-300), np.abs(s[n]) / T)
             ready = (t == 1.0) & ((e < 0.1 * tolerance) | ((e * e < 1e-3 * tolerance * before) & (e < 1e-6)))
             lost = ~np.isfinite(e) | (rows.size > LARGEST) | (T < 0)
             leaving = ready | lost
-            if iteration == 1:
+            if iteration < 3:                                # nothing to compare the first steps with
                 leaving[:] = False
             F_before, before = rows.F, e
             if leaving.any() and (leaving.mean() > COMPACT or iteration == limit):
-                keep = ~leaving
+                keep = np.flatnonzero(~leaving)
                 gone = index[leaving]
-                N_end[:, gone], T_end[gone] = N[:, leaving], T[leaving]
-                done[gone], count[gone] = ready[leaving], iteration
+                end.N[:, gone], end.T[gone] = N[:, leaving], T[leaving]
+                end.converged[gone], end.iterations[gone], end.sign[gone] = ready[leaving], iteration, sign[leaving]
                 index = index[keep]
                 if not len(index):
-                    return N_end, T_end, done, count
-                N, T, s, H, c = N[:, keep], T[keep], s[:, keep], H[:, :, keep], _kept(c, keep)
+                    return end
+                N, T, s, H, sign, c = N[:, keep], T[keep], s[:, keep], H[:, :, keep], sign[keep], _kept(c, keep)
                 F_before, before = F_before[:, keep], e[keep]
-            fresh = iteration < 3 and bool(np.count_nonzero(before > 0.1) > 0.3 * len(before))
+            fresh = iteration < FULL and bool(np.count_nonzero(before > 0.1) > 0.3 * len(before))
+            at_rest = False
     fit = np.isfinite(N).all(0) & (T > 0)
-    N_end[:, index[fit]], T_end[index[fit]] = N[:, fit], T[fit]
-    return N_end, T_end, done, count
+    end.N[:, index[fit]], end.T[index[fit]] = N[:, fit], T[fit]
+    return end
 
 
-def _kept(c: _Columns, keep: NDArray[np.bool_]) -> _Columns:
+def _kept(c: _Columns, keep: NDArray[np.int64]) -> _Columns:
     return _Columns(c.problem.take(keep), c.y[:, keep], c.x[:, keep], c.K_V[:, :, keep], c.K_L[:, :, keep], c.ordinary,
                     c.inert[:, keep], c.largest_K[keep])
