@@ -46,8 +46,8 @@ def build(model: type[Model], names: Sequence[str], activity: str | ActivityMode
     names : names or CAS numbers, as they are to appear in tables. "air" is dry air as one component, always
         non-condensing.
     activity : "ideal", "unifac", "unifac-modified", "nrtl", "wilson", "uniquac", or a model of your own.
-    T_range : (low, high) K of the column; the default spans the boiling points with 60 K on either side. Nothing can be
-        evaluated outside it, and no liquid may reach its critical temperature in it.
+    T_range : (low, high) K of the column; the default spans the boiling points with 60 K on either side, and 0 C.
+        Nothing can be evaluated outside it, and no liquid may reach its critical temperature in it.
     noncondensing : components that stay in the vapour.
     nonvolatile : components that stay in the liquid.
     henry : gases dissolved by Henry's law: a list of names for the constants in water of `henry.IN_WATER`, or

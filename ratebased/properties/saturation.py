@@ -8,17 +8,22 @@ hardly matters (Michelsen & Mollerup, Thermodynamic Models, 2nd ed. 2007, ch. 11
 """
 from __future__ import annotations
 
+from dataclasses import dataclass, replace
+
 import numpy as np
 from numpy.typing import ArrayLike
 
 from ..arguments import finite_array, mole_fractions, positive_array
 from ..errors import ConvergenceError, InputError, PropertyRangeError
 from .differences import k_value_derivatives
-from .protocol import Array, PropertyModel
+from .protocol import Array, Mask, PropertyModel
 
 TOLERANCE = 1e-11
 MAX_ITERATIONS = 60
 DEFAULT_START = 350.0
+SMALLEST_STEP = 1e-3
+RESTARTS = (0.25, 0.75, 0.1, 0.9)
+UNLIMITED = (1.0, 1e5)
 
 
 def bubble_point(properties: PropertyModel, P: ArrayLike, x: ArrayLike, T_guess: ArrayLike | None = None, *,
@@ -70,56 +75,25 @@ def _saturation_point(properties: PropertyModel, P: ArrayLike, known_name: str, 
     P, z = np.broadcast_to(P, batch), np.broadcast_to(z, (*batch, n))
     if (z[..., ordinary].sum(-1) <= 0).any():
         raise InputError(f"{known_name}: no component that is both volatile and condensable is present")
-    low, high = getattr(properties, "T_range", (1.0, 1e5))
-    start = (0.5 * (low + high) if high < 1e5 else DEFAULT_START) if T_guess is None else positive_array(
-        "T_guess", T_guess)
-    T = np.clip(np.broadcast_to(np.asarray(start, float), batch), low, high).copy()
-    target = np.log1p(-fixed.sum(-1))
-    present = ordinary & (z > 0)
-    ln_z = np.log(np.where(present, z, 1.0))
-
-    def other(ln_w: Array) -> Array:
-        w = np.where(present, np.exp(ln_w), 0.0)
-        w *= (np.exp(target) / w.sum(-1))[..., None]
-        return w + fixed
-
-    def phases(w: Array) -> tuple[Array, Array]:
-        return (z, w) if sign > 0 else (w, z)
-
-    def ln_k_at(T: Array, w: Array) -> Array:
-        return np.log(np.where(present, properties.k_value(T, P, *phases(w)), 1.0))
-
-    # Two substitution steps give the other phase its character before Newton sees it. Its share of one stays exact
-    # in every iterate, so the model is never asked about a mixture that does not sum to one.
-    ln_w = np.where(present, ln_z, 0.0)
-    for _ in range(2):
-        ln_w = np.where(present, ln_z + sign * ln_k_at(T, other(ln_w)), 0.0)
-        ln_w -= (np.log(np.where(present, np.exp(ln_w), 0.0).sum(-1)) - target)[..., None]
-    diagonal = np.eye(n)
-    norm = np.full(batch, np.inf)
-    for _ in range(MAX_ITERATIONS):
-        w = other(ln_w)
-        residual = np.where(present, ln_w - ln_z - sign * ln_k_at(T, w), 0.0)
-        portions = np.where(present, np.exp(ln_w), 0.0)
-        total = portions.sum(-1)
-        closure = np.log(total) - target
-        norm = np.maximum(np.abs(residual).max(-1), np.abs(closure))
-        if (norm <= TOLERANCE).all():
+    low, high = getattr(properties, "T_range", UNLIMITED)
+    bounded = (low, high) != UNLIMITED
+    middle = 0.5 * (low + high) if bounded else DEFAULT_START
+    guess = np.asarray(middle) if T_guess is None else positive_array("T_guess", T_guess)
+    start = np.clip(np.broadcast_to(guess, batch), low, high).reshape(-1)
+    problem = _Problem(properties, P.reshape(-1), z.reshape(-1, n), fixed.reshape(-1, n),
+                       (ordinary & (z > 0)).reshape(-1, n), sign, (low, high))
+    T, w, norm = problem.solve(start)
+    # Strongly non-ideal liquids can trap a descent; another start almost always leads out.
+    for share_of_range in RESTARTS:
+        failed = norm > TOLERANCE
+        if not failed.any():
             break
-        slopes = k_value_derivatives(properties, T, P, *phases(w))
-        by_other = slopes.vapor if sign > 0 else slopes.liquid
-        jacobian = np.zeros((*batch, n + 1, n + 1))
-        jacobian[..., :n, :n] = diagonal - sign * np.where(present[..., :, None] & present[..., None, :],
-                                                           by_other * portions[..., None, :], 0.0)
-        jacobian[..., :n, n] = np.where(present, -sign * slopes.temperature, 0.0)
-        jacobian[..., n, :n] = portions / total[..., None]
-        step = np.linalg.solve(jacobian, -np.concatenate([residual, closure[..., None]], -1)[..., None])[..., 0]
-        # ln w may jump by the ratio of vapour pressures; T is held to a tenth of itself, ln w follows in proportion.
-        size = np.maximum(np.abs(step[..., n]) / (0.1 * T), np.abs(step[..., :n]).max(-1) / 3.0)
-        scale = 1.0 / np.maximum(1.0, size)
-        ln_w = ln_w + scale[..., None] * step[..., :n]
-        T = np.clip(T + scale * step[..., n], low, high)
-    w = other(ln_w)
+        restart = low + share_of_range * (high - low) if bounded else DEFAULT_START * (0.75 + 0.5 * share_of_range)
+        again = problem.at(failed).solve(np.full(int(failed.sum()), restart))
+        better = again[2] < norm[failed]
+        T[failed], norm[failed] = np.where(better, again[0], T[failed]), np.where(better, again[2], norm[failed])
+        w[failed] = np.where(better[:, None], again[1], w[failed])
+    T, w, norm = T.reshape(batch), w.reshape(*batch, n), norm.reshape(batch)
     failed = norm > TOLERANCE
     if failed.any():
         where = tuple(int(i) for i in np.argwhere(failed)[0])
@@ -133,7 +107,85 @@ def _saturation_point(properties: PropertyModel, P: ArrayLike, known_name: str, 
         raise ConvergenceError(f"{label} point{list(where) if where else ''}: no solution after {MAX_ITERATIONS} "
                                f"iterations, residual {norm[where]:.2g} at T = {T[where]:.6g} K",
                                best=(T, w), residual=norm, failed=failed)
-    return T, w
+    return T[()], w
+
+
+@dataclass(frozen=True)
+class _Problem:
+    """The equations of a flat batch: z known, w wanted; `fixed` the share of w that takes no part in equilibrium."""
+
+    properties: PropertyModel
+    P: Array
+    z: Array
+    fixed: Array
+    present: Mask
+    sign: float
+    bounds: tuple[float, float]
+
+    def at(self, chosen: Mask) -> _Problem:
+        """The problems of a mask over the batch."""
+        return replace(self, P=self.P[chosen], z=self.z[chosen], fixed=self.fixed[chosen], present=self.present[chosen])
+
+    def _composition(self, ln_w: Array) -> Array:
+        """w from its logarithms, scaled so that it sums to one in every iterate: no model sees anything else."""
+        w = np.where(self.present, np.exp(ln_w), 0.0)
+        w *= ((1.0 - self.fixed.sum(-1)) / w.sum(-1))[..., None]
+        return w + self.fixed
+
+    def _phases(self, w: Array) -> tuple[Array, Array]:
+        return (self.z, w) if self.sign > 0 else (w, self.z)
+
+    def _ln_k(self, T: Array, w: Array) -> Array:
+        return np.log(np.where(self.present, self.properties.k_value(T, self.P, *self._phases(w)), 1.0))
+
+    def solve(self, T: Array) -> tuple[Array, Array, Array]:
+        """Newton with a step that is halved until the residual falls: T, w and the largest residual, (...)."""
+        present, sign = self.present, self.sign
+        low, high = self.bounds
+        n = self.z.shape[-1]
+        ln_z = np.log(np.where(present, self.z, 1.0))
+        target = np.log1p(-self.fixed.sum(-1))
+        ln_w = np.where(present, ln_z, 0.0)
+        for _ in range(2):  # two substitutions give the other phase its character before Newton sees it
+            ln_w = np.where(present, ln_z + sign * self._ln_k(T, self._composition(ln_w)), 0.0)
+            ln_w -= (np.log(np.where(present, np.exp(ln_w), 0.0).sum(-1)) - target)[..., None]
+        T_trial, ln_w_trial = T, ln_w
+        merit: Array = np.full(T.shape, np.inf)
+        scale: Array = np.ones(T.shape)
+        residual = np.zeros((*T.shape, n + 1))
+        for _ in range(MAX_ITERATIONS):
+            portions = np.where(present, np.exp(ln_w_trial), 0.0)
+            trial = np.concatenate([
+                np.where(present, ln_w_trial - ln_z - sign * self._ln_k(T_trial, self._composition(ln_w_trial)), 0.0),
+                (np.log(portions.sum(-1)) - target)[..., None]], -1)
+            trial_merit = (trial ** 2).sum(-1)
+            accepted = (trial_merit < merit) | (trial_merit <= TOLERANCE ** 2) | (scale < SMALLEST_STEP)
+            T = np.where(accepted, T_trial, T)
+            merit = np.where(accepted, trial_merit, merit)
+            ln_w = np.where(accepted[..., None], ln_w_trial, ln_w)
+            residual = np.where(accepted[..., None], trial, residual)
+            if (np.abs(residual).max(-1) <= TOLERANCE).all():
+                break
+            step = self._newton_step(T, ln_w, residual)
+            # ln w may jump by the ratio of vapour pressures; T is held to a tenth of itself, ln w follows suit.
+            size = np.maximum(np.abs(step[..., n]) / (0.1 * T), np.abs(step[..., :n]).max(-1) / 3.0)
+            scale = np.asarray(np.where(accepted, 1.0 / np.maximum(1.0, size), 0.5 * scale), float)
+            ln_w_trial = ln_w + scale[..., None] * step[..., :n]
+            T_trial = np.clip(T + scale * step[..., n], low, high)
+        return T, self._composition(ln_w), np.abs(residual).max(-1)
+
+    def _newton_step(self, T: Array, ln_w: Array, residual: Array) -> Array:
+        n = self.z.shape[-1]
+        portions = np.where(self.present, np.exp(ln_w), 0.0)
+        slopes = k_value_derivatives(self.properties, T, self.P, *self._phases(self._composition(ln_w)))
+        by_other = slopes.vapor if self.sign > 0 else slopes.liquid
+        jacobian = np.zeros((*T.shape, n + 1, n + 1))
+        pairs = self.present[..., :, None] & self.present[..., None, :]
+        jacobian[..., :n, :n] = np.eye(n) - self.sign * np.where(pairs, by_other * portions[..., None, :], 0.0)
+        jacobian[..., :n, n] = np.where(self.present, -self.sign * slopes.temperature, 0.0)
+        jacobian[..., n, :n] = portions / portions.sum(-1, keepdims=True)
+        step: Array = np.linalg.solve(jacobian, -residual[..., None])[..., 0]
+        return step
 
 
 def smallest_gamma_eigenvalue(properties: PropertyModel, T: ArrayLike, P: ArrayLike, x: ArrayLike) -> Array:

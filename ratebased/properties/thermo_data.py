@@ -139,12 +139,12 @@ class ComponentData:
 
 
 def default_range(data: ComponentData, roles: Sequence[Role]) -> tuple[float, float]:
-    """60 K below the lowest to 60 K above the highest boiling point, capped just below the lowest critical point."""
+    """From 0 C, or 60 K below the lowest boiling point, to 60 K above the highest, below every critical point."""
     boiling = [data.constant("Tbs", i) for i, role in enumerate(roles) if role is Role.ORDINARY]
     critical = [data.constant("Tcs", i) for i, role in enumerate(roles) if role.has_liquid_data]
     if not boiling:
         raise InputError("T_range: give it, no component is in both phases with a vapour pressure of its own")
-    return min(boiling) - 60.0, min(max(boiling) + 60.0, 0.98 * min(critical))
+    return min(min(boiling) - 60.0, 273.15), min(max(boiling) + 60.0, 0.98 * min(critical))
 
 
 def pure_components(data: ComponentData, roles: Sequence[Role], T_range: tuple[float, float], *,

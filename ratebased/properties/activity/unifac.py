@@ -21,9 +21,8 @@ class Unifac:
     Parameters
     ----------
     counts : v_ik, (n, G); every component has at least one group.
-    R, Q : group volumes and areas, (G,).
+    R, Q : group volumes and areas, (G,), Q zero for a group buried in others.
     a, b, c : group interactions, (G, G), K, -, 1/K; diagonal zero.
-    r, q : molecular volumes and areas, (n,); None sums them over the groups.
     label : for the summary.
     """
 
@@ -35,10 +34,12 @@ class Unifac:
         for i in np.flatnonzero(groups.sum(1) <= 0):
             raise InputError(f"counts[{i}]: component {i} has no group")
         self.size, n_groups = groups.shape
-        volume, area = finite_array("R", R), positive_array("Q", Q)
+        volume, area = finite_array("R", R), finite_array("Q", Q)
         for name, vector in (("R", volume), ("Q", area)):
             if vector.shape != (n_groups,):
                 raise InputError(f"{name}: expected {n_groups} entries, one a group, got shape {vector.shape}")
+            if (vector < 0).any():
+                raise InputError(f"{name}: expected no negative entry, got {vector.tolist()}")
         coefficients: list[Array] = []
         for name, value in (("a", a), ("b", b), ("c", c)):
             matrix = np.zeros((n_groups, n_groups)) if value is None else finite_array(name, value)
@@ -47,7 +48,7 @@ class Unifac:
                                  f"{matrix.shape}")
             coefficients.append(-matrix)
         self._minus_a, self._minus_b, self._minus_c = coefficients
-        self.r, self.q = groups @ volume, groups @ area
+        self.r, self.q = positive_array("counts @ R", groups @ volume), positive_array("counts @ Q", groups @ area)
         self.r_exponent = r_exponent
         self.label = label
         self._areas = groups * area
