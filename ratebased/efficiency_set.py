@@ -1,9 +1,9 @@
 """Component efficiencies of a column in the form that an equilibrium-stage column can be fed with.
 
-Vaporisation efficiencies with the superheat of the vapour, or Murphree vapour efficiencies with both temperature offsets,
-reproduce the column they came from. Only n-1 Murphree efficiencies of a stage are independent at the bubble-point basis,
-sum_i E_i (y*_i - y_in,i) = 0, so one component a stage follows from the others: the one with the largest y, which carries
-the rounding of the table best.
+Vaporisation efficiencies with the superheat of the vapour, or Murphree vapour efficiencies with both temperature
+offsets, reproduce the column they came from. Only n-1 Murphree efficiencies of a stage are independent at the
+bubble-point basis, sum_i E_i (y*_i - y_in,i) = 0, so one component a stage follows from the others: the one with the
+largest y, which carries the rounding of the table best.
 """
 from __future__ import annotations
 
@@ -43,15 +43,16 @@ class EfficiencySet:
         dependent component is ignored too.
     dependent : component index a stage, (S,), or -1 for none. Murphree efficiencies at the bubble-point basis need one
         on every stage given; all others have none, the temperature comes with them.
-    vapor_offset, liquid_offset : K, (S,): temperature of the leaving vapour and liquid minus the temperature at which K is
-        taken (bubble point: T_V - T_bubble, T_L - T_bubble; liquid temperature: T_V - T_L, 0).
+    vapor_offset, liquid_offset : K, (S,): temperature of the leaving vapour and liquid minus the temperature at which K
+        is taken (bubble point: T_V - T_bubble, T_L - T_bubble; liquid temperature: T_V - T_L, 0).
     basis : `EfficiencyBasis`; vaporisation efficiencies are taken at the liquid temperature.
     given : (S,) boolean.
 
     Raises
     ------
-    InputError : shapes that disagree, an entry that is used and not finite, a vaporisation efficiency that is not positive,
-        a dependent component that is missing, out of range or surplus, a liquid offset at the liquid-temperature basis.
+    InputError : shapes that disagree, an entry that is used and not finite, a vaporisation efficiency that is not
+        positive, a dependent component that is missing, out of range or surplus, a liquid offset at the
+        liquid-temperature basis.
     """
 
     kind: EfficiencyKind
@@ -84,8 +85,8 @@ class EfficiencySet:
         needs = kind is EfficiencyKind.MURPHREE_VAPOR and basis is EfficiencyBasis.BUBBLE_POINT
         if needs:
             for j in np.flatnonzero(stages & ~((free >= 0) & (free < n)))[:1]:
-                raise InputError(f"dependent[{j}] = {free[j]}: Murphree efficiencies at the bubble point need the index "
-                                 f"of the component that follows from the others, 0 to {n - 1}")
+                raise InputError(f"dependent[{j}] = {free[j]}: Murphree efficiencies at the bubble point need the "
+                                 f"index of the component that follows from the others, 0 to {n - 1}")
         else:
             for j in np.flatnonzero(stages & (free != -1))[:1]:
                 raise InputError(f"dependent[{j}] = {free[j]}: these efficiencies are all independent, expected -1")

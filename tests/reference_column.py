@@ -66,5 +66,6 @@ def efficiency(data: Mapping[str, Any]) -> EfficiencySet | None:
         given = np.array([kind == "tray" for kind in data["kinds"]])
         eta = np.array(data["vaporization_efficiency"], float)
         eta[:, np.array(data["alpha"]) == 0] = 1.0
-        return EfficiencySet(EfficiencyKind.VAPORIZATION, eta, vapor_offset=np.array(data["superheat"], float), given=given)
+        return EfficiencySet(EfficiencyKind.VAPORIZATION, eta, vapor_offset=np.array(data["superheat"], float),
+                             given=given)
     return None

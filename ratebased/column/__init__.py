@@ -29,8 +29,8 @@ from .specifications import (
     DistillateRate,
     Product,
     ProductPurity,
-    RefluxRatio,
     ReboilerDuty,
+    RefluxRatio,
 )
 from .stage_system import Entering, StageBlocks, StageUnknowns, stage_residuals
 

@@ -1,4 +1,6 @@
-"""Efficiencies and heights back-calculated from a rate-based profile, and the sets to feed an equilibrium column with."""
+"""Efficiencies and heights back-calculated from a rate-based profile, and the sets to feed an equilibrium column
+with.
+"""
 from __future__ import annotations
 
 from dataclasses import dataclass
@@ -22,12 +24,12 @@ if TYPE_CHECKING:
 class EfficiencyTable:
     """Component efficiencies of the C contact stages of a column of S stages.
 
-    stage: numbers, (C,). basis: temperature at which the equilibrium vapour y* of the leaving liquid is taken. murphree:
-    E_i = (y_i - y_in,i)/(y*_i - y_in,i), (C, n), blank (NaN) where flagged. flagged: |y* - y_in| below the limit, where
-    the figure means nothing, or a component that cannot be in both phases. y_in, y_out, y_star: (C, n). vaporization:
-    y_i/(K_i(T_L) x_i), one for masked or absent components. superheat: T_V - T_L, K. T_reference: bubble point or T_L, K.
-    dependent: the component with the largest y, (C,), whose Murphree efficiency follows from the others at the
-    bubble-point basis: sum_i E_i (y*_i - y_in,i) = 0.
+    stage: numbers, (C,). basis: temperature at which the equilibrium vapour y* of the leaving liquid is taken.
+    murphree: E_i = (y_i - y_in,i)/(y*_i - y_in,i), (C, n), blank (NaN) where flagged. flagged: |y* - y_in| below the
+    limit, where the figure means nothing, or a component that cannot be in both phases. y_in, y_out, y_star: (C, n).
+    vaporization: y_i/(K_i(T_L) x_i), one for masked or absent components. superheat: T_V - T_L, K. T_reference: bubble
+    point or T_L, K. dependent: the component with the largest y, (C,), whose Murphree efficiency follows from the
+    others at the bubble-point basis: sum_i E_i (y*_i - y_in,i) = 0.
     """
 
     names: tuple[str, ...]
@@ -130,8 +132,8 @@ def efficiency_table(profile: Profile, *, limit: float = 0.01, at_liquid_tempera
     ------
     InputError : no model, a model of other components.
 
-    Sources: Murphree, Ind. Eng. Chem. 17 (1925) 747; vaporisation efficiencies of Holland (1963), with K at the temperature
-    of the leaving liquid.
+    Sources: Murphree, Ind. Eng. Chem. 17 (1925) 747; vaporisation efficiencies of Holland (1963), with K at the
+    temperature of the leaving liquid.
     """
     model = profile.model_or(properties)
     c = profile.contact_index
@@ -143,8 +145,9 @@ def efficiency_table(profile: Profile, *, limit: float = 0.01, at_liquid_tempera
     murphree = np.where(flagged, np.nan, murphree_vapor(y_in, y, y_star))
     T_L, T_V = profile.T_L[c], profile.T_V[c]
     K = model.k_value(T_L, profile.P[c], profile.x[c], y)
+    eta = vaporization(K, profile.x[c], y, ordinary)          # zero where a trace is lost in rounding
     return EfficiencyTable(profile.names, profile.stages, c + 1, basis, murphree, flagged, y_in, y, y_star,
-                           vaporization(K, profile.x[c], y, ordinary), T_V - T_L, T, T_L, T_V,
+                           np.where(eta > 0, eta, 1.0), T_V - T_L, T, T_L, T_V,
                            np.argmax(np.where(ordinary, y, -1.0), -1), ordinary)
 
 
@@ -152,8 +155,9 @@ def efficiency_table(profile: Profile, *, limit: float = 0.01, at_liquid_tempera
 class HeightTable:
     """Heights of a packed bed by component, (C, n), over its C segments.
 
-    hetp: height equivalent to a theoretical plate, m, blank (NaN) where flagged. stages: N_eq of each segment. stripping:
-    S = m V/L, m the slope of y* over x between the ends of the segment. flagged: no meaningful figure. height: m, (C,).
+    hetp: height equivalent to a theoretical plate, m, blank (NaN) where flagged. stages: N_eq of each segment.
+    stripping: S = m V/L, m the slope of y* over x between the ends of the segment. flagged: no meaningful figure.
+    height: m, (C,).
     """
 
     names: tuple[str, ...]
@@ -183,8 +187,8 @@ class HeightTable:
 def height_table(profile: Profile, *, limit: float = 0.01, properties: PropertyModel | None = None) -> HeightTable:
     """Component HETPs of a packed bed from its rate-based profile.
 
-    A segment of height Z is E_i of a plate (Murphree, y* of the leaving liquid); N_eq,i = ln(1 + E_i (S_i - 1))/ln S_i and
-    HETP_i = Z/N_eq,i, exact for a straight equilibrium line of slope m and a straight operating line (Lewis 1936).
+    A segment of height Z is E_i of a plate (Murphree, y* of the leaving liquid); N_eq,i = ln(1 + E_i (S_i - 1))/ln S_i
+    and HETP_i = Z/N_eq,i, exact for a straight equilibrium line of slope m and a straight operating line (Lewis 1936).
 
     Raises
     ------

@@ -4,9 +4,12 @@ from __future__ import annotations
 from functools import lru_cache
 
 import numpy as np
+from numpy.typing import NDArray
 from scipy.linalg import solve_banded
 
 from ..properties.protocol import Array
+
+Index = NDArray[np.signedinteger]
 
 
 class BlockTridiagonal:
@@ -22,10 +25,10 @@ class BlockTridiagonal:
         stage = np.arange(S)[:, None, None]
         row, column = np.arange(m)[:, None], np.arange(m)[None, :]
 
-        def place(i: Array, k: Array) -> Array:
+        def place(i: Index, k: Index) -> Index:
             return (above + i - k) * (S * m) + k
 
-        def inside(offset: Array, count: int) -> Array:
+        def inside(offset: Index, count: int) -> NDArray[np.bool_]:
             return np.broadcast_to((offset <= below) & (-offset <= above), (count, *offset.shape)).copy()
 
         left, right = np.arange(lower_from, m)[None, :], np.arange(upper_to)[None, :]

@@ -1,4 +1,6 @@
-"""The same column predicted in three ways, side by side: one efficiency, component efficiencies fed back, rate-based."""
+"""The same column predicted in three ways, side by side: one efficiency, component efficiencies fed back,
+rate-based.
+"""
 from __future__ import annotations
 
 from collections.abc import Callable
@@ -33,10 +35,11 @@ NEGLIGIBLE = 1e-7
 class Comparison:
     """Three predictions of one column.
 
-    profiles: by model name, in the order one efficiency, component efficiencies, rate-based. efficiency: the one Murphree
-    efficiency and where it comes from. table: back-calculated component efficiencies. differences: the largest ones, in
-    words, largest first. purity: component name and product that the stage counts are for, with the mole fraction. contact
-    stages needed by each model for it; None where it is not reached with up to three times the stages.
+    profiles: by model name, in the order one efficiency, component efficiencies, rate-based. efficiency: the one
+    Murphree efficiency and where it comes from. table: back-calculated component efficiencies. differences: the largest
+    ones, in words, largest first. purity: component name and product that the stage counts are for, with the mole
+    fraction. contact stages needed by each model for it; None where it is not reached with up to three times the
+    stages.
     """
 
     profiles: dict[str, Profile]
@@ -77,7 +80,8 @@ class Comparison:
 
 def compare(column: Column, properties: PropertyModel, contactor: ContactorLayout, *, efficiency: float | None = None,
             component: int | str | None = None, product: str = "top", purity: float | None = None,
-            count_stages: bool = True, vapor: FlowPattern | None = None, liquid: FlowPattern | None = None) -> Comparison:
+            count_stages: bool = True, vapor: FlowPattern | None = None,
+            liquid: FlowPattern | None = None) -> Comparison:
     """Predict a column three ways and say how far apart they are.
 
     Parameters
@@ -85,8 +89,8 @@ def compare(column: Column, properties: PropertyModel, contactor: ContactorLayou
     column, properties, contactor, vapor, liquid : as for `solve_ratebased`.
     efficiency : the one Murphree vapour efficiency of the first model. None: O'Connell's overall efficiency for the key
         components (the absorber form without condenser and reboiler); for a packed bed the median of the segments' own.
-    component, product, purity : what the stage counts are for; None: the light key in the top product (of an absorber the
-        component that it removes most of), at the mole fraction of the rate-based column.
+    component, product, purity : what the stage counts are for; None: the light key in the top product (of an absorber
+        the component that it removes most of), at the mole fraction of the rate-based column.
     count_stages : False leaves the counts out (about twenty more solutions).
 
     Raises
@@ -121,12 +125,14 @@ def compare(column: Column, properties: PropertyModel, contactor: ContactorLayou
             FED_BACK: with_fed, RATE_BASED: rate_based}
         for model, solve in solvers.items():
             needed[model] = stages_for_purity(solve, profiles[model], i, product, target)
-    return Comparison(profiles, value, source, table, tuple(_differences(profiles)), (rate.names[i], product, target), needed)
+    return Comparison(profiles, value, source, table, tuple(_differences(profiles)), (rate.names[i], product, target),
+                      needed)
 
 
 def key_components(profile: Profile) -> tuple[int, int]:
-    """Light and heavy key: of the components in order of their K, the neighbours whose recoveries at the top lie furthest
-    apart; of an absorber or a stripper without ends twice the component that changes phase most. Masked ones take no part.
+    """Light and heavy key: of the components in order of their K, the neighbours whose recoveries at the top lie
+    furthest apart; of an absorber or a stripper without ends twice the component that changes phase most. Masked ones
+    take no part.
     """
     model = profile.model_or(None)
     ordinary = np.flatnonzero(model.condensable & model.volatile)
@@ -155,18 +161,21 @@ def _rule_of_thumb(profile: Profile, table: EfficiencyTable, properties: Propert
     viscosity = float(np.mean(transport.viscosity))
     if "condenser" in profile.duties or "reboiler" in profile.duties:
         alpha = float(np.exp(np.mean(np.log(K[:, light] / K[:, heavy]))))
-        return float(oconnell.silent(max(alpha, 1.0), viscosity)), "O'Connell (1946), key components at the mean of the stages"
+        value = oconnell.silent(max(alpha, 1.0), viscosity)
+        return float(value), "O'Connell (1946), key components at the mean of the stages"
     molar_mass = float(np.mean(x @ properties.molar_mass))
     density = float(np.mean(transport.mass_density))
     value = oconnell_absorber.silent(float(np.mean(K[:, light])), molar_mass, viscosity, density)
     return float(value), "O'Connell (1946) for absorbers, key component at the mean of the stages"
 
 
-def stages_for_purity(solve: Callable[[int], Profile], known: Profile, component: int, product: str, target: float) -> int | None:
+def stages_for_purity(solve: Callable[[int], Profile], known: Profile, component: int, product: str,
+                      target: float) -> int | None:
     """Fewest contact stages with which a column reaches a mole fraction in a product; None: not up to three times the
     stages of `known`.
 
-    The side of the target that counts as reached is that of many stages. `solve(n)` gives the column of n contact stages.
+    The side of the target that counts as reached is that of many stages. `solve(n)` gives the column of n contact
+    stages.
     """
     now = int(known.contact_index.size)
     values = {now: known.purity(component, product)}
@@ -217,19 +226,21 @@ def _differences(profiles: dict[str, Profile]) -> list[str]:
         dx = np.abs(other.x - rate.x)
         j, i = (int(k) for k in np.unravel_index(int(np.argmax(dx)), dx.shape))
         sentences.append((error, f"{model}: the largest difference in the liquid is {error:.2g} mole fraction, "
-                          f"{rate.names[i]} on stage {j + 1} ({other.x[j, i]:.4f} against {rate.x[j, i]:.4f} rate-based)."))
+                          f"{rate.names[i]} on stage {j + 1} ({other.x[j, i]:.4f} against {rate.x[j, i]:.4f} "
+                          f"rate-based)."))
         dT = np.abs(other.T_L - rate.T_L)
         j = int(np.argmax(dT))
-        sentences.append((float(dT[j]) / 100.0, f"{model}: the largest temperature difference is {dT[j]:.2g} K, on stage "
-                          f"{j + 1} ({other.T_L[j]:.2f} K against {rate.T_L[j]:.2f} K)."))
+        sentences.append((float(dT[j]) / 100.0, f"{model}: the largest temperature difference is {dT[j]:.2g} K, on "
+                                                f"stage {j + 1} ({other.T_L[j]:.2f} K against {rate.T_L[j]:.2f} K)."))
         for product in ("top", "bottom"):
             z, w = other.products[product].composition, rate.products[product].composition
             i = int(np.argmax(np.abs(z - w)))
-            sentences.append((float(abs(z[i] - w[i])), f"{model}: {rate.names[i]} in the {product} product comes out at "
-                              f"{z[i]:.4f}, {w[i]:.4f} rate-based."))
+            sentences.append((float(abs(z[i] - w[i])), f"{model}: {rate.names[i]} in the {product} product comes out "
+                                                       f"at {z[i]:.4f}, {w[i]:.4f} rate-based."))
         for end, q in rate.duties.items():
             off = other.duties[end] / q - 1.0 if q else 0.0
-            sentences.append((abs(off), f"{model}: the {end} duty is {100 * off:+.2g} % off ({other.duties[end] / 1e3:.1f} kW "
+            sentences.append((abs(off), f"{model}: the {end} duty is {100 * off:+.2g} % off "
+                                        f"({other.duties[end] / 1e3:.1f} kW "
                               f"against {q / 1e3:.1f} kW)."))
     return [words for _, words in sorted(sentences, key=lambda s: -s[0])]
 

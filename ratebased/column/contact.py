@@ -20,12 +20,18 @@ ContactorLayout = Hardware | Mapping[tuple[int, int], Contactor]
 
 
 class FlowPattern(Protocol):
-    """How a phase flows through a stage: the share of the entering state in the bulk state its film starts from."""
+    """How a phase flows through a stage: the share of the entering state in the bulk state its film starts from.
+
+    `weight` is asked for the composition with the transfer units of both films in series and for the temperature with
+    those of the phase's own heat transfer, h area/(flow cp).
+    """
 
     @property
     def words(self) -> str: ...
 
     def weight(self, transfer_units: Array) -> Array: ...
+
+    def temperature_weight(self, transfer_units: Array) -> Array: ...
 
 
 @dataclass(frozen=True)
@@ -37,26 +43,35 @@ class Mixed:
     def weight(self, transfer_units: Array) -> Array:
         return np.zeros_like(transfer_units)
 
+    temperature_weight = weight
+
 
 @dataclass(frozen=True)
 class Averaged:
     """The bulk is the arithmetic mean of what enters and what leaves: second order in the height of a packed segment.
 
-    A stage of this kind acts as E = N/(1 + N/2) for N transfer units: keep N below 2.
+    A stage of this kind acts as E = N/(1 + N/2) for N transfer units and would overshoot from N = 2 on. From there the
+    entering composition has the share 1/N, so that a phase leaves at the interface's composition at most and no
+    fraction turns negative. The temperature may overshoot a little: its share is 3/N from N = 6 on, where it passes the
+    interface by half of the way, and by less for larger N. Shorter segments are untouched. (Heat passes the film of a
+    liquid ten times as easily as mass, so the liquid's temperature is often so limited.)
     """
 
     words: str = "mean of entering and leaving state"
 
     def weight(self, transfer_units: Array) -> Array:
-        return np.full_like(transfer_units, 0.5)
+        return 1.0 / np.maximum(transfer_units, 2.0)
+
+    def temperature_weight(self, transfer_units: Array) -> Array:
+        return 3.0 / np.maximum(transfer_units, 6.0)
 
 
 @dataclass(frozen=True)
 class Plug:
-    """Plug flow past an interface of one composition: the bulk is the mean of the exponential approach.
+    """Plug flow past an interface of one state: the bulk is the mean of the exponential approach.
 
-    The share of the entering state is 1/N - 1/(e^N - 1), N the transfer units of the film (harmonic mean over the pairs):
-    E = 1 - exp(-N) for equal coefficients, and stable for any N. It tends to the arithmetic mean for small N.
+    The share of the entering state is 1/N - 1/(e^N - 1) for N transfer units: E = 1 - exp(-N) when all coefficients are
+    equal and the interface does not change, and stable for any N. It tends to the arithmetic mean for small N.
     """
 
     words: str = "plug flow"
@@ -67,6 +82,8 @@ class Plug:
         safe = np.where(small, 1.0, N)
         return np.where(small, 0.5 - N / 12.0, 1.0 / safe - 1.0 / np.expm1(safe))
 
+    temperature_weight = weight
+
 
 @dataclass(frozen=True)
 class Layout:
@@ -75,7 +92,8 @@ class Layout:
     contactors: tuple[tuple[Contactor, NDArray[np.intp]], ...]
     count: int
 
-    def states(self, properties: PropertyModel, V: Array, L: Array, T_V: Array, T_L: Array, P: Array, y: Array, x: Array,
+    def states(self, properties: PropertyModel, V: Array, L: Array, T_V: Array, T_L: Array, P: Array, y: Array,
+               x: Array,
                height: Array | None) -> list[tuple[Contactor, NDArray[np.intp], ContactState]]:
         """One state a contactor."""
         return [(c, i, contact_state(properties, V[i], L[i], T_V[i], T_L[i], P[i], y[i], x[i],
@@ -108,13 +126,15 @@ class Transfer:
     c_liquid: Array
 
 
-def transfer(states: list[tuple[Contactor, NDArray[np.intp], ContactState]], count: int, area_factor: float) -> Transfer:
+def transfer(states: list[tuple[Contactor, NDArray[np.intp], ContactState]], count: int,
+             area_factor: float) -> Transfer:
     """Coefficients of every stage from its contactor; the areas times `area_factor`."""
     parts = [(i, c.transfer(state), state) for c, i, state in states]
     if len(parts) == 1:
         _, k, state = parts[0]
         if area_factor != 1.0:
-            k = TransferCoefficients(k.kappa_vapor, k.kappa_liquid, k.h_vapor, k.h_liquid, k.area * area_factor, k.basis,
+            k = TransferCoefficients(k.kappa_vapor, k.kappa_liquid, k.h_vapor, k.h_liquid, k.area * area_factor,
+                                     k.basis,
                                      k.notes)
         return Transfer(k, state.vapor.molar_density, state.liquid.molar_density)
     notes: dict[str, NDArray[np.bool_]] = {}

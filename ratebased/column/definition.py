@@ -101,7 +101,9 @@ class VaporDraw:
 
 @dataclass(frozen=True)
 class TotalCondenser:
-    """All the vapour from stage 2 condenses; reflux and distillate are liquid. subcooling: below the bubble point, K."""
+    """All the vapour from stage 2 condenses; reflux and distillate are liquid. subcooling: below the bubble point,
+    K.
+    """
 
     subcooling: float = 0.0
 
@@ -308,8 +310,8 @@ class Column:
         rest = liquid_in + max(vapor_feed, 0.0) - liquid_drawn
         if (rest[:-1] <= 0).any() and vapor_in > 0:
             j = int(np.argmax(rest[:-1] <= 0))
-            raise InputError(f"draws: the liquid draws down to stage {j + 1} take {liquid_drawn[j]:g} mol/s, reflux and "
-                             f"feeds above bring {liquid_in[j]:g} mol/s: the section below must run dry")
+            raise InputError(f"draws: the liquid draws down to stage {j + 1} take {liquid_drawn[j]:g} mol/s, reflux "
+                             f"and feeds above bring {liquid_in[j]:g} mol/s: the section below must run dry")
 
     def _check_ends(self) -> None:
         top = [f for f in self.feeds if f.stage == 1]
@@ -317,8 +319,8 @@ class Column:
         if self.condenser is None and not any(_may_hold_liquid(f) for f in top):
             raise InputError("feeds: no condenser and no liquid feed to stage 1, the top section must run dry")
         if self.reboiler is None and not any(_may_hold_vapor(f) for f in bottom):
-            raise InputError(f"feeds: no reboiler and no vapour feed to stage {self.stages}, the bottom section gets no "
-                             "vapour")
+            raise InputError(f"feeds: no reboiler and no vapour feed to stage {self.stages}, the bottom section gets "
+                             "no vapour")
 
 
 def _may_hold_liquid(feed: AnyFeed) -> bool:
@@ -337,7 +339,8 @@ def _set(record: object, **values: Any) -> None:
 def _feed_flows(stage: int, flows: ArrayLike) -> Array:
     array = finite_array(f"flows of the feed to stage {stage}", flows)
     if array.ndim != 1 or array.size < 1:
-        raise InputError(f"flows of the feed to stage {stage}: expected one number a component, got shape {array.shape}")
+        raise InputError(f"flows of the feed to stage {stage}: expected one number a component, got shape "
+                         f"{array.shape}")
     for i in np.flatnonzero(array < 0):
         raise InputError(f"flows of the feed to stage {stage}[{i}] = {array[i]}: a flow cannot be negative")
     if array.sum() <= 0:

@@ -32,7 +32,8 @@ class EquilibriumPart:
     by_l: Array
 
 
-def equilibrium_part(problem: Problem, P: Array, v: Array, T: Array, l: Array, y: Array | None = None) -> EquilibriumPart:
+def equilibrium_part(problem: Problem, P: Array, v: Array, T: Array, l: Array,
+                     y: Array | None = None) -> EquilibriumPart:
     """`y` replaces the vapour's composition in K: a total condenser has no vapour of its own."""
     V, y_out, dy = fractions(v)
     L, x, dx = fractions(l)

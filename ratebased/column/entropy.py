@@ -2,9 +2,9 @@
 
 The entropy flux through a film is (E - sum N_i mu_i)/T with the energy flux E and the fluxes N constant across it, so a
 film produces E (1/T_d - 1/T_0) - sum N_i [mu_i/T]_0^d. mu_i/T comes from the property model itself: the vapour as an
-ideal mixture, mu_i/T = g_i(T) + R ln(y_i P) with g_i' = -H_V,i/T^2 (Gibbs and Helmholtz), the liquid by equilibrium with
-it, mu_i/T = g_i(T) + R ln(K_i x_i P). Entropies of streams follow as s = (H - mu)/T, so the balance of a stage closes for
-any model; whether the model belongs to one Gibbs energy is what the inconsistency term shows.
+ideal mixture, mu_i/T = g_i(T) + R ln(y_i P) with g_i' = -H_V,i/T^2 (Gibbs and Helmholtz), the liquid by equilibrium
+with it, mu_i/T = g_i(T) + R ln(K_i x_i P). Entropies of streams follow as s = (H - mu)/T, so the balance of a stage
+closes for any model; whether the model belongs to one Gibbs energy is what the inconsistency term shows.
 """
 from __future__ import annotations
 
@@ -28,10 +28,11 @@ NODES, WEIGHTS = np.polynomial.legendre.leggauss(12)
 class EntropyProduction:
     """W/K of each contact stage, (C,).
 
-    vapor_diffusion, liquid_diffusion: R sum N_i ln(a_0/a_d) of the films. vapor_conduction, liquid_conduction: of the heat
-    conducted in them. vapor_mixing, liquid_mixing: entering streams against the bulk. inconsistency: what is left of the
-    films, zero when K, enthalpies and heat capacities of the model belong to one Gibbs energy. total: their sum. streams:
-    the same from the entropies of the streams of the stage and its duty; closure: |total - streams| over the turnover.
+    vapor_diffusion, liquid_diffusion: R sum N_i ln(a_0/a_d) of the films. vapor_conduction, liquid_conduction: of the
+    heat conducted in them. vapor_mixing, liquid_mixing: entering streams against the bulk. inconsistency: what is left
+    of the films, zero when K, enthalpies and heat capacities of the model belong to one Gibbs energy. total: their sum.
+    streams: the same from the entropies of the streams of the stage and its duty; closure: |total - streams| over the
+    turnover.
     """
 
     stage: NDArray[np.int64]
@@ -135,13 +136,16 @@ def entropy_production(profile: Profile, *, properties: PropertyModel | None = N
     liquid_conduction = -A * _conduction(q_L, (N * cp_L).sum(-1), T_L, r.T_I)
     inconsistency = (vapor_film + liquid_film + interface - vapor_diffusion - liquid_diffusion - vapor_conduction
                      - liquid_conduction)
-    vapor_mixing, vapor_streams, size_V = _phase(profile, model, mu, c, True, y_b, T_V, vapor_b, A[:, None] * N, A * q_V)
-    liquid_mixing, liquid_streams, size_L = _phase(profile, model, mu, c, False, x_b, T_L, liquid_b, -A[:, None] * N, -A * q_L)
+    vapor_mixing, vapor_streams, size_V = _phase(profile, model, mu, c, True, y_b, T_V, vapor_b, A[:, None] * N,
+                                                 A * q_V)
+    liquid_mixing, liquid_streams, size_L = _phase(profile, model, mu, c, False, x_b, T_L, liquid_b, -A[:, None] * N,
+                                                   -A * q_L)
     duty = profile.duty[c] / T_L
     liquid_mixing = liquid_mixing - duty
     streams = vapor_streams + liquid_streams - duty
     total = (vapor_film + liquid_film + interface) + vapor_mixing + liquid_mixing
-    return EntropyProduction(r.stage, vapor_diffusion, liquid_diffusion, vapor_conduction, liquid_conduction, vapor_mixing,
+    return EntropyProduction(r.stage, vapor_diffusion, liquid_diffusion, vapor_conduction, liquid_conduction,
+                             vapor_mixing,
                              liquid_mixing, inconsistency, streams, np.abs(total - streams) / (size_V + size_L))
 
 
@@ -158,7 +162,8 @@ def _conduction(q_0: Array, flow_cp: Array, T_0: Array, T_1: Array) -> Array:
     return (q_0 + flow_cp * T_0) * (1.0 / T_1 - 1.0 / T_0) + flow_cp * np.log(T_1 / T_0)
 
 
-def _phase(profile: Profile, model: PropertyModel, mu: _Potentials, c: NDArray[np.intp], vapor: bool, z_b: Array, T_b: Array,
+def _phase(profile: Profile, model: PropertyModel, mu: _Potentials, c: NDArray[np.intp], vapor: bool, z_b: Array,
+           T_b: Array,
            mu_b: Array, gone: Array, heat_gone: Array) -> tuple[Array, Array, Array]:
     """Production of one phase's streams against its bulk, its net stream entropy (out - in) and the turnover."""
     S = profile.stages

@@ -1,7 +1,7 @@
 """The equilibrium-stage column: component balances, equilibrium and energy of all stages in one Newton iteration.
 
-Unknowns of a stage: v (n), T, l (n), component flows leaving before side draws. Balances are scaled by the feed, never by
-the internal flows: the products must be right. The Jacobian is analytic, d ln K/dx included, and block tridiagonal.
+Unknowns of a stage: v (n), T, l (n), component flows leaving before side draws. Balances are scaled by the feed, never
+by the internal flows: the products must be right. The Jacobian is analytic, d ln K/dx included, and block tridiagonal.
 """
 from __future__ import annotations
 
@@ -70,8 +70,8 @@ def stage_rows(problem: Problem, efficiency: EfficiencySet | None) -> StageRows:
             direct[t] = 1.0 - values
         bubble[t] = efficiency.dependent[t]
         for j in t[(bubble[t] >= 0) & ~problem.ordinary[bubble[t]]][:1]:
-            raise InputError(f"efficiency.dependent[{j}] = {bubble[j]}: {problem.properties.names[bubble[j]]} is not in both "
-                             "phases")
+            raise InputError(f"efficiency.dependent[{j}] = {bubble[j]}: {problem.properties.names[bubble[j]]} is not "
+                             "in both phases")
         vapor[t], liquid[t] = efficiency.vapor_offset[t], efficiency.liquid_offset[t]
     return StageRows(direct, factor, bubble, vapor, liquid)
 
@@ -143,7 +143,8 @@ def _balance_rows(r: Array, D: Array, lower: Array, upper: Array, n: int, fe: fl
     lower[1:, :n, n + 1:] = -d_falling[:-1] * fe
 
 
-def _equilibrium_rows(problem: Problem, rows: StageRows, part: EquilibriumPart, r: Array, D: Array, upper: Array, v: Array,
+def _equilibrium_rows(problem: Problem, rows: StageRows, part: EquilibriumPart, r: Array, D: Array, upper: Array,
+                      v: Array,
                       l: Array, v_in: Array, d_rising: Array) -> None:
     n, fe = problem.n, 1.0 / problem.F
     e = slice(n, 2 * n)
@@ -166,12 +167,13 @@ def _equilibrium_rows(problem: Problem, rows: StageRows, part: EquilibriumPart, 
     for k in np.flatnonzero(problem.heavy):
         r[:, n + k], D[:, n + k, :], upper[:, n + k, :] = v[:, k] * fe, 0.0, 0.0
         D[:, n + k, k] = fe
-    j = np.flatnonzero(rows.bubble >= 0)
-    if j.size:
-        k = n + rows.bubble[j]
-        r[j, k] = part.Kx[j].sum(1) - 1.0
-        D[j, k, :n], D[j, k, n], D[j, k, n + 1:] = part.by_v[j].sum(1), part.by_T[j].sum(1), part.by_l[j].sum(1)
-        upper[j, k] = 0.0
+    at = np.flatnonzero(rows.bubble >= 0)
+    if at.size:
+        row = n + rows.bubble[at]
+        r[at, row] = part.Kx[at].sum(1) - 1.0
+        D[at, row, :n], D[at, row, n] = part.by_v[at].sum(1), part.by_T[at].sum(1)
+        D[at, row, n + 1:] = part.by_l[at].sum(1)
+        upper[at, row] = 0.0
 
 
 def _end_rows(problem: Problem, part: EquilibriumPart, r: Array, D: Array, lower: Array, upper: Array, v: Array,
@@ -221,9 +223,13 @@ def _worst(residual: Array, names: tuple[str, ...]) -> str:
     return f"stage {j + 1}, {what}"
 
 
-def newton(problem: Problem, rows: StageRows, state: State, *, largest_step: float = LARGEST_TEMPERATURE_STEP,
-           limit: int = MAX_ITERATIONS, progress: Progress | None = None) -> NewtonOutcome:
-    """Newton's method from `state`; one plain step at the end closes the (linear) balances to rounding."""
+def newton(problem: Problem, rows: StageRows, state: State, *, damped: bool = False, limit: int = MAX_ITERATIONS,
+           progress: Progress | None = None) -> NewtonOutcome:
+    """Newton's method from `state`; one plain step at the end closes the (linear) balances to rounding.
+
+    damped: all steps shortened by one factor, so that no temperature moves more than 5 K and no total flow by more than
+    half of itself; slower, for columns whose flows run away.
+    """
     S, n = problem.S, problem.n
     m = 2 * n + 1
     band = block_tridiagonal(S, m, n, n + 1, 2 * m - 1 - n, m + n)
@@ -262,16 +268,21 @@ def newton(problem: Problem, rows: StageRows, state: State, *, largest_step: flo
             least = min(final.v.min(), final.l.min()) / problem.F
             if least > -1e-10:
                 return NewtonOutcome(final, True, iteration, residual, worst)
-        T = np.clip(state.T + np.clip(dT, -largest_step, largest_step), low, high)
+        if damped:
+            size = max(float(np.abs(dT).max()) / 5.0, float(np.abs(dv.sum(1, keepdims=True) / V).max()) / 0.5,
+                       float(np.abs(dl.sum(1, keepdims=True) / L).max()) / 0.5)
+            dv, dT, dl = (d / max(1.0, size) for d in (dv, dT, dl))
+        T = np.clip(state.T + np.clip(dT, -LARGEST_TEMPERATURE_STEP, LARGEST_TEMPERATURE_STEP), low, high)
         state = State(limited(state.v, dv), T, limited(state.l, dl))
     at_limit = np.flatnonzero((state.T <= low) | (state.T >= high))
     if at_limit.size:
         reason += f" (stage {at_limit[0] + 1} at the limit of the property model's range, {state.T[at_limit[0]]:.1f} K)"
-    return NewtonOutcome(state, False, limit if reason.startswith("the iteration") else iteration, residual, worst, reason)
+    return NewtonOutcome(state, False, limit if reason.startswith("the iteration") else iteration, residual, worst,
+                         reason)
 
 
 def solve_equilibrium(column: Column, properties: PropertyModel, efficiency: EfficiencySet | float | None = None, *,
-                      progress: Progress | None = None) -> Profile:
+                      start: Profile | None = None, progress: Progress | None = None) -> Profile:
     """The column with equilibrium stages, or with component efficiencies on its contact stages.
 
     Parameters
@@ -279,6 +290,7 @@ def solve_equilibrium(column: Column, properties: PropertyModel, efficiency: Eff
     column, properties : the column and its mixture. No guess is needed.
     efficiency : None; an `EfficiencySet` with one row a stage; or one number, the Murphree vapour efficiency of every
         component on every contact stage. Any sign.
+    start : a profile of the same column shape to try first; None starts from constant molar overflow.
     progress : called with iteration number and scaled residual.
 
     Returns
@@ -291,13 +303,20 @@ def solve_equilibrium(column: Column, properties: PropertyModel, efficiency: Eff
     ConvergenceError : what was tried, the worst stage and equation, and the dry-section estimate; `best` is the last
         state. NoSolutionError : a searched specification that is out of reach; it tells the best that can be reached.
 
-    Source: simultaneous Newton on component flows, Naphtali & Sandholm, AIChE J. 17 (1971) 148; balances, equilibrium and
-    energy written in mole fractions and solved as a band.
+    Source: simultaneous Newton on component flows, Naphtali & Sandholm, AIChE J. 17 (1971) 148; balances, equilibrium
+    and energy written in mole fractions and solved as a band.
     """
     if column.search is not None:
         return with_search(column, lambda trial, _: solve_equilibrium(trial, properties, efficiency))
     problem = make_problem(column, properties)
-    state, outcome, rows = solve_state(problem, _efficiency_set(problem, efficiency), progress)
+    given = _efficiency_set(problem, efficiency)
+    if start is not None:
+        rows = stage_rows(problem, given)
+        outcome = newton(problem, rows, state_of(problem, rows, start), progress=progress)
+        if outcome.converged:
+            return equilibrium_profile(problem, rows, outcome.state, outcome.iterations, outcome.residual,
+                                       "from the profile given")
+    state, outcome, rows = solve_state(problem, given, progress)
     return equilibrium_profile(problem, rows, state, outcome.iterations, outcome.residual)
 
 
@@ -312,9 +331,21 @@ def _efficiency_set(problem: Problem, efficiency: EfficiencySet | float | None) 
     return uniform_murphree(value, problem.S, problem.n, basis, problem.column.contact)
 
 
+def state_of(problem: Problem, rows: StageRows, profile: Profile) -> State:
+    """The unknowns that a profile stands for."""
+    if profile.x.shape != (problem.S, problem.n):
+        raise InputError(f"start: a profile of {profile.x.shape[0]} stages and {profile.x.shape[1]} components, the "
+                         f"column has {problem.S} and {problem.n}")
+    v = (profile.V + profile.vapor_draw)[:, None] * profile.y
+    if problem.total_condenser:
+        v[0] = profile.products["top"].flows
+    l = (profile.L + profile.liquid_draw)[:, None] * profile.x
+    return positive(problem, State(v, profile.T_L - rows.liquid_offset, l))
+
+
 def solve_state(problem: Problem, efficiency: EfficiencySet | None, progress: Progress | None = None
                 ) -> tuple[State, NewtonOutcome, StageRows]:
-    """The solved state; falls back on smaller steps, on continuation in the efficiencies and in the reflux ratio."""
+    """The solved state; falls back on shortened steps, on continuation in the efficiencies and in the reflux ratio."""
     rows = stage_rows(problem, efficiency)
     start = starting_state(problem)
     margin = dry_margin(problem, start)
@@ -322,25 +353,25 @@ def solve_state(problem: Problem, efficiency: EfficiencySet | None, progress: Pr
         warnings.warn(f"the specifications seem to leave a section without vapour or liquid (smallest section flow "
                       f"{margin:.2g} times the distillate, an estimate)", PlausibilityWarning, stacklevel=3)
     if isinstance(problem.top, RefluxRatio) and problem.top.value > LARGEST_REFLUX:
-        warnings.warn(f"RefluxRatio = {problem.top.value:g}: products are lost in the rounding of the internal flows; total "
-                      "reflux is a problem of its own", PlausibilityWarning, stacklevel=3)
+        warnings.warn(f"RefluxRatio = {problem.top.value:g}: products are lost in the rounding of the internal flows; "
+                      "total reflux is a problem of its own", PlausibilityWarning, stacklevel=3)
     tried = []
     if efficiency is not None and efficiency.kind is EfficiencyKind.MURPHREE_VAPOR:
         tame = newton(problem, stage_rows(problem, efficiency.tamed()), start, progress=progress)
         if tame.converged:
             outcome = newton(problem, rows, positive(problem, tame.state), progress=progress)
             if outcome.converged:
-                return outcome.state, outcome, rows
+                return outcome.state, replace(outcome, iterations=tame.iterations + outcome.iterations), rows
             tried.append(f"Newton from the column with odd efficiencies replaced: residual {outcome.residual:.2g}")
     outcome = newton(problem, rows, start, progress=progress)
     if outcome.converged:
         return outcome.state, outcome, rows
     tried.append(f"Newton from constant molar overflow ended at {outcome.reason}, residual {outcome.residual:.2g}")
     first = outcome
-    outcome = newton(problem, rows, start, largest_step=3.0, progress=progress)
+    outcome = newton(problem, rows, start, damped=True, progress=progress)
     if outcome.converged:
         return outcome.state, outcome, rows
-    tried.append(f"temperature steps of 3 K: residual {outcome.residual:.2g}")
+    tried.append(f"shortened steps: {outcome.reason}, residual {outcome.residual:.2g}")
     if efficiency is not None:
         outcome = _efficiency_continuation(problem, efficiency, start, progress)
         if outcome.converged:
@@ -362,7 +393,8 @@ def _efficiency_continuation(problem: Problem, efficiency: EfficiencySet, start:
     share, step = 0.0, 0.25
     while step > 0.01:
         target = min(1.0, share + step)
-        trial = newton(problem, stage_rows(problem, efficiency.toward_equilibrium(target)), positive(problem, outcome.state),
+        trial = newton(problem, stage_rows(problem, efficiency.toward_equilibrium(target)), positive(problem,
+                                                                                                     outcome.state),
                        limit=40, progress=progress)
         if not trial.converged:
             step *= 0.5

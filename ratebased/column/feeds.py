@@ -60,7 +60,7 @@ def _at_temperature(properties: PropertyModel, flows: Array, P: float, T: float)
     gas, heavy = ~properties.condensable, ~properties.volatile
     ordinary = ~(gas | heavy)
     x, y = _first_phases(z, gas, heavy)
-    K = properties.k_value(np.float64(T), np.float64(P), x, y)
+    K = properties.k_value(np.asarray(T), np.asarray(P), x, y)
     for _ in range(MAX_SUBSTITUTIONS):
         beta = _rachford_rice(z, K, ordinary, float(z[gas].sum()), float(z[heavy].sum()))
         x = np.where(ordinary, z / (1.0 + beta * (K - 1.0)), 0.0)
@@ -68,7 +68,7 @@ def _at_temperature(properties: PropertyModel, flows: Array, P: float, T: float)
         x = np.where(heavy, z / max(1.0 - beta, 1e-300), x) if heavy.any() else x
         y = np.where(gas, z / max(beta, 1e-300), y) if gas.any() else y
         x, y = x / x.sum(), y / y.sum()
-        new = properties.k_value(np.float64(T), np.float64(P), x, y)
+        new = properties.k_value(np.asarray(T), np.asarray(P), x, y)
         change = np.abs(np.log(np.where(ordinary, new / np.where(ordinary, K, 1.0), 1.0))).max()
         K = new
         if change < FLASH_TOLERANCE:
@@ -119,8 +119,8 @@ def _at_vapor_fraction(properties: PropertyModel, flows: Array, P: float, wanted
         low, high = _bracket(properties, flows, P, wanted)
     else:
         if wanted == 0.0:
-            T, _ = bubble_point(properties, P, z)
-            return FlashResult(float(T), np.zeros_like(flows), flows.copy())
+            boiling, _ = bubble_point(properties, P, z)
+            return FlashResult(float(boiling), np.zeros_like(flows), flows.copy())
         low, high = float(bubble_point(properties, P, z)[0]), float(dew_point(properties, P, z)[0])
         if wanted == 1.0:
             return FlashResult(high, flows.copy(), np.zeros_like(flows))
@@ -172,7 +172,7 @@ def stage_feeds(feeds: tuple[AnyFeed, ...], pressures: Array, properties: Proper
         j = feed.stage - 1
         split = _split(feed, float(pressures[j]), properties, k)
         streams.append(split)
-        T, P = np.float64(split.temperature), np.float64(pressures[j])
+        T, P = np.asarray(split.temperature), np.asarray(pressures[j])
         for phase, part in enumerate((split.vapor, split.liquid)):
             total = part.sum()
             if total <= 0:
@@ -196,7 +196,8 @@ def _split(feed: AnyFeed, P: float, properties: PropertyModel, k: int) -> FlashR
     if allowed is not None:
         for i in np.flatnonzero((feed.flows > 0) & ~allowed):
             phase = "liquid" if isinstance(feed, LiquidFeed) else "vapour"
-            raise InputError(f"feeds[{k}].flows[{i}] = {feed.flows[i]:g}: {properties.names[i]} is never in the {phase}")
+            raise InputError(f"feeds[{k}].flows[{i}] = {feed.flows[i]:g}: {properties.names[i]} is never in the "
+                             f"{phase}")
     if isinstance(feed, LiquidFeed):
         return FlashResult(feed.temperature, zero, feed.flows)
     if isinstance(feed, VaporFeed):

@@ -60,8 +60,8 @@ from .specifications import (
     DistillateRate,
     Product,
     ProductPurity,
-    RefluxRatio,
     ReboilerDuty,
+    RefluxRatio,
     Specification,
 )
 
@@ -180,7 +180,8 @@ def _specifications(table: TomlTable, names: Sequence[str]) -> list[Specificatio
     return found
 
 
-def _searched(table: TomlTable, kind: type[ProductPurity] | type[ComponentRecovery], names: Sequence[str]) -> Specification:
+def _searched(table: TomlTable, kind: type[ProductPurity] | type[ComponentRecovery],
+              names: Sequence[str]) -> Specification:
     component = table.choice("component", {name: i for i, name in enumerate(names)})
     product = table.choice("product", PRODUCTS, "top")
     bounds = None

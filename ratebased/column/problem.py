@@ -113,8 +113,8 @@ def make_problem(column: Column, properties: PropertyModel, P: Array | None = No
     if column.condenser is None and feeds.liquid[0].sum() <= 0:
         raise InputError("feeds: the feed to stage 1 flashes to vapour alone, the top section must run dry")
     if column.reboiler is None and feeds.vapor[-1].sum() <= 0:
-        raise InputError(f"feeds: the feed to stage {column.stages} flashes to liquid alone, the bottom section gets no "
-                         "vapour")
+        raise InputError(f"feeds: the feed to stage {column.stages} flashes to liquid alone, the bottom section gets "
+                         "no vapour")
     liquid_draw, vapor_draw = column.draw_rates
     F = float(feeds.vapor.sum() + feeds.liquid.sum())
     top, bottom = _end_specifications(column, F)
@@ -129,7 +129,7 @@ def make_problem(column: Column, properties: PropertyModel, P: Array | None = No
 
 def _largest_latent_heat(problem: Problem) -> float:
     properties = problem.properties
-    T, P = np.float64(problem.mean_feed_temperature), np.float64(problem.P.mean())
+    T, P = np.asarray(problem.mean_feed_temperature), np.asarray(problem.P.mean())
     z = problem.feed_components / problem.F
     x, y = np.where(problem.gas, 0.0, z), np.where(problem.heavy, 0.0, z)
     x, y = x / max(x.sum(), 1e-300), y / max(y.sum(), 1e-300)
@@ -145,8 +145,8 @@ def _end_specifications(column: Column, F: float) -> tuple[TopRow | None, Bottom
     rate: DistillateRate | BottomsRate | None = None
     for s in column.specifications:
         if isinstance(s, Searched):
-            raise InputError(f"specifications: {s.name} is met by a search; solve the column through solve_equilibrium or "
-                             "solve_ratebased")
+            raise InputError(f"specifications: {s.name} is met by a search; solve the column through solve_equilibrium "
+                             "or solve_ratebased")
         if isinstance(s, DistillateRate | BottomsRate):
             rate = s
         elif isinstance(s, RefluxRatio):

@@ -45,8 +45,8 @@ class ContactRecord:
 
     stage: numbers, (C,). T_I K; x_I, y_I mole fractions at the interface; N mol/(m2 s) from vapour to liquid, (C, n);
     energy_flux W/m2 from vapour to liquid. area m2. y_bulk, T_V_bulk, x_bulk, T_L_bulk: the states that the films start
-    from. hydraulics: operating limits by name, (C,) each. notes: remarks of the contactor, with the stages they speak of.
-    basis: which area. pattern: how the phases flow through a stage, in words.
+    from. hydraulics: operating limits by name, (C,) each. notes: remarks of the contactor, with the stages they speak
+    of. basis: which area. pattern: how the phases flow through a stage, in words.
     """
 
     stage: NDArray[np.int64]
@@ -73,7 +73,8 @@ class SolutionReport:
     iterations of the last solve; residual: scaled, before the final step; component_closure: largest |in - out| of a
     component over its own feed; energy_closure: |in - out| over feed times largest latent heat; path: the way it was
     reached; smallest_gamma_eigenvalue of [Gamma] over the stages (at or below zero a liquid would split in two);
-    smallest_flow mol/s of a phase leaving a stage; largest_rate_factor: of the films, |A|_1, zero for equilibrium stages.
+    smallest_flow mol/s of a phase leaving a stage; largest_rate_factor: of the films, |A|_1, zero for equilibrium
+    stages.
     """
 
     iterations: int
@@ -90,11 +91,11 @@ class SolutionReport:
 class Profile:
     """A solved column of S stages, numbered from the top, condenser and reboiler included.
 
-    names; model: "equilibrium" or "rate-based"; kinds: one word a stage. T_L, T_V K; P Pa; L, V mol/s, NET of side draws:
-    what goes on to the next stage; x, y (S, n). A total condenser has V = 0, L = reflux and y the bubble vapour of its
-    condensate. height: m of each stage of a packed bed, or None. feeds: what joins each stage. liquid_draw, vapor_draw
-    mol/s; duty: heat added on the contact stages, W. products: "top", "bottom" and the side draws. duties: heat added to
-    the column in "condenser" and "reboiler", W. contact: fluxes and interfaces (rate-based only).
+    names; model: "equilibrium" or "rate-based"; kinds: one word a stage. T_L, T_V K; P Pa; L, V mol/s, NET of side
+    draws: what goes on to the next stage; x, y (S, n). A total condenser has V = 0, L = reflux and y the bubble vapour
+    of its condensate. height: m of each stage of a packed bed, or None. feeds: what joins each stage. liquid_draw,
+    vapor_draw mol/s; duty: heat added on the contact stages, W. products: "top", "bottom" and the side draws. duties:
+    heat added to the column in "condenser" and "reboiler", W. contact: fluxes and interfaces (rate-based only).
     """
 
     names: tuple[str, ...]
@@ -161,7 +162,8 @@ class Profile:
         if model is None:
             raise InputError("properties: a loaded profile holds no property model, give the one it was solved with")
         if tuple(model.names) != self.names:
-            raise InputError(f"properties: a model of {', '.join(model.names)}, the profile holds {', '.join(self.names)}")
+            raise InputError(f"properties: a model of {', '.join(model.names)}, the profile holds "
+                             f"{', '.join(self.names)}")
         return model
 
     def record(self) -> ContactRecord:
@@ -189,8 +191,8 @@ class Profile:
 
     # ------------------------------------------------------------------------------------------- tables and files
     def to_frame(self) -> pd.DataFrame:
-        """One row a stage: stage, kind, T_K (liquid), T_vapor_K, P_Pa, L_mol_s, V_mol_s, x_<name>, y_<name>; for a packed
-        bed height_m; for a rate-based column T_interface_K, area_m2, flux_<name> (mol/(m2 s), vapour to liquid),
+        """One row a stage: stage, kind, T_K (liquid), T_vapor_K, P_Pa, L_mol_s, V_mol_s, x_<name>, y_<name>; for a
+        packed bed height_m; for a rate-based column T_interface_K, area_m2, flux_<name> (mol/(m2 s), vapour to liquid),
         interface_x_<name>, interface_y_<name> and the hydraulics, blank on condenser and reboiler rows."""
         import pandas as pd
         columns: dict[str, Any] = {"stage": np.arange(1, self.stages + 1), "kind": list(self.kinds), "T_K": self.T_L,

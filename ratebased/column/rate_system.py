@@ -1,13 +1,14 @@
 """Assembly of the rate-based column: stage blocks, interfaces condensed, rows of condenser and reboiler.
 
-Bulk rows of a stage, liquid half first: n balances, energy of the liquid, then of the vapour. The interface unknowns of a
-contact stage follow from its own bulk unknowns and, where a bulk state is a mean of both ends, from its neighbours'.
+Bulk rows of a stage, liquid half first: n balances, energy of the liquid, then of the vapour. The interface unknowns of
+a contact stage follow from its own bulk unknowns and, where a bulk state is a mean of both ends, from its neighbours'.
 """
 from __future__ import annotations
 
 from dataclasses import dataclass
 
 import numpy as np
+from numpy.typing import NDArray
 
 from ..properties.differences import liquid_heat_capacity, vapor_heat_capacity
 from ..properties.protocol import Array
@@ -20,8 +21,8 @@ from .steps import after_draw
 
 @dataclass(frozen=True)
 class RateState:
-    """Bulk unknowns of the S stages, interface unknowns z = (N, u, T_I) of the C contact stages; y_I of the last iterate,
-    y_condenser: bubble vapour of a total condenser."""
+    """Bulk unknowns of the S stages, interface unknowns z = (N, u, T_I) of the C contact stages; y_I of the last
+    iterate, y_condenser: bubble vapour of a total condenser."""
 
     v: Array
     T_V: Array
@@ -45,8 +46,8 @@ class RateSetup:
 
 @dataclass(frozen=True)
 class RateSystem:
-    """Condensed residual and blocks (S, m[, m]), the largest scaled row before condensation and where it is; the interface
-    step is -(z0 + z_own d + z_below d_below + z_above d_above)."""
+    """Condensed residual and blocks (S, m[, m]), the largest scaled row before condensation and where it is; the
+    interface step is -(z0 + z_own d + z_below d_below + z_above d_above)."""
 
     rhs: Array
     diagonal: Array
@@ -60,15 +61,25 @@ class RateSystem:
     z_above: Array | None
     blocks: StageBlocks
     transfer: Transfer
-    weights: tuple[Array, Array]
+    weights: tuple[Array, Array, Array, Array]
 
 
-def entering(problem: Problem, state: RateState) -> tuple[Entering, Entering, list[Array]]:
-    """What enters each stage from below and from above, with the derivatives that the band needs.
+@dataclass(frozen=True)
+class PhaseLinks:
+    """One phase between neighbours: net flows (S, n) and their derivative by the flows before draws (S, n, n); partial
+    molar enthalpies H and heat capacities cp of what leaves; share of the neighbour's stream in the mixing temperature
+    of what enters, (S,), and the derivative of that temperature by the neighbour's flows, (S, n)."""
 
-    The list: d_rising, d_falling (S, n, n); enthalpies and heat capacities of what leaves, HV, CV, HL, CL (S, n); shares
-    of the neighbour's stream in the mixing temperatures and their flow derivatives.
-    """
+    net: Array
+    slope: Array
+    H: Array
+    cp: Array
+    share: Array
+    temperature_slope: Array
+
+
+def entering(problem: Problem, state: RateState) -> tuple[Entering, Entering, PhaseLinks, PhaseLinks]:
+    """What enters each stage from below and from above, with what the band needs to know of vapour and liquid."""
     properties, feeds = problem.properties, problem.feeds
     rising, d_rising = after_draw(state.v, problem.vapor_draw)
     falling, d_falling = after_draw(state.l, problem.liquid_draw)
@@ -86,12 +97,13 @@ def entering(problem: Problem, state: RateState) -> tuple[Entering, Entering, li
     T_V_in, share_V, slope_V = _mixing(feeds.vapor, feeds.vapor_temperature, rising, CV, state.T_V, 1)
     T_L_in, share_L, slope_L = _mixing(feeds.liquid, feeds.liquid_temperature, falling, CL, state.T_L, -1)
     return (Entering(v_in, T_V_in, hv_in), Entering(l_in, T_L_in, hl_in),
-            [d_rising, d_falling, HV, CV, HL, CL, share_V, slope_V, share_L, slope_L, rising, falling])
+            PhaseLinks(rising, d_rising, HV, CV, share_V, slope_V),
+            PhaseLinks(falling, d_falling, HL, CL, share_L, slope_L))
 
 
 def _mixing(feed: Array, T_feed: Array, flow: Array, cp: Array, T: Array, shift: int) -> tuple[Array, Array, Array]:
-    """Mixing temperature of the neighbour's stream and the feed, weighed by heat capacity flows (by moles when there are
-    none); share of the neighbour, (S,), and derivative by its flows, (S, n). shift = 1: the neighbour is below."""
+    """Mixing temperature of the neighbour's stream and the feed, weighed by heat capacity flows (by moles when there
+    are none); share of the neighbour, (S,), and derivative by its flows, (S, n). shift = 1: the neighbour is below."""
     S = T.shape[0]
     own, last = (slice(0, S - 1), slice(1, S)) if shift > 0 else (slice(1, S), slice(0, S - 1))
     weights = cp if cp.any() else np.ones_like(cp)
@@ -112,22 +124,22 @@ def rate_system(setup: RateSetup, state: RateState) -> RateSystem:
     S, n = problem.S, problem.n
     m = 2 * n + 2
     c = problem.contact
-    vapor_in, liquid_in, links = entering(problem, state)
-    d_rising, d_falling, HV, CV, HL, CL, share_V, slope_V, share_L, slope_L, rising, falling = links
-    coefficients, weights = _coefficients(setup, state, vapor_in, liquid_in)
+    vapor_in, liquid_in, vapor, liquid = entering(problem, state)
+    coefficients, weights = _coefficients(setup, state, vapor_in, liquid_in, vapor.cp, liquid.cp)
     unknowns = StageUnknowns(state.v[c], state.T_V[c], state.l[c], state.T_L[c], state.z[:, :n], state.z[:, n:2 * n],
                              state.z[:, 2 * n])
     blocks = stage_residuals(
         unknowns, _take(vapor_in, c), _take(liquid_in, c), problem.properties, problem.P[c],
-        coefficients.coefficients, coefficients.c_vapor, coefficients.c_liquid, duty=problem.duty[c], vapor_weight=weights[0],
-        liquid_weight=weights[1], flow_scale=problem.F, energy_scale=problem.energy_scale, y_interface=state.y_I)
+        coefficients.coefficients, coefficients.c_vapor, coefficients.c_liquid, duty=problem.duty[c],
+        vapor_weight=weights[0], liquid_weight=weights[1], vapor_temperature_weight=weights[2],
+        liquid_temperature_weight=weights[3], flow_scale=problem.F, energy_scale=problem.energy_scale,
+        y_interface=state.y_I)
     bulk = np.zeros((S, m))
     D, lower, upper = np.zeros((S, m, m)), np.zeros((S, m, m)), np.zeros((S, m, m))
     bulk[c], D[c] = blocks.bulk, blocks.bulk_by_bulk
 
     # the entering streams by the neighbours' unknowns: flows, temperature, enthalpy
-    below = _stream_slopes(d_rising, share_V, slope_V, HV, rising, CV, 1)
-    above = _stream_slopes(d_falling, share_L, slope_L, HL, falling, CL, -1)
+    below, above = _stream_slopes(vapor, 1), _stream_slopes(liquid, -1)
     upper[c, :, :n + 1] = blocks.bulk_by_vapor_in @ below[c]
     lower[c, :, n + 1:] = blocks.bulk_by_liquid_in @ above[c]
     z_below = None if blocks.interface_by_vapor_in is None else blocks.interface_by_vapor_in @ below[c]
@@ -136,18 +148,20 @@ def rate_system(setup: RateSetup, state: RateState) -> RateSystem:
     # interfaces condensed: dz = -(z0 + z_own d + ...)
     right = [blocks.interface[..., None], blocks.interface_by_bulk]
     right += [block for block in (z_below, z_above) if block is not None]
-    solved = np.linalg.solve(blocks.interface_by_interface, np.concatenate(right, -1))
-    z0, z_own, rest = solved[..., 0], solved[..., 1:m + 1], solved[..., m + 1:]
+    solved: Array = np.linalg.solve(blocks.interface_by_interface, np.concatenate(right, -1))
+    z0, z_own = solved[..., 0], solved[..., 1:m + 1]
+    rest: Array = solved[..., m + 1:]
     D[c] -= blocks.bulk_by_interface @ z_own
     rhs = bulk.copy()
     rhs[c] -= (blocks.bulk_by_interface @ z0[..., None])[..., 0]
     if z_below is not None:
-        z_below, rest = rest[..., :n + 1], rest[..., n + 1:]
+        z_below = rest[..., :n + 1]
+        rest = np.asarray(rest[..., n + 1:])
         upper[c, :, :n + 1] -= blocks.bulk_by_interface @ z_below
     if z_above is not None:
         z_above = rest
         lower[c, :, n + 1:] -= blocks.bulk_by_interface @ z_above
-    _end_rows(problem, state, vapor_in, liquid_in, links, bulk, D, lower, upper)
+    _end_rows(problem, state, vapor_in, liquid_in, vapor, liquid, bulk, D, lower, upper)
     ends = np.flatnonzero(~problem.column.contact)
     rhs[ends] = bulk[ends]
     interface = blocks.interface.copy()
@@ -155,20 +169,21 @@ def rate_system(setup: RateSetup, state: RateState) -> RateSystem:
     return RateSystem(rhs, D, lower, upper, bulk, interface, z0, z_own, z_below, z_above, blocks, coefficients, weights)
 
 
-def _take(stream: Entering, index: Array) -> Entering:
+def _take(stream: Entering, index: NDArray[np.intp]) -> Entering:
     return Entering(stream.flows[index], stream.temperature[index], stream.enthalpy[index])
 
 
-def _coefficients(setup: RateSetup, state: RateState, vapor_in: Entering, liquid_in: Entering
-                  ) -> tuple[Transfer, tuple[Array, Array]]:
-    """Coefficients at the bulk states; where a pattern needs the coefficients for its weight, the leaving states first."""
+def _coefficients(setup: RateSetup, state: RateState, vapor_in: Entering, liquid_in: Entering, CV: Array, CL: Array
+                  ) -> tuple[Transfer, tuple[Array, Array, Array, Array]]:
+    """Coefficients at the bulk states, and the shares of the entering states: y, x, T_V, T_L."""
     problem = setup.problem
     c = problem.contact
-    V, L = state.v[c].sum(1), state.l[c].sum(1)
-    y, x = state.v[c] / V[:, None], state.l[c] / L[:, None]
+    v, l = state.v[c], state.l[c]
+    V, L = v.sum(1), l.sum(1)
+    y, x = v / V[:, None], l / L[:, None]
     T_V, T_L, height = state.T_V[c], state.T_L[c], problem.column.segment_height
-    probe = np.full(c.size, 0.5)
-    theta_V, theta_L = setup.vapor.weight(probe), setup.liquid.weight(probe)
+    short = np.full(c.size, 0.5)
+    theta_V, theta_L = setup.vapor.weight(short), setup.liquid.weight(short)
     if theta_V.any():
         V_in = vapor_in.flows[c].sum(1)
         y = y + theta_V[:, None] * (vapor_in.flows[c] / V_in[:, None] - y)
@@ -181,32 +196,53 @@ def _coefficients(setup: RateSetup, state: RateState, vapor_in: Entering, liquid
                                  None if height is None else height[c])
     result = transfer(states, c.size, setup.area_factor)
     k = result.coefficients
-    if theta_V.any():
-        theta_V = setup.vapor.weight(film_transfer_units(k.kappa_vapor, result.c_vapor, k.area, V))
-    if theta_L.any():
-        theta_L = setup.liquid.weight(film_transfer_units(k.kappa_liquid, result.c_liquid, k.area, L))
-    return result, (theta_V, theta_L)
+    area = np.broadcast_to(k.area, V.shape)
+    units_V, units_L = overall_transfer_units(problem, state, result, V, L)
+
+    def heat(h: Array, flows: Array, cp: Array) -> Array:
+        return np.asarray(h * area / np.maximum((flows * cp).sum(1), 1e-300))
+
+    return result, (setup.vapor.weight(units_V), setup.liquid.weight(units_L),
+                    setup.vapor.temperature_weight(heat(k.h_vapor, v, CV[c])),
+                    setup.liquid.temperature_weight(heat(k.h_liquid, l, CL[c])))
 
 
-def _stream_slopes(d_flows: Array, share: Array, slope: Array, H: Array, flow: Array, cp: Array, shift: int) -> Array:
+def overall_transfer_units(problem: Problem, state: RateState, transferred: Transfer, V: Array, L: Array
+                           ) -> tuple[Array, Array]:
+    """Transfer units of vapour and liquid with both films in series, of the component that has most, (C,).
+
+    1/N_OV = 1/N_V + S/N_L and N_OL = S N_OV with the stripping factor S = K V/L, K from the interface.
+    """
+    k = transferred.coefficients
+    area = np.broadcast_to(k.area, V.shape)
+    vapor = film_transfer_units(k.kappa_vapor, transferred.c_vapor, area, V)[:, None]
+    liquid = film_transfer_units(k.kappa_liquid, transferred.c_liquid, area, L)[:, None]
+    n = problem.n
+    K = (state.y_I / np.maximum(state.z[:, n:2 * n], 1e-300))[:, problem.ordinary]
+    S = np.maximum(K, 1e-12) * (V / L)[:, None]
+    units = 1.0 / (1.0 / vapor + S / liquid)
+    return np.asarray(units.max(1)), np.asarray((S * units).max(1))
+
+
+def _stream_slopes(phase: PhaseLinks, shift: int) -> Array:
     """(S, n+2, n+1): flows, temperature and enthalpy of an entering stream by the neighbour's flows and temperature."""
-    S, n = flow.shape
+    S, n = phase.net.shape
     result = np.zeros((S, n + 2, n + 1))
     own, last = (slice(0, S - 1), slice(1, S)) if shift > 0 else (slice(1, S), slice(0, S - 1))
-    result[own, :n, :n] = d_flows[last]
-    result[own, n, :n] = (slope[own, None, :] @ d_flows[last])[:, 0]
-    result[own, n, n] = share[own]
-    result[own, n + 1, :n] = (H[last, None, :] @ d_flows[last])[:, 0]
-    result[own, n + 1, n] = (flow * cp).sum(1)[last]
+    result[own, :n, :n] = phase.slope[last]
+    result[own, n, :n] = (phase.temperature_slope[own, None, :] @ phase.slope[last])[:, 0]
+    result[own, n, n] = phase.share[own]
+    result[own, n + 1, :n] = (phase.H[last, None, :] @ phase.slope[last])[:, 0]
+    result[own, n + 1, n] = (phase.net * phase.cp).sum(1)[last]
     return result
 
 
-def _end_rows(problem: Problem, state: RateState, vapor_in: Entering, liquid_in: Entering, links: list[Array], r: Array,
-              D: Array, lower: Array, upper: Array) -> None:
+def _end_rows(problem: Problem, state: RateState, vapor_in: Entering, liquid_in: Entering, rising: PhaseLinks,
+              falling: PhaseLinks, r: Array, D: Array, lower: Array, upper: Array) -> None:
     """Condenser: balance in the vapour half; reboiler: balance and energy in the liquid half. T_V = T_L closes."""
     n, fe, ee = problem.n, 1.0 / problem.F, 1.0 / problem.energy_scale
     m = 2 * n + 2
-    d_rising, d_falling, HV, CV, HL, CL, *_, falling = links
+    HV, CV, HL, CL = rising.H, rising.cp, falling.H, falling.cp
     iv, iTV, il, iTL = slice(0, n), n, slice(n + 1, m - 1), m - 1
     liquid, vapor = (slice(0, n), n), (slice(n + 1, m - 1), m - 1)
     one = np.eye(n) * fe
@@ -225,9 +261,9 @@ def _end_rows(problem: Problem, state: RateState, vapor_in: Entering, liquid_in:
         r[j, balance] = (v + l - vapor_in.flows[only] - liquid_in.flows[only])[0] * fe
         D[j, balance, iv], D[j, balance, il] = one, one
         if j == 0:
-            upper[0, balance, iv] = -d_rising[1] * fe
+            upper[0, balance, iv] = -rising.slope[1] * fe
         else:
-            lower[j, balance, il] = -d_falling[j - 1] * fe
+            lower[j, balance, il] = -falling.slope[j - 1] * fe
         r[j, rows], D[j, rows, iv] = end.residual[:n], end.by_v[:n]
         D[j, rows, il], D[j, rows, iTL] = end.by_l[:n], end.by_T[:n]
         r[j, closing], D[j, closing, iTV], D[j, closing, iTL] = (state.T_V[j] - state.T_L[j]) / 100.0, 0.01, -0.01
@@ -239,8 +275,8 @@ def _end_rows(problem: Problem, state: RateState, vapor_in: Entering, liquid_in:
         r[j, spec] = heat * ee
         D[j, spec, iv], D[j, spec, iTV] = HV[j] * ee, v[0] @ CV[j] * ee
         D[j, spec, il], D[j, spec, iTL] = HL[j] * ee, l[0] @ CL[j] * ee
-        lower[j, spec, il] = -(HL[j - 1] @ d_falling[j - 1]) * ee
-        lower[j, spec, iTL] = -(falling[j - 1] @ CL[j - 1]) * ee
+        lower[j, spec, il] = -(HL[j - 1] @ falling.slope[j - 1]) * ee
+        lower[j, spec, iTL] = -(falling.net[j - 1] @ CL[j - 1]) * ee
 
 
 def updated_condenser_vapor(problem: Problem, state: RateState) -> Array:

@@ -1,7 +1,8 @@
-"""The rate-based column: balances of each phase, two films and the interface of every contact stage, one Newton iteration.
+"""The rate-based column: balances of each phase, two films and the interface of every contact stage, one Newton
+iteration.
 
-The interface unknowns are condensed stage by stage inside the global step (simultaneous, not nested). It starts from the
-equilibrium column, so no guess is asked of the user.
+The interface unknowns are condensed stage by stage inside the global step (simultaneous, not nested). It starts from
+the equilibrium column, so no guess is asked of the user.
 """
 from __future__ import annotations
 
@@ -17,14 +18,29 @@ from ..properties.protocol import Array, PropertyModel
 from .banded import block_tridiagonal
 from .contact import Averaged, ContactorLayout, FlowPattern, Mixed, film_transfer_units, layout, transfer
 from .definition import Column, ContactorPressure
-from .equilibrium import LARGEST_TEMPERATURE_STEP, MAX_ITERATIONS, TOLERANCE, Progress, solve_state
+from .equilibrium import (
+    LARGEST_TEMPERATURE_STEP,
+    MAX_ITERATIONS,
+    TOLERANCE,
+    Progress,
+    solve_state,
+    stage_rows,
+    state_of,
+)
 from .failure import convergence_error
 from .problem import Problem, make_problem
 from .profile import ContactRecord, Profile
-from .rate_system import RateSetup, RateState, RateSystem, entering, rate_system, updated_condenser_vapor
+from .rate_system import (
+    RateSetup,
+    RateState,
+    RateSystem,
+    overall_transfer_units,
+    rate_system,
+    updated_condenser_vapor,
+)
 from .result import make_profile
 from .search import with_search
-from .start import State, dry_margin, masked, starting_state
+from .start import dry_margin, masked, starting_state
 from .steps import TINY, after_draw, limited
 
 PRESSURE_TOLERANCE = 1e-7
@@ -57,8 +73,8 @@ def solve_ratebased(column: Column, properties: PropertyModel, contactor: Contac
     ----------
     column, properties : the column and its mixture.
     contactor : hardware of all contact stages; or sections, or a mapping (first, last) stage -> contactor.
-    vapor, liquid : how each phase flows through a stage. None: `Mixed` on trays, `Averaged` (the mean of what enters and
-        what leaves, second order in the height) on packed segments. `Plug` is an exponential mean.
+    vapor, liquid : how each phase flows through a stage. None: `Mixed` on trays, `Averaged` (the mean of what enters
+        and what leaves, second order in the height) on packed segments. `Plug` is an exponential mean.
     start : a profile of the same column shape to start from (equilibrium or rate-based); None solves the equilibrium
         column first.
     area_factor : multiplies the contactor's areas, to study how far the result depends on them.
@@ -70,11 +86,12 @@ def solve_ratebased(column: Column, properties: PropertyModel, contactor: Contac
 
     Raises
     ------
-    InputError, ConvergenceError, NoSolutionError : as for `solve_equilibrium`; heat-transfer coefficients must be positive.
+    InputError, ConvergenceError, NoSolutionError : as for `solve_equilibrium`; heat-transfer coefficients must be
+        positive.
 
-    Sources: Krishnamurthy & Taylor, AIChE J. 31 (1985) 449 (nonequilibrium stages); Krishna & Standart, AIChE J. 22 (1976)
-    383 (films). Coefficients are taken at the bulk states and refreshed in every iteration; their derivatives are left out
-    of the Jacobian.
+    Sources: Krishnamurthy & Taylor, AIChE J. 31 (1985) 449 (nonequilibrium stages); Krishna & Standart, AIChE J. 22
+    (1976) 383 (films). Coefficients are taken at the bulk states and refreshed in every iteration; their derivatives
+    are left out of the Jacobian.
     """
     if column.search is not None:
         return with_search(column, lambda trial, last: solve_ratebased(trial, properties, contactor, vapor=vapor,
@@ -93,7 +110,8 @@ def solve_ratebased(column: Column, properties: PropertyModel, contactor: Contac
     _warn_coarse(setup, outcome.state, system)
     record = _record(setup, outcome.state, system)
     s = outcome.state
-    return make_profile(problem, s.v, s.T_V, s.l, s.T_L, "rate-based", outcome.iterations, outcome.residual, path, record,
+    return make_profile(problem, s.v, s.T_V, s.l, s.T_L, "rate-based", outcome.iterations, outcome.residual, path,
+                        record,
                         float(system.blocks.films.size.max()))
 
 
@@ -101,24 +119,16 @@ def _warn_coarse(setup: RateSetup, state: RateState, system: RateSystem) -> None
     """A stage whose bulk is a mean of both ends overshoots when it is too long."""
     if not isinstance(setup.vapor, Averaged):
         return
-    units = transfer_units(setup.problem, state, system)
+    c = setup.problem.contact
+    units = np.maximum(*overall_transfer_units(setup.problem, state, system.transfer, state.v[c].sum(1),
+                                               state.l[c].sum(1)))
     if (units > LARGEST_SEGMENT).any():
         j = int(np.argmax(units))
-        warnings.warn(f"stage {int(setup.problem.contact[j]) + 1}: {units[j]:.2g} transfer units in one segment, keep them "
-                      f"below {LARGEST_SEGMENT:g}: use more segments", ApproximationWarning, stacklevel=3)
+        warnings.warn(f"stage {int(setup.problem.contact[j]) + 1}: {units[j]:.2g} transfer units in one segment, keep "
+                      f"them below {LARGEST_SEGMENT:g}: use more segments", ApproximationWarning, stacklevel=3)
 
 
-def transfer_units(problem: Problem, state: RateState, system: RateSystem) -> Array:
-    """Transfer units of each contact stage, both films in series with a stripping factor of one, (C,)."""
-    k, c = system.transfer, problem.contact
-    V, L = state.v[c].sum(1), state.l[c].sum(1)
-    area = np.broadcast_to(k.coefficients.area, (c.size,))
-    vapor = film_transfer_units(k.coefficients.kappa_vapor, k.c_vapor, area, V)
-    liquid = film_transfer_units(k.coefficients.kappa_liquid, k.c_liquid, area, L)
-    return 1.0 / (1.0 / vapor + 1.0 / liquid)
-
-
-# ------------------------------------------------------------------------------------------------------------- start
+# ---------------------------------------------------------------------------------------------------- start
 def _start_from(setup: RateSetup, v: Array, T_V: Array, l: Array, T_L: Array) -> RateState:
     """Interface at the bulk liquid; N from the balances, damped by what a film could pass at most."""
     problem = setup.problem
@@ -157,17 +167,9 @@ def _lifted(problem: Problem, state: RateState) -> RateState:
 
 def _given_start(setup: RateSetup, start: Profile) -> RateState:
     problem = setup.problem
-    if start.x.shape != (problem.S, problem.n):
-        raise InputError(f"start: a profile of {start.x.shape[0]} stages and {start.x.shape[1]} components, the column has "
-                         f"{problem.S} and {problem.n}")
-    v = (start.V + start.vapor_draw)[:, None] * start.y
-    if problem.total_condenser:
-        v[0] = start.products["top"].flows
-    l = (start.L + start.liquid_draw)[:, None] * start.x
-    T_V = start.T_V.copy()
-    ends = ~problem.column.contact
-    T_V[ends] = start.T_L[ends]
-    state = _start_from(setup, v, T_V, l, start.T_L)
+    bulk = state_of(problem, stage_rows(problem, None), start)
+    T_V = np.where(problem.column.contact, start.T_V, start.T_L)
+    state = _start_from(setup, bulk.v, T_V, bulk.l, start.T_L)
     if start.contact is None:
         return state
     r = start.contact
@@ -175,7 +177,7 @@ def _given_start(setup: RateSetup, start: Profile) -> RateState:
     return replace(state, z=np.concatenate((r.N, u, r.T_I[:, None]), -1), y_I=r.y_I)
 
 
-# ------------------------------------------------------------------------------------------------------------- solve
+# ---------------------------------------------------------------------------------------------------- solve
 def _solve(setup: RateSetup, state: RateState | None, progress: Progress | None) -> tuple[str, RateOutcome]:
     """Direct Newton from the equilibrium column, then continuation in the contact area."""
     problem = setup.problem
@@ -190,7 +192,8 @@ def _solve(setup: RateSetup, state: RateState | None, progress: Progress | None)
 
     def first(factor: float) -> RateState:
         at_ends = np.where(problem.column.contact, equilibrium.T, T_L)
-        return _start_from(replace(setup, area_factor=factor * setup.area_factor), equilibrium.v, at_ends, equilibrium.l, T_L)
+        return _start_from(replace(setup, area_factor=factor * setup.area_factor), equilibrium.v, at_ends,
+                           equilibrium.l, T_L)
 
     outcome = newton(setup, first(1.0), progress=progress)
     if outcome.converged:
@@ -207,7 +210,9 @@ def _solve(setup: RateSetup, state: RateState | None, progress: Progress | None)
 
 def newton(setup: RateSetup, state: RateState, *, tolerance: float = TOLERANCE, limit: int = MAX_ITERATIONS,
            progress: Progress | None = None) -> RateOutcome:
-    """Newton's method with all steps scaled so that no bulk temperature moves more than 10 K; one plain step at the end."""
+    """Newton's method with all steps scaled so that no bulk temperature moves more than 10 K; one plain step at the
+    end.
+    """
     problem = setup.problem
     S, n = problem.S, problem.n
     m = 2 * n + 2
@@ -253,7 +258,8 @@ def newton(setup: RateSetup, state: RateState, *, tolerance: float = TOLERANCE, 
         f = min(1.0, LARGEST_TEMPERATURE_STEP / largest) if largest > 0 else 1.0
         z = state.z + f * dz
         z[:, n:2 * n] = limited(state.z[:, n:2 * n], f * dz[:, n:2 * n])
-        z[:, 2 * n] = state.z[:, 2 * n] + np.clip(f * dz[:, 2 * n], -INTERFACE_TEMPERATURE_STEP, INTERFACE_TEMPERATURE_STEP)
+        z[:, 2 * n] = state.z[:, 2 * n] + np.clip(f * dz[:, 2 * n], -INTERFACE_TEMPERATURE_STEP,
+                                                  INTERFACE_TEMPERATURE_STEP)
         z[:, 2 * n] = np.clip(z[:, 2 * n], low, high)
         state = RateState(limited(state.v, f * dv), np.clip(state.T_V + f * dT_V, low, high), limited(state.l, f * dl),
                           np.clip(state.T_L + f * dT_L, low, high), z, system.blocks.films.y_I, state.y_condenser)
@@ -306,7 +312,8 @@ def _area_continuation(setup: RateSetup, first: object, progress: Progress | Non
         else:
             guess = _lifted(setup.problem, outcome.state)
             guess.z[:, :setup.problem.n] *= reached / factor
-        trial = newton(replace(setup, area_factor=factor * setup.area_factor), guess, tolerance=TOLERANCE if factor == 1.0 else 1e-5, limit=40,
+        trial = newton(replace(setup, area_factor=factor * setup.area_factor), guess,
+                       tolerance=TOLERANCE if factor == 1.0 else 1e-5, limit=40,
                        progress=progress)
         if trial.converged:
             outcome, reached = trial, factor
@@ -323,7 +330,7 @@ def _area_continuation(setup: RateSetup, first: object, progress: Progress | Non
     return replace(outcome, converged=False, reason=f"no solution found below {reached:.3g} times the area")
 
 
-# ------------------------------------------------------------------------------------------------------------- hydraulics
+# ---------------------------------------------------------------------------------------------------- hydraulics
 def _hydraulics(setup: RateSetup, state: RateState) -> dict[str, Array]:
     problem = setup.problem
     c = problem.contact
@@ -354,7 +361,8 @@ def _with_pressure_drop(setup: RateSetup, outcome: RateOutcome, progress: Progre
     for _ in range(MAX_PRESSURE_ROUNDS):
         drop = _hydraulics(setup, outcome.state).get("pressure_drop")
         if drop is None:
-            raise InputError("pressure: the contactor has no pressure-drop method on every contact stage; give the pressures")
+            raise InputError("pressure: the contactor has no pressure-drop method on every contact stage; give the "
+                             "pressures")
         drops = np.zeros(setup.problem.S)
         drops[setup.problem.contact] = drop
         P = pressure.top + np.concatenate(([0.0], np.cumsum(0.5 * (drops[:-1] + drops[1:]))))
@@ -378,11 +386,10 @@ def _record(setup: RateSetup, state: RateState, system: RateSystem) -> ContactRe
     notes = {note: numbers[np.broadcast_to(where, numbers.shape)] for note, where in k.notes.items()
              if np.asarray(where).any()}
     return ContactRecord(
-        stage=numbers, T_I=state.z[:, 2 * n], x_I=np.maximum(blocks.films.x_I, 0.0), y_I=np.maximum(blocks.films.y_I, 0.0),
+        stage=numbers, T_I=state.z[:, 2 * n], x_I=np.maximum(blocks.films.x_I, 0.0), y_I=np.maximum(blocks.films.y_I,
+                                                                                                    0.0),
         N=state.z[:, :n], energy_flux=blocks.films.E_L, area=np.broadcast_to(k.area, numbers.shape).copy(),
         y_bulk=blocks.y_bulk, T_V_bulk=blocks.T_V_bulk, x_bulk=blocks.x_bulk, T_L_bulk=blocks.T_L_bulk,
         hydraulics=_hydraulics(setup, state), notes=notes, basis=k.basis,
         pattern=f"vapour {setup.vapor.words}, liquid {setup.liquid.words}")
 
-
-__all__ = ["entering", "newton", "solve_ratebased", "State"]

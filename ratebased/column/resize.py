@@ -15,8 +15,8 @@ from ..errors import InputError
 from ..properties.protocol import Array, PropertyModel
 from .contact import ContactorLayout, FlowPattern
 from .definition import AnyFeed, Column, ContactorPressure, LiquidDraw, LiquidFeed, VaporDraw, VaporFeed
-from .profile import Profile
 from .problem import make_problem
+from .profile import Profile
 from .ratebased import solve_ratebased
 
 if TYPE_CHECKING:
@@ -136,10 +136,10 @@ class GridRefinement:
     """Packed bed on successive grids, each with half the segment height of the one before.
 
     segments: contact stages, (G,). profiles: one a grid. products: component flows of the end products side by side,
-    (G, 2n), mol/s. difference: largest change of a product flow from one grid to the next over all feeds, (G-1,). order:
-    log2 of the ratio of successive differences, (G-2,): 2 for averaged bulk states, 1 for mixed ones. extrapolated:
-    Richardson's estimate from the two finest grids at order 2 (order 1 where a phase is mixed), (2n,). error: of the
-    finest grid, estimated, over all feeds.
+    (G, 2n), mol/s. difference: largest change of a product flow from one grid to the next over all feeds, (G-1,).
+    order: log2 of the ratio of successive differences, (G-2,): 2 for averaged bulk states, 1 for mixed ones.
+    extrapolated: Richardson's estimate from the two finest grids at order 2 (order 1 where a phase is mixed), (2n,).
+    error: of the finest grid, estimated, over all feeds.
     """
 
     segments: NDArray[np.int64]

@@ -78,7 +78,7 @@ def _stream(problem: Problem, phase: str, flows: Array, T: float, j: int) -> Pro
     z = flows / flows.sum()
     properties = problem.properties
     molar = properties.liquid_enthalpy if phase == "liquid" else properties.vapor_enthalpy
-    H = np.broadcast_to(molar(np.float64(T), np.float64(problem.P[j]), z), z.shape)
+    H = np.broadcast_to(molar(np.asarray(T), np.asarray(problem.P[j]), z), z.shape)
     return ProductStream(phase, flows, float(T), float(flows @ H))
 
 

@@ -1,8 +1,8 @@
 """Specifications that are met outside the column's equations, by a bounded search of one of its other specifications.
 
-Purity is no monotone function of the reflux ratio where the contact area is fixed (more vapour, fewer transfer units), and
-a middle boiler's purity has a maximum in the distillate rate. So the search walks up from the lower bound, brackets the
-first crossing, and tells the best that can be reached when there is none.
+Purity is no monotone function of the reflux ratio where the contact area is fixed (more vapour, fewer transfer units),
+and a middle boiler's purity has a maximum in the distillate rate. So the search walks up from the lower bound, brackets
+the first crossing, and tells the best that can be reached when there is none.
 """
 from __future__ import annotations
 
@@ -102,7 +102,8 @@ def _around_the_best(gap: Callable[[float], float], gaps: list[tuple[float, floa
     return None
 
 
-def _refine(gap: Callable[[float], float], low: float, high: float, found: dict[float, Profile], wanted: Searched) -> Profile:
+def _refine(gap: Callable[[float], float], low: float, high: float, found: dict[float, Profile],
+            wanted: Searched) -> Profile:
     try:
         root = brentq(gap, low, high, xtol=1e-14, rtol=1e-14)
     except ConvergenceError as error:
@@ -137,7 +138,8 @@ def measured(profile: Profile, wanted: Searched) -> float:
     assert isinstance(wanted, ProductPurity | ComponentRecovery)
     flows = profile.products["top" if wanted.product is Product.TOP else "bottom"].flows
     if not 0 <= wanted.component < flows.shape[0]:
-        raise InputError(f"{wanted.name}.component = {wanted.component}: expected an index from 0 to {flows.shape[0] - 1}")
+        raise InputError(f"{wanted.name}.component = {wanted.component}: expected an index from 0 to "
+                         f"{flows.shape[0] - 1}")
     part = float(flows[wanted.component])
     if isinstance(wanted, ProductPurity):
         return part / float(flows.sum())

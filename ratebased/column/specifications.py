@@ -1,7 +1,7 @@
 """Specifications of a column and the count of its degrees of freedom.
 
-Five of them are rows of the column's equations. Three are met by an outer bounded search (`Searched`): a purity is not a
-monotone function of the reflux in a column of fixed contact area, so it has no place in a Newton system.
+Five of them are rows of the column's equations. Three are met by an outer bounded search (`Searched`): a purity is not
+a monotone function of the reflux in a column of fixed contact area, so it has no place in a Newton system.
 """
 from __future__ import annotations
 
@@ -146,7 +146,8 @@ def check_specifications(given: Sequence[Specification], condenser: bool, reboil
         if not isinstance(s, allowed) or (isinstance(s, CondenserDuty) and not condenser):
             raise InputError(f"specifications: {s.name} is surplus, the column has {ends}")
     if condenser and reboiler and {"DistillateRate", "BottomsRate"} <= set(names):
-        raise InputError("specifications: DistillateRate and BottomsRate say the same thing through the overall balance;"
+        raise InputError("specifications: DistillateRate and BottomsRate say the same thing through the overall "
+                         "balance;"
                          " replace one of them")
     if len(given) < need:
         options = [t.__name__ for t in allowed[1:]] + [t.__name__ for t in (ProductPurity, ComponentRecovery)]
@@ -155,5 +156,5 @@ def check_specifications(given: Sequence[Specification], condenser: bool, reboil
         raise InputError(f"specifications: {ends} leave {need} degree{'s' * (need > 1)} of freedom, {len(given)} given "
                          f"({', '.join(names) or 'none'}); missing {need - len(given)} of: {missing}")
     if len(given) > need:
-        raise InputError(f"specifications: {ends} leave {need} degree{'s' * (need > 1)} of freedom, {len(given)} given: "
-                         f"{', '.join(names[need:])} surplus")
+        raise InputError(f"specifications: {ends} leave {need} degree{'s' * (need > 1)} of freedom, {len(given)} "
+                         f"given: {', '.join(names[need:])} surplus")

@@ -1,8 +1,8 @@
 """The equations of rate-based contact stages with their Jacobian blocks, vectorised over stages.
 
-A stage has bulk unknowns w = (v, T_V, l, T_L), the component flows and temperatures that leave it, and interface unknowns
-z = (N, u, T_I). Rows: n liquid balances, liquid energy, n vapour balances, vapour energy, then the 2n + 1 rows of
-`ratebased.interface`. Neighbours enter through the streams that come in, so the rows fit any column.
+A stage has bulk unknowns w = (v, T_V, l, T_L), the component flows and temperatures that leave it, and interface
+unknowns z = (N, u, T_I). Rows: n liquid balances, liquid energy, n vapour balances, vapour energy, then the 2n + 1 rows
+of `ratebased.interface`. Neighbours enter through the streams that come in, so the rows fit any column.
 """
 from __future__ import annotations
 
@@ -122,7 +122,10 @@ def _stack(upper: Array, lower: Array | None, k: int) -> Array:
 def stage_residuals(state: StageUnknowns, vapor_in: Entering, liquid_in: Entering, properties: PropertyModel,
                     P: ArrayLike, coefficients: TransferCoefficients, c_vapor: ArrayLike, c_liquid: ArrayLike, *,
                     duty: ArrayLike = 0.0, vapor_weight: ArrayLike = 0.0, liquid_weight: ArrayLike = 0.0,
-                    flow_scale: float = 1.0, energy_scale: float = 1.0, y_interface: Array | None = None) -> StageBlocks:
+                    vapor_temperature_weight: ArrayLike | None = None,
+                    liquid_temperature_weight: ArrayLike | None = None,
+                    flow_scale: float = 1.0, energy_scale: float = 1.0, y_interface: Array | None = None
+                    ) -> StageBlocks:
     """Residuals of rate-based stages and their derivatives, for a column script of one's own.
 
     Parameters
@@ -130,11 +133,13 @@ def stage_residuals(state: StageUnknowns, vapor_in: Entering, liquid_in: Enterin
     state : what leaves the stages and their interfaces.
     vapor_in, liquid_in : what enters from below and from above, feeds included and draws of the neighbour taken off.
     properties, P : property model, pressures Pa.
-    coefficients : pair coefficients m/s, heat-transfer coefficients W/(m2 K) and area m2 of each stage; taken as constants
+    coefficients : pair coefficients m/s, heat-transfer coefficients W/(m2 K) and area m2 of each stage; taken as
+        constants
         in the derivatives. c_vapor, c_liquid : molar densities of the films, mol/m3.
     duty : heat added to the liquid, W.
     vapor_weight, liquid_weight : share of the entering state in the bulk state that the film starts from: 0 for a phase
-        mixed on the stage (bulk = leaving state), 1/2 for the mean of both ends.
+        mixed on the stage (bulk = leaving state), 1/2 for the mean of both ends. The temperatures have shares of their
+        own where they are given.
     flow_scale, energy_scale : divide the balances (mol/s) and energy rows (W).
     y_interface : interface vapour at which K is first evaluated; None: the bulk vapour.
 
@@ -155,8 +160,10 @@ def stage_residuals(state: StageUnknowns, vapor_in: Entering, liquid_in: Enterin
     _, y, dy = fractions(v)
     _, x, dx = fractions(l)
     theta_V, theta_L = np.broadcast_to(vapor_weight, batch), np.broadcast_to(liquid_weight, batch)
-    y_b, T_Vb, dy_b, dy_in = _bulk(y, T_V, dy, vapor_in, theta_V)
-    x_b, T_Lb, dx_b, dx_in = _bulk(x, T_L, dx, liquid_in, theta_L)
+    heat_V = theta_V if vapor_temperature_weight is None else np.broadcast_to(vapor_temperature_weight, batch)
+    heat_L = theta_L if liquid_temperature_weight is None else np.broadcast_to(liquid_temperature_weight, batch)
+    y_b, T_Vb, dy_b, dy_in = _bulk(y, T_V, dy, vapor_in, theta_V, heat_V)
+    x_b, T_Lb, dx_b, dx_in = _bulk(x, T_L, dx, liquid_in, theta_L, heat_L)
     films = interface_blocks(
         Bulk(y_b, T_Vb, coefficients.kappa_vapor, coefficients.h_vapor, np.asarray(c_vapor, float)),
         Bulk(x_b, T_Lb, coefficients.kappa_liquid, coefficients.h_liquid, np.asarray(c_liquid, float)),
@@ -191,9 +198,9 @@ def stage_residuals(state: StageUnknowns, vapor_in: Entering, liquid_in: Enterin
     y_part, x_part = slice(0, n), slice(n + 1, m - 1)
     for row, E in ((0, E_L), (1, E_V)):
         energy[..., row, iv] = chain(E[..., y_part], dy_b)[..., 0, :]
-        energy[..., row, iTV] = E[..., 0, n] * (1.0 - theta_V)
+        energy[..., row, iTV] = E[..., 0, n] * (1.0 - heat_V)
         energy[..., row, il] = chain(E[..., x_part], dx_b)[..., 0, :]
-        energy[..., row, iTL] = E[..., 0, m - 1] * (1.0 - theta_L)
+        energy[..., row, iTL] = E[..., 0, m - 1] * (1.0 - heat_L)
     ww[..., qhl, :] -= es[..., None] * energy[..., 0, :]
     ww[..., qhv, :] += es[..., None] * energy[..., 1, :]
     # bulk rows by interface unknowns
@@ -204,39 +211,41 @@ def stage_residuals(state: StageUnknowns, vapor_in: Entering, liquid_in: Enterin
     wz[..., qhl, :], wz[..., qhv, :] = -es[..., None] * films.dE_L_dz, es[..., None] * films.dE_V_dz
     # interface rows by bulk unknowns
     zw = np.empty((*batch, k, m))
-    zw[..., iv], zw[..., iTV] = chain(films.dw[..., y_part], dy_b), films.dw[..., n] * (1.0 - theta_V)[..., None]
-    zw[..., il], zw[..., iTL] = chain(films.dw[..., x_part], dx_b), films.dw[..., m - 1] * (1.0 - theta_L)[..., None]
+    zw[..., iv], zw[..., iTV] = chain(films.dw[..., y_part], dy_b), films.dw[..., n] * (1.0 - heat_V)[..., None]
+    zw[..., il], zw[..., iTL] = chain(films.dw[..., x_part], dx_b), films.dw[..., m - 1] * (1.0 - heat_L)[..., None]
     # what enters
     by_vapor, by_liquid = np.zeros((*batch, m, n + 2)), np.zeros((*batch, m, n + 2))
     by_vapor[..., qv, :n], by_vapor[..., qhv, n + 1] = -one, -ee
     by_liquid[..., ql, :n], by_liquid[..., qhl, n + 1] = -one, -ee
     z_by_vapor = z_by_liquid = None
     if dy_in is not None:
-        z_by_vapor = _by_entering(films.dw, y_part, dy_in, n, theta_V)
-        by_vapor[..., qhl, :] -= es[..., None] * _by_entering(E_L, y_part, dy_in, n, theta_V)[..., 0, :]
-        by_vapor[..., qhv, :] += es[..., None] * _by_entering(E_V, y_part, dy_in, n, theta_V)[..., 0, :]
+        z_by_vapor = _by_entering(films.dw, y_part, dy_in, n, heat_V)
+        by_vapor[..., qhl, :] -= es[..., None] * _by_entering(E_L, y_part, dy_in, n, heat_V)[..., 0, :]
+        by_vapor[..., qhv, :] += es[..., None] * _by_entering(E_V, y_part, dy_in, n, heat_V)[..., 0, :]
     if dx_in is not None:
-        z_by_liquid = _by_entering(films.dw, x_part, dx_in, m - 1, theta_L)
-        by_liquid[..., qhl, :] -= es[..., None] * _by_entering(E_L, x_part, dx_in, m - 1, theta_L)[..., 0, :]
-        by_liquid[..., qhv, :] += es[..., None] * _by_entering(E_V, x_part, dx_in, m - 1, theta_L)[..., 0, :]
-    return StageBlocks(bulk, films.residual, ww, wz, zw, films.dz, by_vapor, by_liquid, z_by_vapor, z_by_liquid, films, y_b,
+        z_by_liquid = _by_entering(films.dw, x_part, dx_in, m - 1, heat_L)
+        by_liquid[..., qhl, :] -= es[..., None] * _by_entering(E_L, x_part, dx_in, m - 1, heat_L)[..., 0, :]
+        by_liquid[..., qhv, :] += es[..., None] * _by_entering(E_V, x_part, dx_in, m - 1, heat_L)[..., 0, :]
+    return StageBlocks(bulk, films.residual, ww, wz, zw, films.dz, by_vapor, by_liquid, z_by_vapor, z_by_liquid, films,
+                       y_b,
                        T_Vb, x_b, T_Lb)
 
 
-def _bulk(z: Array, T: Array, dz: Array, entering: Entering, theta: Array) -> tuple[Array, Array, Array, Array | None]:
+def _bulk(z: Array, T: Array, dz: Array, entering: Entering, theta: Array, heat: Array
+          ) -> tuple[Array, Array, Array, Array | None]:
     """Bulk composition and temperature, the derivative of the composition by the leaving and by the entering flows."""
-    if not theta.any():
+    if not (theta.any() or heat.any()):
         return z, T, dz, None
     _, z_in, dz_in = fractions(entering.flows)
     t = theta[..., None]
-    return ((1.0 - t) * z + t * z_in, (1.0 - theta) * T + theta * entering.temperature, (1.0 - t)[..., None] * dz,
+    return ((1.0 - t) * z + t * z_in, (1.0 - heat) * T + heat * entering.temperature, (1.0 - t)[..., None] * dz,
             t[..., None] * dz_in)
 
 
-def _by_entering(rows: Array, part: slice, slope: Array, temperature: int, theta: Array) -> Array:
+def _by_entering(rows: Array, part: slice, slope: Array, temperature: int, heat: Array) -> Array:
     """Rows with columns (y, T_V, x, T_L) by the n+2 numbers of an entering stream."""
     n = slope.shape[-1]
     result = np.zeros((*rows.shape[:-1], n + 2))
     result[..., :n] = rows[..., part] @ slope
-    result[..., n] = rows[..., temperature] * theta[..., None]
+    result[..., n] = rows[..., temperature] * heat[..., None]
     return result

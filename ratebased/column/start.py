@@ -1,4 +1,5 @@
-"""Starting profiles: constant molar overflow and bubble-point sweeps, or sum-rates sweeps; and the dry-section estimate.
+"""Starting profiles: constant molar overflow and bubble-point sweeps, or sum-rates sweeps; and the dry-section
+estimate.
 
 Sources: bubble-point and sum-rates methods of Wang & Henke, Hydrocarbon Process. 45 (1966) 155 and Burningham & Otto,
 Hydrocarbon Process. 46 (1967) 163 (both from memory); used here for a start only.
@@ -42,7 +43,7 @@ def starting_state(problem: Problem) -> State:
 
 def _feed_latent_heat(problem: Problem) -> float:
     z = problem.feed_components / problem.F
-    properties, T, P = problem.properties, np.float64(problem.mean_feed_temperature), np.float64(problem.P.mean())
+    properties, T, P = problem.properties, np.asarray(problem.mean_feed_temperature), np.asarray(problem.P.mean())
     x, y = np.where(problem.gas, 0.0, z), np.where(problem.heavy, 0.0, z)
     latent = properties.vapor_enthalpy(T, P, y / y.sum()) - properties.liquid_enthalpy(T, P, x / x.sum())
     weight = np.where(problem.ordinary, z, 0.0)
@@ -233,7 +234,8 @@ def dry_margin(problem: Problem, start: State) -> float | None:
     D, R = _top_rates(problem)
     properties, P = problem.properties, problem.P
     y, x = start.v / start.v.sum(1, keepdims=True), start.l / start.l.sum(1, keepdims=True)
-    HV, HL = (properties.vapor_enthalpy(start.T, P, y) * y).sum(1), (properties.liquid_enthalpy(start.T, P, x) * x).sum(1)
+    HV, HL = (properties.vapor_enthalpy(start.T, P, y) * y).sum(1), (properties.liquid_enthalpy(start.T, P,
+                                                                                                x) * x).sum(1)
     reflux = properties.liquid_enthalpy(start.T[:1] - problem.subcooling, P[:1], x[:1])[0] @ x[0]
     distillate = D * (reflux if problem.total_condenser else HV[0])
     condenser = distillate + R * D * reflux - (R + 1.0) * D * HV[1]

@@ -61,7 +61,8 @@ def constant_volatility(rng: np.random.Generator, n: int) -> ConstantVolatility:
     alpha = np.sort(np.exp(rng.uniform(np.log(0.3), np.log(10.0), n)))[::-1]
     latent = np.sort(rng.uniform(24e3, 42e3, n))
     vapor = np.sort(rng.uniform(60.0, 140.0, n))
-    return ConstantVolatility([f"c{i + 1}" for i in range(n)], alpha, latent, a=22.5, b=4000.0, vapor_heat_capacity=vapor,
+    return ConstantVolatility([f"c{i + 1}" for i in range(n)], alpha, latent, a=22.5, b=4000.0,
+                              vapor_heat_capacity=vapor,
                               liquid_heat_capacity=1.7 * vapor, reference_temperature=350.0, vapor_molar_density=35.0,
                               liquid_molar_density=9e3)
 
@@ -144,7 +145,8 @@ def absorber(seed: int) -> Case:
     y = np.append(rng.dirichlet(np.concatenate(([6.0], np.ones(n - 2)))), 0.0)
     rich, lean = 100.0 * y, np.zeros(n)
     lean[-1] = rng.uniform(50, 200)
-    column = Column(stages, [LiquidFeed(1, lean, rng.uniform(290, 310)), VaporFeed(stages, rich, rng.uniform(295, 320))], P,
+    column = Column(stages, [LiquidFeed(1, lean, rng.uniform(290, 310)), VaporFeed(stages, rich, rng.uniform(295,
+                                                                                                             320))], P,
                     segment_height=0.3 if packed else None)
     contactor = fixed(rng, n, 100.0, P / (8.314 * 305), units=(0.1, 1.0) if packed else (0.1, 3.0))
     return Case(column, properties, contactor, ("packed" if packed else "trays") + (", oil" if oil else "")
