@@ -1,12 +1,13 @@
 """A property model from one cubic equation of state for both phases."""
 from __future__ import annotations
 
+import warnings
 from collections.abc import Sequence
 
 import numpy as np
 from numpy.typing import ArrayLike
 
-from ..errors import NoSolutionError
+from ..errors import NoSolutionError, PropertyWarning
 from .components import PropertyRecord, PureComponents
 from .cubic import CubicEquation, CubicForm, Phase
 from .diffusion import GasDiffusivity, LiquidDiffusivity
@@ -118,38 +119,56 @@ class CubicProperties(MixtureModel):
     # transport --------------------------------------------------------------------------------------------------
 
     def vapor_transport(self, T: ArrayLike, P: ArrayLike, y: ArrayLike) -> VaporTransport:
-        """Density and heat capacity of the equation of state, the other properties those of a gas at low pressure."""
+        """Density and heat capacity of the equation of state, the other properties those of a gas at low pressure.
+
+        Warns `PropertyWarning` where the vapour has no root of its own.
+        """
         T, P, y = self._state(T, P, "y", y)
+        self._warn_where_missing(T, P, y, Phase.VAPOR)
         density = P / (GAS_CONSTANT * T * self.equation.compressibility(T, P, y, Phase.VAPOR))
         return self._vapor_transport(self._bank.basis(T), T, P, y, density, self._heat_capacity(T, P, y, Phase.VAPOR))
 
     def liquid_transport(self, T: ArrayLike, P: ArrayLike, x: ArrayLike) -> LiquidTransport:
-        """Density (volume-shifted) and heat capacity of the equation of state, mixing rules of `transport`."""
+        """Density (volume-shifted) and heat capacity of the equation of state, mixing rules of `transport`.
+
+        Warns `PropertyWarning` where the liquid has no root of its own.
+        """
         T, P, x = self._state(T, P, "x", x)
+        self._warn_where_missing(T, P, x, Phase.LIQUID)
         volume = GAS_CONSTANT * T / P * self.equation.compressibility(T, P, x, Phase.LIQUID)
         density = 1.0 / (volume - x @ self.equation.volume_shift)
         return self._liquid_transport(self._bank.basis(T), T, P, x, density, self._heat_capacity(T, P, x, Phase.LIQUID))
 
+    def _warn_where_missing(self, T: Array, P: Array, z: Array, phase: Phase) -> None:
+        missing = np.atleast_1d(~self.equation.exists(T, P, z, phase))
+        if missing.any():
+            where = [int(i) for i in np.argwhere(missing)[0]]
+            warnings.warn(f"state {where}: no {phase.value} root at this temperature and pressure ({missing.sum()} of "
+                          f"{missing.size} states), the properties are a continuation", PropertyWarning, stacklevel=3)
+
     # saturation -------------------------------------------------------------------------------------------------
 
     def bubble_point(self, P: ArrayLike, x: ArrayLike, T_guess: ArrayLike | None = None, *,
-                     y_noncondensing: ArrayLike | None = None) -> tuple[Array, Array]:
+                     y_noncondensing: ArrayLike | None = None, y_guess: ArrayLike | None = None
+                     ) -> tuple[Array, Array]:
         """(T, y) at the bubble point; starts from Wilson's estimate of K; see `saturation.bubble_point`."""
-        start = self._start(P, x, "x") if T_guess is None else T_guess
-        T, y = bubble_point(self, P, x, start, y_noncondensing=y_noncondensing)
+        if T_guess is None and y_guess is None:
+            T_guess, y_guess = self._start(P, x, "x")
+        T, y = bubble_point(self, P, x, T_guess, y_noncondensing=y_noncondensing, y_guess=y_guess)
         self._require_phases("bubble", T, P, np.asarray(x, float), y)
         return T, y
 
     def dew_point(self, P: ArrayLike, y: ArrayLike, T_guess: ArrayLike | None = None, *,
-                  x_nonvolatile: ArrayLike | None = None) -> tuple[Array, Array]:
+                  x_nonvolatile: ArrayLike | None = None, x_guess: ArrayLike | None = None) -> tuple[Array, Array]:
         """(T, x) at the dew point; starts from Wilson's estimate of K; see `saturation.dew_point`."""
-        start = self._start(P, y, "y") if T_guess is None else T_guess
-        T, x = dew_point(self, P, y, start, x_nonvolatile=x_nonvolatile)
+        if T_guess is None and x_guess is None:
+            T_guess, x_guess = self._start(P, y, "y")
+        T, x = dew_point(self, P, y, T_guess, x_nonvolatile=x_nonvolatile, x_guess=x_guess)
         self._require_phases("dew", T, P, x, np.asarray(y, float))
         return T, x
 
-    def _start(self, P: ArrayLike, z: ArrayLike, name: str) -> Array:
-        """Where sum K z (or sum z/K) is one with Wilson's K (1968), by bisection over the range of the model."""
+    def _start(self, P: ArrayLike, z: ArrayLike, name: str) -> tuple[Array, Array]:
+        """T where sum K z (or sum z/K) is one with Wilson's K (1968), by bisection, and the other phase there."""
         c = self.components
         P, z = np.asarray(P, float), self._checked(name, z)
         shape = np.broadcast_shapes(P.shape, z.shape[:-1])
@@ -158,10 +177,10 @@ class CubicProperties(MixtureModel):
             T = 0.5 * (low + high)
             K = (c.critical_pressure / P[..., None]
                  * np.exp(5.37 * (1.0 + c.acentric_factor) * (1.0 - c.critical_temperature / T[..., None])))
-            boils = (K * z).sum(-1) > 1.0 if name == "x" else (z / K).sum(-1) < 1.0
+            other = K * z if name == "x" else z / K
+            boils = other.sum(-1) > 1.0 if name == "x" else other.sum(-1) < 1.0
             low, high = np.where(boils, low, T), np.where(boils, T, high)
-        start: Array = 0.5 * (low + high)
-        return start
+        return T, other / other.sum(-1, keepdims=True)
 
     def _require_phases(self, label: str, T: Array, P: ArrayLike, x: Array, y: Array) -> None:
         """A solution needs two phases: both roots real, and not the same state twice."""

@@ -122,14 +122,16 @@ class MixtureModel:
     # saturation and report --------------------------------------------------------------------------------------
 
     def bubble_point(self: PropertyModel, P: ArrayLike, x: ArrayLike, T_guess: ArrayLike | None = None, *,
-                     y_noncondensing: ArrayLike | None = None) -> tuple[Array, Array]:
+                     y_noncondensing: ArrayLike | None = None, y_guess: ArrayLike | None = None
+                     ) -> tuple[Array, Array]:
         """(T, y) at the bubble point; see `saturation.bubble_point`."""
-        return bubble_point(self, P, x, T_guess, y_noncondensing=y_noncondensing)
+        return bubble_point(self, P, x, T_guess, y_noncondensing=y_noncondensing, y_guess=y_guess)
 
     def dew_point(self: PropertyModel, P: ArrayLike, y: ArrayLike, T_guess: ArrayLike | None = None, *,
-                  x_nonvolatile: ArrayLike | None = None) -> tuple[Array, Array]:
+                  x_nonvolatile: ArrayLike | None = None, x_guess: ArrayLike | None = None
+                  ) -> tuple[Array, Array]:
         """(T, x) at the dew point; see `saturation.dew_point`."""
-        return dew_point(self, P, y, T_guess, x_nonvolatile=x_nonvolatile)
+        return dew_point(self, P, y, T_guess, x_nonvolatile=x_nonvolatile, x_guess=x_guess)
 
     def smallest_gamma_eigenvalue(self: PropertyModel, T: ArrayLike, P: ArrayLike, x: ArrayLike) -> Array:
         """Smallest real part among the eigenvalues of [Gamma], (...)."""

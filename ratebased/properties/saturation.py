@@ -22,15 +22,17 @@ TOLERANCE = 1e-11
 MAX_ITERATIONS = 60
 DEFAULT_START = 350.0
 SMALLEST_STEP = 1e-3
+SMALLEST_FRACTION = 1e-30
 RESTARTS = (0.25, 0.75, 0.1, 0.9)
 UNLIMITED = (1.0, 1e5)
 
 
 def bubble_point(properties: PropertyModel, P: ArrayLike, x: ArrayLike, T_guess: ArrayLike | None = None, *,
-                 y_noncondensing: ArrayLike | None = None) -> tuple[Array, Array]:
+                 y_noncondensing: ArrayLike | None = None, y_guess: ArrayLike | None = None) -> tuple[Array, Array]:
     """Bubble temperature and the vapour in equilibrium: (T, y), K and (..., n).
 
-    P (...) Pa; x (..., n) liquid mole fractions; `T_guess` (...) K (the middle of the model's `T_range`, else 350 K).
+    P (...) Pa; x (..., n) liquid mole fractions; `T_guess` (...) K (the middle of the model's `T_range`, else 350 K),
+    `y_guess` (..., n) (else two substitutions from x).
     A component that is not volatile is present in x and absent from y. A component that is not condensable is
     absent from x; its share of the vapour is given in `y_noncondensing` (..., n) (default none), and what the others
     bring to a sum of one is solved for: with an inert gas this is the temperature at which a liquid boils at its
@@ -38,22 +40,25 @@ def bubble_point(properties: PropertyModel, P: ArrayLike, x: ArrayLike, T_guess:
     Raises `InputError` for bad arguments, `PropertyRangeError` when the solution lies outside the model's
     `T_range`, `ConvergenceError` (with the best (T, y) and the mask of failures) when the iteration fails.
     """
-    return _saturation_point(properties, P, "x", x, "y_noncondensing", y_noncondensing, T_guess, sign=1.0)
+    return _saturation_point(properties, P, "x", x, "y_noncondensing", y_noncondensing, T_guess, y_guess,
+                             sign=1.0)
 
 
 def dew_point(properties: PropertyModel, P: ArrayLike, y: ArrayLike, T_guess: ArrayLike | None = None, *,
-              x_nonvolatile: ArrayLike | None = None) -> tuple[Array, Array]:
+              x_nonvolatile: ArrayLike | None = None, x_guess: ArrayLike | None = None) -> tuple[Array, Array]:
     """Dew temperature and the liquid in equilibrium: (T, x), K and (..., n).
 
     P (...) Pa; y (..., n) vapour mole fractions, non-condensable gases included (they lower the dew point and are
     absent from x); `x_nonvolatile` (..., n) the share of non-volatile components in the liquid (default none). Errors
     as for `bubble_point`.
     """
-    return _saturation_point(properties, P, "y", y, "x_nonvolatile", x_nonvolatile, T_guess, sign=-1.0)
+    return _saturation_point(properties, P, "y", y, "x_nonvolatile", x_nonvolatile, T_guess, x_guess,
+                             sign=-1.0)
 
 
 def _saturation_point(properties: PropertyModel, P: ArrayLike, known_name: str, known: ArrayLike, share_name: str,
-                      share: ArrayLike | None, T_guess: ArrayLike | None, *, sign: float) -> tuple[Array, Array]:
+                      share: ArrayLike | None, T_guess: ArrayLike | None, w_guess: ArrayLike | None, *,
+                      sign: float) -> tuple[Array, Array]:
     n = len(properties.names)
     P, z = positive_array("P", P), mole_fractions(known_name, known, n)
     condensable, volatile = np.asarray(properties.condensable, bool), np.asarray(properties.volatile, bool)
@@ -82,7 +87,8 @@ def _saturation_point(properties: PropertyModel, P: ArrayLike, known_name: str, 
     start = np.clip(np.broadcast_to(guess, batch), low, high).reshape(-1)
     problem = _Problem(properties, P.reshape(-1), z.reshape(-1, n), fixed.reshape(-1, n),
                        (ordinary & (z > 0)).reshape(-1, n), sign, (low, high))
-    T, w, norm = problem.solve(start)
+    first = None if w_guess is None else np.broadcast_to(finite_array("guess", w_guess), (*batch, n)).reshape(-1, n)
+    T, w, norm = problem.solve(start, first)
     # Strongly non-ideal liquids can trap a descent; another start almost always leads out.
     for share_of_range in RESTARTS:
         failed = norm > TOLERANCE
@@ -138,15 +144,15 @@ class _Problem:
     def _ln_k(self, T: Array, w: Array) -> Array:
         return np.log(np.where(self.present, self.properties.k_value(T, self.P, *self._phases(w)), 1.0))
 
-    def solve(self, T: Array) -> tuple[Array, Array, Array]:
+    def solve(self, T: Array, w: Array | None = None) -> tuple[Array, Array, Array]:
         """Newton with a step that is halved until the residual falls: T, w and the largest residual, (...)."""
         present, sign = self.present, self.sign
         low, high = self.bounds
         n = self.z.shape[-1]
         ln_z = np.log(np.where(present, self.z, 1.0))
         target = np.log1p(-self.fixed.sum(-1))
-        ln_w = np.where(present, ln_z, 0.0)
-        for _ in range(2):  # two substitutions give the other phase its character before Newton sees it
+        ln_w = ln_z if w is None else np.log(np.where(present, np.maximum(w, SMALLEST_FRACTION), 1.0))
+        for _ in range(2 if w is None else 0):  # substitutions give the other phase its character
             ln_w = np.where(present, ln_z + sign * self._ln_k(T, self._composition(ln_w)), 0.0)
             ln_w -= (np.log(np.where(present, np.exp(ln_w), 0.0).sum(-1)) - target)[..., None]
         T_trial, ln_w_trial = T, ln_w
@@ -161,7 +167,7 @@ class _Problem:
             trial_merit = (trial ** 2).sum(-1)
             accepted = (trial_merit < merit) | (trial_merit <= TOLERANCE ** 2) | (scale < SMALLEST_STEP)
             T = np.where(accepted, T_trial, T)
-            merit = np.where(accepted, trial_merit, merit)
+            merit = np.asarray(np.where(accepted, trial_merit, merit), float)
             ln_w = np.where(accepted[..., None], ln_w_trial, ln_w)
             residual = np.where(accepted[..., None], trial, residual)
             if (np.abs(residual).max(-1) <= TOLERANCE).all():
@@ -169,7 +175,7 @@ class _Problem:
             step = self._newton_step(T, ln_w, residual)
             # ln w may jump by the ratio of vapour pressures; T is held to a tenth of itself, ln w follows suit.
             size = np.maximum(np.abs(step[..., n]) / (0.1 * T), np.abs(step[..., :n]).max(-1) / 3.0)
-            scale = np.asarray(np.where(accepted, 1.0 / np.maximum(1.0, size), 0.5 * scale), float)
+            scale = np.where(accepted, 1.0 / np.maximum(1.0, size), 0.5 * scale).astype(float)
             ln_w_trial = ln_w + scale[..., None] * step[..., :n]
             T_trial = np.clip(T + scale * step[..., n], low, high)
         return T, self._composition(ln_w), np.abs(residual).max(-1)
@@ -184,8 +190,7 @@ class _Problem:
         jacobian[..., :n, :n] = np.eye(n) - self.sign * np.where(pairs, by_other * portions[..., None, :], 0.0)
         jacobian[..., :n, n] = np.where(self.present, -self.sign * slopes.temperature, 0.0)
         jacobian[..., n, :n] = portions / portions.sum(-1, keepdims=True)
-        step: Array = np.linalg.solve(jacobian, -residual[..., None])[..., 0]
-        return step
+        return np.asarray(np.linalg.solve(jacobian, -residual[..., None])[..., 0], dtype=np.float64)
 
 
 def smallest_gamma_eigenvalue(properties: PropertyModel, T: ArrayLike, P: ArrayLike, x: ArrayLike) -> Array:
