@@ -6,6 +6,7 @@ from .approximate import (
     explicit_taylor_smith,
     linearized,
 )
+from .collocation import numerical
 from .methods import krishna_standart
 from .problem import MESSAGES, FilmStatus
 from .result import FilmDerivatives, FilmFlux
@@ -21,4 +22,5 @@ __all__ = [
     "explicit_taylor_smith",
     "krishna_standart",
     "linearized",
+    "numerical",
 ]

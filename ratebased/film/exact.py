@@ -116,8 +116,8 @@ def stagnant_component(problem: FilmProblem) -> tuple[NDArray[np.intp], Mask]:
 def newton_system(problem: FilmProblem, N: Array, form: BlockForm = coth_blocks) -> tuple[Array, Array]:
     """Jacobian (M, n, n) and minus the residual (M, n): the film equations with nu . N = s as their last row.
 
-    In an ideal exact film with a stagnant component k the row of k is replaced by its integral, sum_j K_kj N_j =
-    ln(xd_k/x0_k): linear, exact, and good to all digits for a trace.
+    In an ideal exact film with a stagnant component k that changes twofold or more the row of k is replaced by its
+    integral, sum_j K_kj N_j = ln(xd_k/x0_k): linear, exact, and good to all digits for a trace.
     """
     n = problem.n
     blocks = form(N, problem.K, problem.x0, problem.xd, problem.gamma)
@@ -129,6 +129,8 @@ def newton_system(problem: FilmProblem, N: Array, form: BlockForm = coth_blocks)
     if problem.gamma is None and form is coth_blocks:
         k, alone = stagnant_component(problem)
         films = np.flatnonzero(alone & (k < n - 1))
+        changes = np.abs(np.log(problem.xd[films, k[films]] / problem.x0[films, k[films]])) > np.log(2.0)
+        films = films[changes]
         if len(films):
             k = k[films]
             row = problem.K[films, k]

@@ -13,6 +13,7 @@ from ..arguments import finite_array
 from ..errors import InputError
 from ..maxwell_stefan import face_entropy, film_matrix, pair_dissipation, reduced, resistances, solve
 from .blocks import FilmBlocks, coth_blocks, linearized_blocks
+from .grid import chebyshev_points, double_exponential, interpolation
 from .spectral import coth_columns, coth_function, profile_shape
 
 if TYPE_CHECKING:
@@ -55,6 +56,7 @@ class FilmFlux:
     iterations : linear solves and residual evaluations spent, (...). status : `FilmStatus` codes, (...).
     error : estimated max|dN|/max|N| of the method, (...), or None where it makes no estimate.
     rate : which fluxes make the rate factor [Phi], see `RateFactor`.
+    inside, dissipated : of `numerical`: mole fractions at Chebyshev points, (..., p, n), and the entropy production.
     """
 
     N: Array
@@ -69,6 +71,8 @@ class FilmFlux:
     status: NDArray[np.int8]
     error: Array | None = None
     rate: RateFactor = RateFactor.FLUXES
+    inside: Array | None = None
+    dissipated: Array | None = None
 
     @property
     def N_t(self) -> Array:
@@ -117,11 +121,14 @@ class FilmFlux:
         eta = finite_array("eta", eta)
         if eta.ndim > 1 or (eta < 0).any() or (eta > 1).any():
             raise InputError(f"eta: expected numbers from 0 to 1 on one axis, got {eta}")
+        if self.inside is not None:
+            x = interpolation(chebyshev_points(self.inside.shape[-2] - 1), np.atleast_1d(eta)) @ self.inside
+            return x if eta.ndim else x[..., 0, :]
         D = (self.xd - self.x0)[..., :-1]
         Z = np.broadcast_to(self._rate_factor, (*self.N.shape[:-1], *self._rate_factor.shape[-2:]))
         step = profile_shape(Z, np.atleast_1d(eta), np.broadcast_to(D, self.N[..., :-1].shape))
         step = np.concatenate((step, -step.sum(-1, keepdims=True)), axis=-1)
-        x: Array = self.x0[..., None, :] + step
+        x = self.x0[..., None, :] + step
         return x if eta.ndim else x[..., 0, :]
 
     @cached_property
@@ -129,14 +136,17 @@ class FilmFlux:
         """W/(m2 K), (...), never negative. Infinite where a component that moves is absent at one face.
 
         Ideal film with N exact: R sum N_i ln(x0_i/xd_i), the integral of the dissipation. Otherwise the pair form
-        R/2 sum K_ij (x_j N_i - x_i N_j)^2/(x_i x_j) integrated over the profile (32 Gauss points).
+        R/2 sum K_ij (x_j N_i - x_i N_j)^2/(x_i x_j) integrated over the profile; `numerical` adds to the ideal part the
+        integral of the activity coefficients along its film.
         """
+        if self.dissipated is not None:
+            return self.dissipated
         if self.gamma is None and self.rate is RateFactor.FLUXES:
             return np.maximum(face_entropy(self.N, self.x0, self.xd), 0.0)  # below zero by rounding only
-        nodes, weights = np.polynomial.legendre.leggauss(32)
-        x = np.maximum(self.profile(0.5 * (nodes + 1.0)), 0.0)
+        points, weights = double_exponential()
+        x = np.maximum(self.profile(points), 0.0)
         local = pair_dissipation(x, self.N[..., None, :], self._K[..., None, :, :])
-        total: Array = 0.5 * (local @ weights)
+        total: Array = local @ weights
         moving = self.N != 0
         absent = (((self.x0 == 0) != (self.xd == 0)) & moving).any(-1)
         return np.where(absent, np.inf, total)

@@ -1,10 +1,10 @@
 """Large batches of ideal films of four or more components: shooting to the middle by Taylor series, then Broyden.
 
-F(N) = exp(A/2) x0 - exp(-A/2) xd = cosh(A/2) D + sinh(A/2) S, D = x0 - xd, S = x0 + xd, by Horner's rule with D and S in
-turn: one matrix-vector product an order and no matrix function. The Jacobian is built once, at the linear start, from
-the last orders of the same recursion, and its inverse kept up to date by Broyden's formula. Arrays hold the films on
-the LAST axis, (n, n, films), in chunks that stay in cache; films are sorted by |A| because the largest of a chunk sets
-the order. Films with |A|_1 > 12, or that do not settle, are left to the robust path.
+F(N) = exp(A/2) x0 - exp(-A/2) xd = cosh(A/2) D + sinh(A/2) S, D = x0 - xd, S = x0 + xd, by Horner's rule with D and S
+in turn: one matrix-vector product an order and no matrix function. The Jacobian is built once, at the linear start,
+from the last orders of the same recursion, and its inverse kept up to date by Broyden's formula. Arrays hold the films
+on the LAST axis, (n, n, films), in chunks that stay in cache; films are sorted by |A| because the largest of a chunk
+sets the order. Films with |A|_1 > 12, or that do not settle, are left to the robust path.
 """
 from __future__ import annotations
 
@@ -18,7 +18,7 @@ LARGEST_NORM = 12.0
 """|A|_1 up to which the series is used: the residual loses exp(|A|/2) in digits."""
 
 NORMS = np.array([0.02, 0.1, 0.25, 0.5, 1.0, 2.0, 3.0, 4.0, 6.0, 8.0, 10.0, LARGEST_NORM, np.inf])
-ORDERS = np.array([5, 7, 9, 11, 13, 17, 19, 22, 26, 30, 34, 38, 58])
+ORDERS = np.array([5, 7, 9, 11, 13, 17, 19, 22, 26, 30, 34, 38, 60])
 """Orders of the series that reach rounding, by the norm up to which they do."""
 
 SLOPE_NORMS = np.array([0.25, 1.0, 2.0, 4.0, 6.0, 8.0, LARGEST_NORM, np.inf])
@@ -26,8 +26,13 @@ SLOPE_ORDERS = np.array([3, 4, 4, 6, 8, 10, 14, 24])
 """Orders kept in the Jacobian: a per cent or so is enough for Broyden."""
 
 BINS = np.array([0.1, 0.3, 0.7, 1.2, 2.0, 3.0, 4.5, 6.5, 9.0, LARGEST_NORM])
-TOLERANCE = 1e-11
+STEP = 3e-11
+"""Relative size of a last step: what then remains is smaller still, by the factor the steps shrink with."""
+
 MAX_STEPS = 14
+
+SCARCE = 1e-3
+"""A stagnant component below this mole fraction at a face is left to the robust path."""
 
 WIDE_RATIO = 50.0
 """Ratio of pair coefficients above which a film is tested for other branches and for profiles outside the simplex.
@@ -77,7 +82,8 @@ def solve_series(problem: FilmProblem) -> Solved:
 def pivots(problem: FilmProblem) -> tuple[NDArray[np.intp], Mask]:
     """The equation that gives way to the bootstrap, that of the most abundant component; stagnant films to leave out.
 
-    A stagnant component that changes tenfold is held best by its own integrated equation: the robust path has it.
+    The equation of a scarce stagnant component has small terms and yet sets the total flux; its integrated form, which
+    the robust path has, holds it best.
     """
     total = problem.x0 + problem.xd
     if np.count_nonzero(problem.nu == 0.0) == 0:
@@ -88,7 +94,7 @@ def pivots(problem: FilmProblem) -> tuple[NDArray[np.intp], Mask]:
     varies = films[np.minimum(a, b) < 0.1 * np.maximum(a, b)]
     total[varies, k[varies]] = -1.0
     far = np.zeros(len(problem), dtype=bool)
-    far[films[np.minimum(a, b) < 1e-3 * np.maximum(a, b)]] = True
+    far[films[np.minimum(a, b) < SCARCE]] = True
     return total.argmax(-1), far
 
 
@@ -173,7 +179,8 @@ def _broyden(problem: FilmProblem, part: NDArray[np.intp], N: Array, row: NDArra
     for attempt in range(MAX_STEPS):
         _film_matrix(N, K, A)
         norm = np.abs(A).sum(0).max(0)
-        largest = min(float(norm.max()), 2.0 * LARGEST_NORM)
+        sane = norm <= 2.0 * LARGEST_NORM                 # false for a diverged (NaN) film
+        largest = float(norm.max(initial=0.0, where=sane))
         A *= 0.5
         order = int(ORDERS[np.searchsorted(NORMS, largest)])
         if attempt == 0:
@@ -197,9 +204,10 @@ def _broyden(problem: FilmProblem, part: NDArray[np.intp], N: Array, row: NDArra
         if attempt == 0:
             done = error <= 1e-14
         else:
-            done = (error <= TOLERANCE) | ((error * error <= 0.2 * TOLERANCE * last) & (error < 1e-6))
+            done = (error <= 0.1 * STEP) | ((error <= STEP) & (error <= 0.1 * last))
+            done |= (error <= 10.0 * STEP) & (error <= 1e-3 * last)
             done &= np.abs(residual).max(0) <= 1e-4 * scale
-        done &= norm <= 1.8 * LARGEST_NORM
+        done &= sane
         last = error
         hits = np.count_nonzero(done)
         if hits < len(films) and hits < 0.3 * len(films) and attempt < MAX_STEPS - 1:
