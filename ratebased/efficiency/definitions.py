@@ -45,7 +45,8 @@ def equilibrium_vapor(properties: PropertyModel, P: Array, x: Array, T_L: Array,
     share = gas.sum(-1, keepdims=True)
     rest = 1.0 - y.sum(-1, keepdims=True)
     with_gas = y + gas / np.where(share > 0, share, 1.0) * rest
-    scaled = y / y.sum(-1, keepdims=True)
+    total = y.sum(-1, keepdims=True)
+    scaled = y / np.where(total > 0, total, 1.0)
     return EquilibriumVapor(np.where(share > 0, with_gas, scaled), T_L, "liquid temperature")
 
 

@@ -29,15 +29,15 @@ PLUG_POOLS = 40.0
 class LiquidMixing(Protocol):
     """How the liquid is mixed along its path.
 
-    `factor` is f(z), `factor_slope` (f(z) - 1)/z. `stretch(share)`: the mixing of a part of the path, None where the
-    path cannot be cut (its parts mix with each other). `pools`: the number of pools that mixes alike.
+    `factor` is f(z), `factor_slope` (f(z) - 1)/z. `stretch(share)`: the mixing of a part of the path, share (...) of
+    it, None where the path cannot be cut (its parts mix with each other). `pools`: how many pools mix alike.
     """
 
     def factor(self, z: Complex) -> Complex: ...
 
     def factor_slope(self, z: Complex) -> Complex: ...
 
-    def stretch(self, share: float) -> LiquidMixing | None: ...
+    def stretch(self, share: Array) -> LiquidMixing | None: ...
 
     @property
     def pools(self) -> Array: ...
@@ -53,7 +53,7 @@ class WellMixed:
     def factor_slope(self, z: Complex) -> Complex:
         return np.zeros_like(z)
 
-    def stretch(self, share: float) -> LiquidMixing | None:
+    def stretch(self, share: Array) -> LiquidMixing | None:
         return None
 
     @property
@@ -78,8 +78,8 @@ class Pools:
         return _quotient(z, self.factor(z) - 1.0,
                          q * (1.0 + z * (1.0 - 2.0 / p) / 3.0 * (1.0 + z * (1.0 - 3.0 / p) / 4.0)))
 
-    def stretch(self, share: float) -> LiquidMixing | None:
-        return Pools(np.asarray(self.count) * share)
+    def stretch(self, share: Array) -> LiquidMixing | None:
+        return Pools(np.where(share > 0, self.count * share, 1.0))
 
     @property
     def pools(self) -> Array:
@@ -96,7 +96,7 @@ class PlugFlow:
     def factor_slope(self, z: Complex) -> Complex:
         return _quotient(z, self.factor(z) - 1.0, 0.5 * (1.0 + z / 3.0 * (1.0 + z / 4.0)))
 
-    def stretch(self, share: float) -> LiquidMixing | None:
+    def stretch(self, share: Array) -> LiquidMixing | None:
         return self
 
     @property
@@ -112,17 +112,19 @@ class EddyDiffusion:
 
     def factor(self, z: Complex) -> Complex:
         Pe = np.asarray(self.peclet, float)[..., None]
-        small = np.abs(z) < SMALL
-        b = 0.5 * Pe * (np.sqrt(1.0 + 4.0 * np.where(small, 1.0, z) / Pe) - 1.0)
+        zero = z == 0
+        w = np.where(zero, 1.0, z)
+        b = 2.0 * w / (1.0 + np.sqrt(1.0 + 4.0 * w / Pe))
         both = b + Pe
         f = -np.expm1(-both) / (both * (1.0 + both / b)) + np.expm1(b) / (b * (1.0 + b / both))
-        return np.where(small, 1.0 + z * self._first(Pe), f)
+        return np.where(zero, 1.0, f)
 
     def factor_slope(self, z: Complex) -> Complex:
         Pe = np.asarray(self.peclet, float)[..., None]
-        return _quotient(z, self.factor(z) - 1.0, self._first(Pe) + 0.0 * z)
+        small = np.abs(z) < 1e-5
+        return np.where(small, self._first(Pe), (self.factor(z) - 1.0) / np.where(small, 1.0, z))
 
-    def stretch(self, share: float) -> LiquidMixing | None:
+    def stretch(self, share: Array) -> LiquidMixing | None:
         return None
 
     @property
@@ -131,10 +133,10 @@ class EddyDiffusion:
 
     @staticmethod
     def _first(Pe: Array) -> Array:
-        """f'(0) = 1/Pe - (1 - exp(-Pe))/Pe^2: a half for no mixing, nil for a well-mixed liquid."""
+        """f'(0) = 1/2 - 1/Pe + (1 - exp(-Pe))/Pe^2: a half in plug flow, nil for a well-mixed liquid."""
         small = Pe < 1e-2
         safe = np.where(small, 1.0, Pe)
-        return np.where(small, 0.5 - Pe / 6.0 + Pe**2 / 24.0, 1.0 / safe + np.expm1(-safe) / safe**2)
+        return np.where(small, Pe / 6.0 - Pe**2 / 24.0, 0.5 - 1.0 / safe - np.expm1(-safe) / safe**2)
 
 
 def mixed_tray(mixing: LiquidMixing, transfer: Array, slope: Array) -> tuple[Array, Array]:

@@ -49,20 +49,20 @@ def tray_from_leaving_liquid(point: FrothPoint, liquid_flow: Array, properties: 
     this carries out of bounds are marched pool by pool (`march_upstream`). A well-mixed tray is its point.
     """
     froth = method(point, properties, local=local)
-    part = mixing.stretch(1.0 / STRETCHES)
-    count, way = (1, mixing) if part is None else (STRETCHES, part)
     transferred, energy = np.zeros_like(froth.transferred), np.zeros_like(froth.energy)
     lost = np.zeros(froth.energy.shape, bool)
     here, l, at = froth, liquid_flow[:, None] * point.x, point
-    for k in range(count):
-        given, heat = _stretch(here, at, l.sum(-1), properties, way, 1.0 / count)
+    shares = _shares(mixing, lost.shape)
+    for k, share in enumerate(shares):
+        if k:
+            at = _upstream(point, at, l, properties)
+            here = exponential_midpoint(at, properties, local=local)
+        way = mixing.stretch(share) or mixing
+        given, heat = _stretch(here, at, l.sum(-1), properties, way, share)
         transferred, energy = transferred + given, energy + heat
         upstream = l - given
         lost |= (upstream < 0).any(-1)
         l = np.where(lost[:, None], liquid_flow[:, None] * point.x, upstream)
-        if k + 1 < count:
-            at = _upstream(point, at, l, properties)
-            here = exponential_midpoint(at, properties, local=local)
     lost |= (point.V_in[:, None] * point.y_in - transferred < 0).any(-1)
     unmixed = np.zeros_like(lost)
     if lost.any():
@@ -80,8 +80,18 @@ def tray_from_leaving_liquid(point: FrothPoint, liquid_flow: Array, properties: 
                       froth, unmixed)
 
 
+def _shares(mixing: LiquidMixing, batch: tuple[int, ...]) -> list[Array]:
+    """Shares of the path that are linearised one after the other, each at least a pool long; zero where a tray has
+    fewer of them than the others."""
+    whole = np.ones(batch)
+    if mixing.stretch(whole) is None:
+        return [whole]
+    parts = np.clip(np.floor(np.broadcast_to(mixing.pools, batch)), 1, STRETCHES)
+    return [np.where(k < parts, 1.0 / parts, 0.0) for k in range(int(parts.max(initial=1)))]
+
+
 def _stretch(froth: PointResult, point: FrothPoint, L: Array, properties: PropertyModel, mixing: LiquidMixing,
-             share: float) -> tuple[Array, Array]:
+             share: Array) -> tuple[Array, Array]:
     """Component flows and enthalpy a stretch of the tray gives its liquid, from the froth at the stretch's outlet."""
     n = point.x.shape[-1]
     # Response to the liquid's flows l by way of (x, T_L), dx_i/dl_j = (delta_ij - x_i)/L.
@@ -96,8 +106,9 @@ def _stretch(froth: PointResult, point: FrothPoint, L: Array, properties: Proper
     inert = ~(properties.condensable & properties.volatile)
     slope[:, inert, :] = 0.0
     slope[:, :, inert] = 0.0
-    mean, departure = mixed_tray(mixing, share * froth.transferred, share * slope)
-    given = np.where(inert, share * froth.transferred, mean)
+    part = share[:, None] * froth.transferred
+    mean, departure = mixed_tray(mixing, part, share[:, None, None] * slope)
+    given = np.where(inert, part, mean)
     return given, share * (froth.energy + np.einsum("...i,...i->...", by_energy, departure))
 
 
