@@ -65,18 +65,19 @@ def physical(problem: InterfaceProblem, run: Iterate) -> NDArray[np.bool_]:
 def find(problem: InterfaceProblem, restart: Iterate | None, tolerance: float) -> Found:
     """From the earlier answer where there is one; the fast path; from zero flux; from T_L; by continuation."""
     found = nothing_yet(problem)
-    if restart is not None:
-        index = np.flatnonzero(restart.converged)
-        part = problem.take(index)
-        found.accept(part, index, newton(part, restart.z[index], restart.y[index], tolerance=tolerance,
-                                         max_iterations=WARM_ITERATIONS), InterfaceStatus.SOLVED)
-        found.tested = found.status == InterfaceStatus.SOLVED
-    elif len(problem.y) >= shooting.WORTHWHILE and shooting.applicable(problem):
-        shot = shooting.solve(problem, tolerance)
+    warm = np.zeros(len(problem.y), bool) if restart is None else restart.converged
+    if len(problem.y) >= shooting.WORTHWHILE and shooting.applicable(problem):
+        shot = shooting.solve(problem, tolerance, restart.z if restart is not None and warm.all() else None)
         found.status[shot.solved] = int(InterfaceStatus.SOLVED)
         found.z, found.y, found.iterations = shot.z, np.where(shot.solved[:, None], shot.y_I, found.y), shot.iterations
         found.shot, found.residual, found.size = shot.solved, shot.residual, shot.size
         found.tested = shot.solved & shot.connected
+    index = np.flatnonzero(warm & (found.status == InterfaceStatus.FAILED))
+    if restart is not None and len(index):
+        part = problem.take(index)
+        found.accept(part, index, newton(part, restart.z[index], restart.y[index], tolerance=tolerance,
+                                         max_iterations=WARM_ITERATIONS), InterfaceStatus.SOLVED)
+    found.tested |= warm & (found.status == InterfaceStatus.SOLVED)
     for label in (InterfaceStatus.SOLVED, InterfaceStatus.SECOND_START, InterfaceStatus.CONTINUATION):
         index = np.flatnonzero(found.status == InterfaceStatus.FAILED)
         if not len(index):

@@ -12,6 +12,7 @@ entry, and with latent heats and dlnK/dT above zero the determinant has the sign
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
+from math import factorial
 
 import numpy as np
 from numpy.typing import NDArray
@@ -36,6 +37,8 @@ CHUNK = 2000
 """Problems handled at a time: few enough for the cache, enough to hide the calls."""
 FULL = 4
 """Jacobians taken at most; after that only updates of the last one."""
+SUPERLINEAR = 1e-2
+"""e^2/e_before foretells the error after a step; Broyden's is accepted when this is below that much of the tolerance."""
 SURE = 7
 """Iterations up to which the sign of the determinant carried along is taken for that at the answer."""
 COMPACT = 0.4
@@ -110,33 +113,25 @@ def _order(norm: float, smallest: float) -> int:
 
 
 def _shoot(N: Array, K: Array, x: Array, sign: int, jacobian: bool) -> tuple[Array, Array | None, Array]:
-    """exp(sign A(N)) x, its derivative by N if wanted, |A|_1: the series in Horner's form.
+    """exp(sign A(N)) x, its derivative by N if wanted, |A|_1.
 
-    The derivative is cut earlier: it steers the steps, the values alone decide what is accepted.
+    The series in Horner's form with the factorials taken out, q <- A q + x/k!, and for the derivative G <- A G - M(q).
+    That one is cut earlier: it steers the steps, the values alone decide what is accepted.
     """
     A = _film_matrix(N, K)
     size = np.abs(A).sum(0).max(0)
-    top = min(float(size.max()), LARGEST)
     if sign < 0:
         np.negative(A, out=A)
-    order, order_slope = _order(top, 1e-17), _order(top, SLOPE_ACCURACY)
-    p, G = x, None
-    for k in range(order, 0, -1):
-        if jacobian and k <= order_slope:
-            M = _film_matrix(p, K)
-            if G is None:
-                G = M * (-sign / k)
-            else:
-                G = np.einsum("ijm,jlm->ilm", A, G)
-                if sign > 0:
-                    G -= M
-                else:
-                    G += M
-                G *= 1.0 / k
-        p = np.einsum("ijm,jm->im", A, p)
-        p *= 1.0 / k
-        p += x
-    return p, G, size
+    top = min(float(size.max()), LARGEST)
+    order, order_slope = _order(top, 1e-17), _order(top, SLOPE_ACCURACY) if jacobian else 0
+    q, G = x * (1.0 / factorial(order)), None
+    for k in range(order - 1, -1, -1):
+        if k < order_slope:
+            step = _film_matrix(-sign * q, K)
+            G = step if G is None else np.add(np.einsum("ijm,jlm->ilm", A, G), step, out=step)
+        q = np.einsum("ijm,jm->im", A, q)
+        q += x * (1.0 / factorial(k))
+    return q, G, size
 
 
 @dataclass(frozen=True)
@@ -215,6 +210,11 @@ def _step(c: _Columns, d: Array, size: Array) -> tuple[Array, Array]:
     return d * t, t
 
 
+def _first_step(F: Array, J: Array) -> Array:
+    """J^-1 F."""
+    return solve_linear(np.ascontiguousarray(np.moveaxis(J, -1, 0)), F.T).T
+
+
 def _inverse(J: Array) -> tuple[Array, Array]:
     """Inverse with the batch last, NaN for a singular matrix, and the sign of the determinant."""
     first = np.ascontiguousarray(np.moveaxis(J, -1, 0))
@@ -230,15 +230,17 @@ def _sign(J: Array) -> Array:
     return np.sign(np.linalg.det(np.where(np.isfinite(J), J, 0.0)))
 
 
-def solve(problem: InterfaceProblem, tolerance: float) -> Shot:
-    """Solve what converges; the rest is marked."""
+def solve(problem: InterfaceProblem, tolerance: float, earlier: Array | None = None) -> Shot:
+    """Solve what converges, from z (B, 2n+1) of an earlier answer or from zero flux; the rest is marked."""
     n, B = problem.n, len(problem.y)
-    T = zero_flux_temperature(problem, 1e-2)
     shot = Shot(np.full((B, 2 * n + 1), np.nan), np.full((B, n), np.nan), np.full((B, n), np.nan), np.zeros(B, bool),
                 np.zeros(B, bool), np.full(B, np.nan), np.full(B, np.nan), np.zeros(B, np.int64))
-    N = np.zeros((n, B))
+    if earlier is None:
+        N, T = np.zeros((n, B)), zero_flux_temperature(problem, 1e-2)
+    else:
+        N, T = np.ascontiguousarray(earlier[:, :n].T), earlier[:, 2 * n].copy()
     # films of one size together: the largest of a chunk sets the length of the series
-    order = np.argsort(_expected_size(problem, T), kind="stable")
+    order = np.argsort(_expected_size(problem, T), kind="stable") if B > CHUNK else np.arange(B)
     for limit in (FIRST_ROUND, MAX_ITERATIONS):              # the slow ones of all chunks together
         order = order[~shot.solved[order]]
         for first in range(0, len(order), CHUNK):
@@ -311,7 +313,9 @@ def _iterate(c: _Columns, N: Array, T: Array, tolerance: float, limit: int) -> _
     with np.errstate(all="ignore"):
         for iteration in range(1, limit + 1):
             rows = _rows(c, N, T, fresh, at_rest)
-            if fresh and rows.J is not None:
+            if at_rest:
+                pass
+            elif fresh and rows.J is not None:
                 H, sign = _inverse(rows.J)
             else:
                 Hy = _apply(H, rows.F - F_before)
@@ -319,13 +323,14 @@ def _iterate(c: _Columns, N: Array, T: Array, tolerance: float, limit: int) -> _
                 w = (s - Hy) / np.where(scale == 0, 1.0, scale)
                 H += w[:, None] * np.einsum("im,ijm->jm", s, H)[None]
                 sign = np.where(scale < 0, -sign, sign)
-            s, t = _step(c, -_apply(H, rows.F), rows.size)
+            d = -_first_step(*rows.system) if at_rest else -_apply(H, rows.F)
+            s, t = _step(c, d, rows.size)
             N, T = N + s[:n], T + s[n]
             e = np.maximum(np.abs(s[:n]).max(0) / (np.abs(N).max(0) + 1e-300), np.abs(s[n]) / T)
-            ready = (t == 1.0) & ((e < 0.1 * tolerance) | ((e * e < 1e-3 * tolerance * before) & (e < 1e-6)))
+            ready = (t == 1.0) & ((e < 0.1 * tolerance) | ((e * e < SUPERLINEAR * tolerance * before) & (e < 1e-6)))
             lost = ~np.isfinite(e) | (rows.size > LARGEST) | (T < 0)
             leaving = ready | lost
-            if iteration < 3:                                # nothing to compare the first steps with
+            if at_rest:
                 leaving[:] = False
             F_before, before = rows.F, e
             if leaving.any() and (leaving.mean() > COMPACT or iteration == limit):
@@ -338,7 +343,7 @@ def _iterate(c: _Columns, N: Array, T: Array, tolerance: float, limit: int) -> _
                     return end
                 N, T, s, H, sign, c = N[:, keep], T[keep], s[:, keep], H[:, :, keep], sign[keep], _kept(c, keep)
                 F_before, before = F_before[:, keep], e[keep]
-            fresh = iteration < FULL and bool(np.count_nonzero(before > 0.1) > 0.3 * len(before))
+            fresh = at_rest or iteration < FULL and bool(np.count_nonzero(before > 0.1) > 0.3 * len(before))
             at_rest = False
     fit = np.isfinite(N).all(0) & (T > 0)
     end.N[:, index[fit]], end.T[index[fit]] = N[:, fit], T[fit]
