@@ -8,6 +8,7 @@ from .approximate import (
 )
 from .collocation import numerical
 from .methods import krishna_standart
+from .multistart import solutions
 from .problem import MESSAGES, FilmStatus
 from .result import FilmDerivatives, FilmFlux
 
@@ -23,4 +24,5 @@ __all__ = [
     "krishna_standart",
     "linearized",
     "numerical",
+    "solutions",
 ]

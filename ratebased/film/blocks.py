@@ -28,6 +28,10 @@ __all__ = ["FilmBlocks", "composition_matrix", "coth_blocks", "film_matrix", "li
 Array = NDArray[np.float64]
 
 
+SMALLEST_SCALE = 1e-10
+"""Mole fraction below which the row of a component is no longer scaled up."""
+
+
 def _taylor_order(norm: float) -> int:
     """Terms of the exponential series that reach rounding for a matrix of this norm."""
     order, term = 1, norm
@@ -88,14 +92,14 @@ class FilmBlocks:
     size: Array
 
 
-def _coth_terms(Z: Array, D: Array, K: Array, right: Array | None, slopes: Array | None
-                ) -> tuple[Array, Array, Array | None]:
+def _coth_terms(Z: Array, D: Array, K: Array, right: Array | None, slopes: Array | None,
+                scale: Array) -> tuple[Array, Array, Array | None]:
     """C(Z), the columns dC[right dPhi/dN_l] D, (..., m, n), and the columns dC[slopes_j] D, (..., m, j).
 
     `right` is Gamma^-1 (None: identity).
     """
     m = Z.shape[-1]
-    w, V, inverse, bad = eigenvectors(Z)
+    w, V, inverse, bad = eigenvectors(Z, scale)
     c, c1 = coth_differences(w)
     y = (inverse @ D[..., None])[..., 0]
     C = ((V * c[..., None, :]) @ inverse).real
@@ -162,15 +166,16 @@ def coth_blocks(N: Array, K: Array, x0: Array, xd: Array, gamma: Array | None = 
         Phi, D = np.broadcast_to(Phi, (*batch, m, m)), np.broadcast_to(D, (*batch, m + 1))
         M = np.broadcast_to(M, (*batch, m, m + 1))
     D = D[..., :-1]
+    scale = np.maximum(x0, xd)[..., :-1] + SMALLEST_SCALE
     if gamma is None:
-        C, dN, _ = _coth_terms(Phi, D, K, None, None)
+        C, dN, _ = _coth_terms(Phi, D, K, None, None, scale)
         GC, drift = C, None
     else:
         right = np.asarray(np.linalg.inv(gamma), dtype=np.float64)
         Z = right @ Phi
         half = None if gamma_slope is None else 0.5 * gamma_slope
         along = None if half is None else (right[..., None, :, :] @ half) @ Z[..., None, :, :]
-        C, dN, ds = _coth_terms(Z, D, K, right, along)
+        C, dN, ds = _coth_terms(Z, D, K, right, along, scale)
         GC, dN, drift = gamma @ C, gamma @ dN, None
         if half is not None and ds is not None:
             CD = C @ D[..., None]

@@ -169,8 +169,8 @@ def solve_collocation(equations: Equations, first: Solved, throw: bool) -> tuple
         Gamma = equations.thermodynamic(whole)
         unstable = good & unstable_films(np.where(good[:, None, None], Gamma, np.eye(n - 1))).any(0)
     if throw and unstable.any():
-        raise UnstableMixtureError(f"gamma, {film_names(unstable, problem.shape)}: an eigenvalue is not positive inside, "
-                                   "the liquid would split: no steady film exists")
+        raise UnstableMixtureError(f"gamma, {film_names(unstable, problem.shape)}: an eigenvalue is not positive in "
+                                   "the film, the liquid would split: no steady film exists")
     status[usable & ~good] = FilmStatus.NOT_CONVERGED
     status[unstable] = FilmStatus.UNSTABLE
     good &= ~unstable

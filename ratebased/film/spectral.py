@@ -72,12 +72,15 @@ def coth_derivative(Z: Array, E: Array) -> Array:
     return derivative
 
 
-def eigenvectors(Z: Array) -> tuple[Spectrum, Spectrum, Spectrum, NDArray[np.bool_]]:
-    """Eigenvalues, eigenvectors, their inverse, and a mask of the matrices too near a defective one for them."""
+def eigenvectors(Z: Array, scale: Array | None = None) -> tuple[Spectrum, Spectrum, Spectrum, NDArray[np.bool_]]:
+    """Eigenvalues, eigenvectors, their inverse, and a mask of the matrices too near a defective one for them.
+
+    scale (..., m): size of each component; Z is brought to comparable rows and columns first, a trace keeps its digits.
+    """
     if Z.shape[-1] == 1:
         one = np.ones_like(Z)
         return Z[..., 0], one, one, np.zeros(Z.shape[:-2], dtype=bool)
-    w, V = np.linalg.eig(Z)
+    w, V = np.linalg.eig(Z if scale is None else Z * scale[..., None, :] / scale[..., :, None])
     try:
         inverse = np.linalg.inv(V)
     except np.linalg.LinAlgError:                         # one exactly singular V stops the whole batch
@@ -89,7 +92,10 @@ def eigenvectors(Z: Array) -> tuple[Spectrum, Spectrum, Spectrum, NDArray[np.boo
         bad = np.zeros(Z.shape[:-2], dtype=bool)
     # the columns of V have unit length: |V|_F = sqrt(m)
     large = np.abs(inverse).max(axis=(-1, -2)) > ILL_CONDITIONED
-    return w, V, inverse, bad | large
+    bad = bad | large
+    if scale is not None:
+        V, inverse = V * scale[..., :, None], inverse / scale[..., None, :]
+    return w, V, inverse, bad
 
 
 def coth_function(Z: Array) -> Array:
