@@ -2,6 +2,8 @@
 from .blocks import InterfaceBlocks, interface_blocks, interface_start
 from .flux import interface_flux
 from .records import Bulk, InterfaceDerivatives, InterfaceFlux, InterfaceStatus
+from .reverse import bulks_from_interface
+from .search import solutions
 
-__all__ = ["Bulk", "InterfaceBlocks", "InterfaceDerivatives", "InterfaceFlux", "InterfaceStatus", "interface_blocks",
-           "interface_flux", "interface_start"]
+__all__ = ["Bulk", "InterfaceBlocks", "InterfaceDerivatives", "InterfaceFlux", "InterfaceStatus",
+           "bulks_from_interface", "interface_blocks", "interface_flux", "interface_start", "solutions"]

@@ -69,9 +69,9 @@ def interface_flux(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: Arra
     of interface and bulk otherwise; conduction Ackermann (1937).
     """
     n = len(properties.names)
-    vapor, liquid, P_array, batch = _checked(vapor, liquid, properties, P)
+    vapor, liquid, P_array, batch = checked(vapor, liquid, properties, P)
     count = int(np.prod(batch, dtype=int))
-    problem = prepare(_flat(vapor, batch, n), _flat(liquid, batch, n), entries(properties, np.arange(count)),
+    problem = prepare(flat(vapor, batch, n), flat(liquid, batch, n), entries(properties, np.arange(count)),
                       np.broadcast_to(P_array, batch).reshape(count), film)
     found = find(problem, None if start is None else _restart(start, batch, n), tolerance)
     result, rate_factor = answer(problem, found, derivatives, batch, properties.names)
@@ -80,7 +80,7 @@ def interface_flux(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: Arra
 
 
 # ------------------------------------------------------------------------------------------------------------- input
-def _checked(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: ArrayLike
+def checked(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: ArrayLike
              ) -> tuple[Bulk, Bulk, Array, tuple[int, ...]]:
     n = len(properties.names)
     condensable, volatile = np.asarray(properties.condensable, bool), np.asarray(properties.volatile, bool)
@@ -118,7 +118,7 @@ def _checked(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: ArrayLike
     return checked[0], checked[1], pressure, batch
 
 
-def _flat(bulk: Bulk, batch: tuple[int, ...], n: int) -> Bulk:
+def flat(bulk: Bulk, batch: tuple[int, ...], n: int) -> Bulk:
     def flat(value: Array, *core: int) -> Array:
         return np.ascontiguousarray(np.broadcast_to(value, (*batch, *core))).reshape(-1, *core)
 

@@ -38,7 +38,7 @@ CHUNK = 2000
 FULL = 4
 """Jacobians taken at most; after that only updates of the last one."""
 SUPERLINEAR = 1e-2
-"""e^2/e_before foretells the error after a step; Broyden's is accepted when this is below that much of the tolerance."""
+"""e^2/e_before foretells the error after a step of Broyden's method: accepted below this share of the tolerance."""
 SURE = 7
 """Iterations up to which the sign of the determinant carried along is taken for that at the answer."""
 COMPACT = 0.4
