@@ -23,6 +23,7 @@ ScalarFunction = Callable[[float], float]
 
 DEGREES = (16, 20, 26, 36, 48)
 FIT_TOLERANCE = 1e-11
+NOISE = 4e-15
 SHORTEST_SEGMENT = 1e-3
 """K: limits closer together than this are one limit."""
 
@@ -150,6 +151,8 @@ def _fit(functions: Sequence[ScalarFunction], low: float, high: float) -> tuple[
         values = _sample(functions, 0.5 * (high - low) * nodes + 0.5 * (high + low))
         coefficients = chebyshev.chebvander(nodes, degree).T @ values * (2.0 / (degree + 1))
         coefficients[0] *= 0.5
+        # Rounding noise in the high coefficients grows with the square of the degree in every derivative: drop it.
+        coefficients[np.abs(coefficients) < NOISE * np.abs(coefficients).max(0)] = 0.0
         error = np.abs(_series(check, low, high, degree) @ coefficients - truth).max(0)
         done = error <= FIT_TOLERANCE * scale
         if best is None:
