@@ -7,13 +7,15 @@ of its ends.
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, fields
+from typing import Protocol
 
 import numpy as np
 from numpy.typing import NDArray
 
 from ..equipment import Contactor, ContactState, Hardware, Hydraulics, TransferCoefficients, by_contactor, contact_state
 from ..errors import InputError
+from ..interface import InterfaceFlux
 from ..properties.protocol import Array, Mask, PropertyModel
 from ..stage import (
     FrothPoint,
@@ -38,6 +40,7 @@ from .definitions import (
     vaporization,
 )
 
+LONG = "segment too long: it would lose nine tenths of a component; use shorter ones"
 UNMIXED = "no tray with its liquid path mixed this way has this leaving liquid: rated with mixed liquid"
 
 
@@ -79,8 +82,8 @@ class PackedRows:
 
     position: index among the rated rows. height m. N_OV, N_V, N_L: numbers of overall, vapour-film and liquid-film
     transfer units of each component, signed, over the segment; H_OV, H_V, H_L: their heights, m. HETP m. stripping:
-    S_i = m_i V/L with m_i the slope of y* between the ends. undefined: where HETP has no value (the argument of its
-    logarithm is not positive, or a driving force vanishes).
+    S_i = m_i V/L with m_i the slope of y* between the ends. undefined: where HETP has no value (S or N_OV not positive,
+    or a driving force too small).
     """
 
     position: NDArray[np.int64]
@@ -100,13 +103,13 @@ class PackedRows:
 class RatedRows:
     """Contact rows of a profile, rated; arrays over rows (R) and components (R, n).
 
-    ordinary: components in both phases, (n). number, kind; P Pa; T_L, T_V_in, T_V (of the computed vapour), T_bubble (of
-    the leaving liquid, None on the liquid-temperature basis), K; V_in, V_out, L mol/s; x, y_in, y_out, y_star,
+    ordinary: components in both phases, (n). number, kind; P Pa; T_L, T_V_in, T_V (of the computed vapour), T_bubble
+    (of the leaving liquid, None on the liquid-temperature basis), K; V_in, V_out, L mol/s; x, y_in, y_out, y_star,
     y_profile. murphree, and `flagged` where its driving force is too small; vaporization; dependent: the component with
     the largest y_out, to be left out when n-1 efficiencies are used. flux mol/(m2 s), transferred mol/s, energy W; area
     m2 and its basis. interface_residual, energy_residual: of the interfaces; component_closure, energy_closure: of the
     balances. vapor_entropy_share: of the vapour film at the middle of the froth. hydraulics; pools: number in series;
-    notes: remark -> rows.
+    interfaces: (rows, interface at the middle of the froth or segment) of each group; notes: remark -> rows.
     """
 
     names: tuple[str, ...]
@@ -144,6 +147,7 @@ class RatedRows:
     hydraulics: Hydraulics
     pools: Array
     packed: PackedRows | None
+    interfaces: tuple[tuple[NDArray[np.int64], InterfaceFlux], ...]
     notes: dict[str, Mask] = field(default_factory=dict)
 
 
@@ -202,13 +206,20 @@ def rate_rows(profile: StageProfile, hardware: Hardware, properties: PropertyMod
     packed = np.array([k == "segment" for k in kind])
     if packed.any() and profile.height is None:
         raise InputError(f"{profile.source}: rows of kind segment need a column height_m")
-    bulk = _bulk_states(profile, rows, entering, packed)
-    total = _Collected(rows.size, len(profile.names))
+    bulk = bulk_states(profile, rows, entering, packed)
+    total = Collected(rows.size, len(profile.names))
+    heights: list[PackedRows] = []
     for contactor, index in by_contactor(hardware, number):
         for member, is_packed in ((index[~packed[index]], False), (index[packed[index]], True)):
             if member.size:
-                group = _Group(profile, rows, entering, bulk, member, contactor, properties)
-                total.add(member, group, group.segments() if is_packed else group.trays(options))
+                group = RowGroup(profile, rows, entering, bulk, member, contactor, properties)
+                if is_packed:
+                    segment = group.segments()
+                    heights.append(packed_rows(member, group, profile.x[rows[member]], profile.T_L[rows[member]],
+                                               segment))
+                    total.add(member, group, segment, np.ones(member.size))
+                else:
+                    total.add(member, group, *group.trays(options))
     y_out, T_V, V_out = total.y, total.T_V, total.V
     P, T_L, x = profile.P[rows], profile.T_L[rows], profile.x[rows]
     star = equilibrium_vapor(properties, P, x, T_L, entering.y, at_liquid_temperature=options.at_liquid_temperature)
@@ -227,12 +238,20 @@ def rate_rows(profile: StageProfile, hardware: Hardware, properties: PropertyMod
         star_basis=star.basis, interface_residual=total.films, energy_residual=total.heat,
         component_closure=closure, energy_closure=total.energy_closure, vapor_entropy_share=total.share,
         hydraulics=total.hydraulics(), pools=total.pools,
-        packed=_packed_rows(profile, rows, entering, bulk, packed, total, properties) if packed.any() else None,
+        packed=_joined(heights), interfaces=tuple(total.interfaces),
         notes=total.notes)
 
 
+class StateChange(Protocol):
+    """A change of what a group of rows is rated with, as a sample of uncertain inputs makes it."""
+
+    def state(self, state: ContactState) -> ContactState: ...
+
+    def coefficients(self, coefficients: TransferCoefficients) -> TransferCoefficients: ...
+
+
 @dataclass(frozen=True)
-class _Bulk:
+class BulkStates:
     """Bulk states the coefficients are evaluated at, over the contact rows."""
 
     y: Array
@@ -243,7 +262,7 @@ class _Bulk:
     L: Array
 
 
-def _bulk_states(profile: StageProfile, rows: NDArray[np.int64], entering: Entering, packed: Mask) -> _Bulk:
+def bulk_states(profile: StageProfile, rows: NDArray[np.int64], entering: Entering, packed: Mask) -> BulkStates:
     """Vapour: mean of the ends. Liquid: the leaving one on a tray (before draws), the mean of the ends in a segment."""
     y, V = (entering.y + profile.y[rows]) / 2, (entering.V + profile.V[rows]) / 2
     T_V = (entering.T_V + profile.T_V[rows]) / 2
@@ -254,22 +273,28 @@ def _bulk_states(profile: StageProfile, rows: NDArray[np.int64], entering: Enter
     both = packed[:, None]
     x = np.where(both, (entering.x + profile.x[rows]) / 2, profile.x[rows])
     T_L = np.where(packed, (entering.T_L + profile.T_L[rows]) / 2, profile.T_L[rows])
-    return _Bulk(y, T_V, V, x, T_L, np.where(packed, (entering.L + L) / 2, L))
+    return BulkStates(y, T_V, V, x, T_L, np.where(packed, (entering.L + L) / 2, L))
 
 
-class _Group:
+class RowGroup:
     """Rows that share a contactor and a kind."""
 
-    def __init__(self, profile: StageProfile, rows: NDArray[np.int64], entering: Entering, bulk: _Bulk,
-                 member: NDArray[np.int64], contactor: Contactor, properties: PropertyModel) -> None:
+    def __init__(self, profile: StageProfile, rows: NDArray[np.int64], entering: Entering, bulk: BulkStates,
+                 member: NDArray[np.int64], contactor: Contactor, properties: PropertyModel,
+                 change: StateChange | None = None) -> None:
+        """`member` picks rows, a row may come more than once; `change` alters state and coefficients of each."""
         self.member, self.contactor, self.properties = member, contactor, properties
         self.P = profile.P[rows[member]]
         self.entering = Entering(*(getattr(entering, name)[member] for name in ("V", "y", "T_V", "L", "x", "T_L")))
-        self.bulk = _Bulk(*(getattr(bulk, name)[member] for name in ("y", "T_V", "V", "x", "T_L", "L")))
+        self.bulk = BulkStates(*(getattr(bulk, name)[member] for name in ("y", "T_V", "V", "x", "T_L", "L")))
         height = None if profile.height is None else profile.height[rows[member]]
         b = self.bulk
         self.state: ContactState = contact_state(properties, b.V, b.L, b.T_V, b.T_L, self.P, b.y, b.x, height)
+        if change is not None:
+            self.state = change.state(self.state)
         self.coefficients: TransferCoefficients = contactor.transfer(self.state)
+        if change is not None:
+            self.coefficients = change.coefficients(self.coefficients)
 
     def trays(self, options: RatingOptions) -> tuple[TrayResult, Array]:
         """Leaving vapour of each tray and the number of pools."""
@@ -292,28 +317,26 @@ class _Group:
         b = self.bulk
         return self.contactor.transfer(contact_state(self.properties, V, b.L, T_V, b.T_L, self.P, y, b.x))
 
-    def segments(self) -> tuple[SegmentResult, Array]:
-        """Vapour leaving each segment; pools mean nothing here."""
+    def segments(self) -> SegmentResult:
+        """Vapour leaving each segment."""
         e, b, state = self.entering, self.bulk, self.state
-        result = segment_between_ends(e.V, e.y, e.T_V, (b.y, b.T_V), (b.x, b.T_L), self.P, self.coefficients,
-                                      state.vapor.molar_density, state.liquid.molar_density, self.properties)
-        return result, np.ones(e.V.shape)
+        return segment_between_ends(e.V, e.y, e.T_V, (b.y, b.T_V), (b.x, b.T_L), self.P, self.coefficients,
+                                    state.vapor.molar_density, state.liquid.molar_density, self.properties)
 
 
-class _Collected:
+class Collected:
     """Arrays over all rows, filled group by group."""
 
     def __init__(self, R: int, n: int) -> None:
         self.y, self.transferred, self.flux = (np.zeros((R, n)) for _ in range(3))
-        self.y_I, self.x_I = np.zeros((R, n)), np.zeros((R, n))
         self.V, self.T_V, self.L, self.energy, self.area, self.pools = (np.zeros(R) for _ in range(6))
         self.films, self.heat, self.energy_closure, self.share = (np.zeros(R) for _ in range(4))
         self.basis = [""] * R
+        self.interfaces: list[tuple[NDArray[np.int64], InterfaceFlux]] = []
         self.limits: dict[str, Array] = {}
         self.notes: dict[str, Mask] = {}
 
-    def add(self, member: NDArray[np.int64], group: _Group, rated: tuple[TrayResult | SegmentResult, Array]) -> None:
-        result, pools = rated
+    def add(self, member: NDArray[np.int64], group: RowGroup, result: TrayResult | SegmentResult, pools: Array) -> None:
         coefficients = group.coefficients
         self.y[member], self.V[member], self.T_V[member] = result.y, result.V, result.T_V
         self.transferred[member], self.energy[member] = result.transferred, result.energy
@@ -328,8 +351,10 @@ class _Collected:
             self.energy_closure[member] = result.point.energy_closure
             if result.unmixed.any():
                 self.notes.setdefault(UNMIXED, np.zeros(self.V.size, bool))[member] = result.unmixed
+        elif result.long.any():
+            self.notes.setdefault(LONG, np.zeros(self.V.size, bool))[member] = result.long
         self.share[member] = interface.vapor_entropy_share
-        self.y_I[member], self.x_I[member] = interface.y_I, interface.x_I
+        self.interfaces.append((member, interface))
         for row in member:
             self.basis[row] = coefficients.basis
         hydraulics = group.contactor.hydraulics(group.state)
@@ -345,34 +370,41 @@ class _Collected:
         return Hydraulics(**{"flooding": None, **self.limits})
 
 
-def _packed_rows(profile: StageProfile, rows: NDArray[np.int64], entering: Entering, bulk: _Bulk, packed: Mask,
-                 total: _Collected, properties: PropertyModel) -> PackedRows:
-    """Transfer units and HETP of each component from what the segment does between its ends."""
-    k = np.flatnonzero(packed)
-    assert profile.height is not None
-    Z = profile.height[rows[k]]
-    P, y_in, y_out = profile.P[rows[k]], entering.y[k], total.y[k]
-    y_mean, x_mean = bulk.y[k], bulk.x[k]
+def packed_rows(position: NDArray[np.int64], group: RowGroup, x_out: Array, T_out: Array,
+                result: SegmentResult) -> PackedRows:
+    """Transfer units and HETP of each component from what segments do between their ends.
+
+    At the mean states, with V dy_i = -(N_i - y_i N_t) area: N_OV,i = dy_i/(y* - y)_i, N_V,i = dy_i/(y_I - y)_i, N_L,i =
+    N_i area/(L (x_I - x)_i); H = Z/N. HETP_i = H_OV,i ln S_i/(S_i - 1), S_i = m_i V/L, m_i the slope of y* between the
+    ends. The same as Z/N_eq,i with N_eq,i = ln(1 + E_i (S_i - 1))/ln S_i and the Murphree efficiency E_i that N_OV,i
+    gives a segment of straight lines (Colburn 1939). x_out, T_out: the liquid that leaves below.
+    """
+    e, bulk, P, properties = group.entering, group.bulk, group.P, group.properties
+    assert group.state.height is not None
+    Z = group.state.height
 
     def star(x: Array, T: Array) -> Array:
-        return equilibrium_vapor(properties, P, x, T, y_in).composition
+        return equilibrium_vapor(properties, P, x, T, e.y).composition
 
-    y_star_mean = star(x_mean, bulk.T_L[k])
-    x_out, T_out = profile.x[rows[k]], profile.T_L[rows[k]]
-    y_star_out, y_star_in = star(x_out, T_out), star(entering.x[k], entering.T_L[k])
+    star_mean, star_out, star_in = star(bulk.x, bulk.T_L), star(x_out, T_out), star(e.x, e.T_L)
     with np.errstate(divide="ignore", invalid="ignore"):
-        dy = y_out - y_in
-        m = (y_star_in - y_star_out) / (entering.x[k] - x_out)
-        S = m * (bulk.V[k] / bulk.L[k])[:, None]
-        N_OV = dy / (y_star_mean - y_mean)
-        N_V = dy / (total.y_I[k] - y_mean)
-        N_L = total.transferred[k] / bulk.L[k][:, None] / (total.x_I[k] - x_mean)
-        E = dy / (y_star_out - y_in)
-        argument = 1.0 + E * (S - 1.0)
-        near = np.abs(S - 1.0) < 1e-6
-        N_eq = np.where(near, E, np.log(np.where(argument > 0, argument, 1.0)) / np.log(np.where(S > 0, S, 1.0)))
-        HETP = Z[:, None] / N_eq
+        dy = result.composition_slope / bulk.V[:, None]
+        S = (star_in - star_out) / (e.x - x_out) * (bulk.V / bulk.L)[:, None]
+        N_OV = dy / (star_mean - bulk.y)
+        N_V = dy / (result.interface.y_I - bulk.y)
+        N_L = group.coefficients.area[:, None] * result.interface.N / bulk.L[:, None] / (result.interface.x_I - bulk.x)
         heights = [Z[:, None] / N for N in (N_OV, N_V, N_L)]
-    undefined = ~((argument > 0) & (S > 0) & np.isfinite(HETP)) | small_driving_force(y_in, y_star_out)
-    clean = [np.where(np.isfinite(value), value, 0.0) for value in (N_OV, N_V, N_L, *heights, S)]
-    return PackedRows(k, Z, *clean, np.where(undefined, 0.0, HETP), undefined)
+        near = np.abs(S - 1.0) < 1e-6
+        HETP = heights[0] * np.where(near, 1.0, np.log(np.where(S > 0, S, 1.0)) / np.where(near, 1.0, S - 1.0))
+    undefined = ~((S > 0) & (N_OV > 0) & np.isfinite(HETP)) | small_driving_force(bulk.y, star_mean)
+    n_ov, n_v, n_l, h_ov, h_v, h_l, s = (np.where(np.isfinite(value), value, 0.0)
+                                         for value in (N_OV, N_V, N_L, *heights, S))
+    return PackedRows(position, Z, n_ov, n_v, n_l, h_ov, h_v, h_l, s, np.where(undefined, 0.0, HETP), undefined)
+
+
+def _joined(parts: list[PackedRows]) -> PackedRows | None:
+    if not parts:
+        return None
+    order = np.argsort(np.concatenate([part.position for part in parts]))
+    return PackedRows(**{f.name: np.concatenate([getattr(part, f.name) for part in parts])[order]
+                         for f in fields(PackedRows)})

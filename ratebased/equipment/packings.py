@@ -2,12 +2,14 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Mapping
 from dataclasses import dataclass, field
 from typing import Any, Protocol
 
 import numpy as np
 
 from correlations import (
+    Correlation,
     Packing,
     packing,
     packing_area,
@@ -90,6 +92,9 @@ class RandomTransferMethod(Protocol):
     exponent: float
     """p of kappa_V ~ D^p, for the heat-transfer analogy of the vapour."""
 
+    correlations: Mapping[str, Correlation[..., Any]]
+    """The correlations used, by what for; "vapor", "liquid" and "area" carry the scatter."""
+
     def __call__(self, bed: RandomPacking, state: ContactState, calls: Calls) -> tuple[Array, Array, Array]:
         """(kappa_vapor, kappa_liquid) m/s of the pairs and the interfacial area, m2/m3."""
         ...
@@ -99,6 +104,9 @@ class Onda:
     """Onda, Takeuchi & Okumoto (1968): wetted area as interfacial area, both coefficients."""
 
     exponent = 2.0 / 3.0
+    correlations: Mapping[str, Correlation[..., Any]] = {
+        "vapor": packing_coefficients.onda_vapor, "liquid": packing_coefficients.onda_liquid,
+        "area": packing_area.onda}
 
     def __call__(self, bed: RandomPacking, state: ContactState, calls: Calls) -> tuple[Array, Array, Array]:
         """(kappa_vapor, kappa_liquid, area)."""
@@ -126,6 +134,8 @@ class Onda:
 class BravoFair(Onda):
     """Effective area of Bravo & Fair (1982) with the coefficients of Onda, Takeuchi & Okumoto. bed_height: m, a bed."""
 
+    correlations = {**Onda.correlations, "area": packing_area.bravo_fair}
+
     def __init__(self, bed_height: float) -> None:
         self.bed_height = positive_scalar("bed_height", bed_height)
 
@@ -144,6 +154,9 @@ class BilletSchultes:
     """Billet & Schultes (1999): area, holdup and both coefficients from the constants of the packing."""
 
     exponent = 2.0 / 3.0
+    correlations: Mapping[str, Correlation[..., Any]] = {
+        "vapor": packing_coefficients.billet_schultes_vapor, "liquid": packing_coefficients.billet_schultes_liquid,
+        "area": packing_area.billet_schultes, "holdup": packing_holdup.billet_schultes}
 
     def __call__(self, bed: PackedBed, state: ContactState, calls: Calls) -> tuple[Array, Array, Array]:
         """(kappa_vapor, kappa_liquid, area)."""
@@ -220,6 +233,18 @@ class RandomPacking(PackedBed):
             kappa_vapor=kappa_V, kappa_liquid=kappa_L, h_vapor=analogy(kappa_V, state.vapor, self.method.exponent),
             h_liquid=analogy(kappa_L, state.liquid, 0.5), area=area * self.cross_section * self.height(state),
             basis="interfacial area", notes=calls.notes)
+
+    @property
+    def correlations(self) -> dict[str, Correlation[..., Any]]:
+        """The correlations used, by what for."""
+        found = dict(self.method.correlations)
+        if self.billet is not None and self.billet.flooding is not None:
+            found["flooding"] = packing_limits.billet_schultes_flooding
+        elif self.packing_factor is not None:
+            found["flooding"] = packing_limits.generalized_flooding
+        if self.billet is not None and self.billet.friction is not None:
+            found["pressure drop"] = packing_pressure_drop.billet_schultes_wet_1993
+        return found
 
     def hydraulics(self, state: ContactState) -> Hydraulics:
         """Flooding by the constants of Billet & Schultes where given, else by the generalised line; holdup and pressure

@@ -5,12 +5,13 @@ Each takes the tray, its operation and the state and returns numbers of transfer
 """
 from __future__ import annotations
 
+from collections.abc import Mapping
 from dataclasses import dataclass
-from typing import TYPE_CHECKING, Protocol
+from typing import TYPE_CHECKING, Any, Protocol
 
 import numpy as np
 
-from correlations import mixing, tray_hydraulics, tray_transfer
+from correlations import Correlation, mixing, tray_hydraulics, tray_transfer
 
 from .calls import Calls
 from .protocol import Array, ContactState
@@ -44,6 +45,9 @@ class TrayTransferMethod(Protocol):
 
     exponent: float
     """p of kappa ~ D^p, for the heat-transfer analogy."""
+
+    correlations: Mapping[str, Correlation[..., Any]]
+    """The correlations used, by what for; "vapor" and "liquid" carry the scatter of the coefficients."""
 
     def __call__(self, tray: CrossFlowTray, operation: TrayOperation, state: ContactState,
                  calls: Calls) -> tuple[Array, Array]: ...
@@ -79,6 +83,10 @@ class _AIChEMixing:
 class AIChESieve(_AIChEMixing):
     """Two-film transfer units of sieve trays, AIChE Bubble-Tray Design Manual (1958)."""
 
+    correlations = {"vapor": tray_transfer.aiche_vapor_units, "liquid": tray_transfer.aiche_sieve_liquid_units,
+                    "clear liquid": tray_hydraulics.aiche_sieve_clear_liquid,
+                    "eddy diffusivity": mixing.aiche_eddy_diffusivity}
+
     def clear_liquid(self, tray: CrossFlowTray, operation: TrayOperation, state: ContactState, calls: Calls) -> Array:
         """Clear liquid height by the manual's own equation, m."""
         return calls(tray_hydraulics.aiche_sieve_clear_liquid, weir_height=tray.weir_height,
@@ -101,6 +109,10 @@ class AIChESieve(_AIChEMixing):
 
 class AIChEBubbleCap(_AIChEMixing):
     """Two-film transfer units of bubble-cap trays, AIChE Bubble-Tray Design Manual (1958)."""
+
+    correlations = {"vapor": tray_transfer.aiche_vapor_units, "liquid": tray_transfer.aiche_bubble_cap_liquid_units,
+                    "clear liquid": tray_hydraulics.aiche_bubble_cap_clear_liquid,
+                    "eddy diffusivity": mixing.aiche_eddy_diffusivity}
 
     def clear_liquid(self, tray: CrossFlowTray, operation: TrayOperation, state: ContactState, calls: Calls) -> Array:
         """Clear liquid height by the manual's own equation, m."""
@@ -125,6 +137,10 @@ class AIChEBubbleCap(_AIChEMixing):
 class ChanFair(_AIChEMixing):
     """Transfer units of sieve trays, Chan & Fair (1984), on the clear liquid of Bennett, Agrawal & Cook (1983)."""
 
+    correlations = {"vapor": tray_transfer.chan_fair_vapor, "liquid": tray_transfer.chan_fair_liquid,
+                    "clear liquid": tray_hydraulics.bennett_clear_liquid,
+                    "eddy diffusivity": mixing.aiche_eddy_diffusivity}
+
     def __call__(self, tray: CrossFlowTray, operation: TrayOperation, state: ContactState,
                  calls: Calls) -> tuple[Array, Array]:
         """N_V, N_L of the pairs."""
@@ -140,6 +156,10 @@ class ChanFair(_AIChEMixing):
 
 class ChenChuang(_AIChEMixing):
     """Transfer units of sieve trays in the froth regime, Chen & Chuang (1993)."""
+
+    correlations = {"vapor": tray_transfer.chen_chuang_vapor_units, "liquid": tray_transfer.chen_chuang_liquid_units,
+                    "clear liquid": tray_hydraulics.bennett_clear_liquid,
+                    "eddy diffusivity": mixing.aiche_eddy_diffusivity}
 
     def __call__(self, tray: CrossFlowTray, operation: TrayOperation, state: ContactState,
                  calls: Calls) -> tuple[Array, Array]:
@@ -161,6 +181,10 @@ class Zuiderweg(_AIChEMixing):
     """Coefficients and area of sieve trays, Zuiderweg (1982); spray or mixed regime below, emulsion flow above 3."""
 
     exponent = 0.25
+    correlations = {"vapor": tray_transfer.zuiderweg_vapor, "liquid": tray_transfer.zuiderweg_liquid,
+                    "area": tray_transfer.zuiderweg_spray_area,
+                    "clear liquid": tray_hydraulics.hofhuis_zuiderweg_clear_liquid,
+                    "eddy diffusivity": mixing.aiche_eddy_diffusivity}
 
     def clear_liquid(self, tray: CrossFlowTray, operation: TrayOperation, state: ContactState, calls: Calls) -> Array:
         """Clear liquid height by Hofhuis & Zuiderweg (1979), m."""

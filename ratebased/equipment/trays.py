@@ -4,11 +4,12 @@ from __future__ import annotations
 import math
 from dataclasses import dataclass, field
 from functools import cached_property
+from typing import Any
 
 import numpy as np
 from scipy.optimize import brentq
 
-from correlations import tray_hydraulics, tray_limits
+from correlations import Correlation, tray_hydraulics, tray_limits
 
 from ..arguments import positive_scalar
 from ..errors import InputError
@@ -127,6 +128,15 @@ class CrossFlowTray:
             kappa_vapor=kappa_V, kappa_liquid=kappa_L, h_vapor=analogy(kappa_V, state.vapor, self.method.exponent),
             h_liquid=analogy(kappa_L, state.liquid, self.method.exponent),
             area=np.full(state.V.shape, self.active_area), basis="active area", notes=calls.notes)
+
+    @property
+    def correlations(self) -> dict[str, Correlation[..., Any]]:
+        """The correlations used, by what for."""
+        return {**self.method.correlations, "flooding": tray_limits.fair_flooding,
+                "froth density": tray_hydraulics.bennett_froth_density,
+                "dry pressure drop": tray_hydraulics.sieve_dry_head, "weep point": tray_limits.froude_weep_point,
+                "entrainment": tray_limits.hunt_entrainment,
+                "downcomer backup": tray_hydraulics.downcomer_backup}
 
     def peclet(self, state: ContactState) -> Array:
         """Peclet number of the liquid along its path, (...)."""

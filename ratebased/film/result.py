@@ -46,6 +46,18 @@ class FilmDerivatives:
     dkappa: Array
 
 
+def regimes(N: Array, x0: Array, xd: Array) -> NDArray[np.str_]:
+    """How each component diffuses, (..., n): ordinary, osmotic, barrier or reverse; see `FilmFlux.regime`."""
+    D = np.broadcast_to(x0 - xd, N.shape)
+    J = N - 0.5 * (x0 + xd) * N.sum(-1, keepdims=True)
+    no_force = np.abs(D) <= REGIME_THRESHOLD * np.abs(D).max(-1, keepdims=True)
+    no_flux = np.abs(J) <= REGIME_THRESHOLD * np.abs(J).max(-1, keepdims=True)
+    names = np.where(J * D < 0, "reverse", "ordinary")
+    names = np.where(no_flux & ~no_force, "barrier", names)
+    names = np.where(no_force & ~no_flux, "osmotic", names)
+    return np.where(no_force & no_flux, "ordinary", names)
+
+
 @dataclass(frozen=True)
 class FilmFlux:
     """Fluxes through a film and the problem they answer. Fluxes are positive from face 0 to face delta.
@@ -159,14 +171,7 @@ class FilmFlux:
         each nil below `REGIME_THRESHOLD` of the largest of the film. osmotic: J_i without D_i; barrier: D_i without
         J_i; reverse: J_i D_i < 0; ordinary: the rest.
         """
-        D = np.broadcast_to(self.x0 - self.xd, self.N.shape)
-        J = self.N - 0.5 * (self.x0 + self.xd) * self.N_t[..., None]
-        no_force = np.abs(D) <= REGIME_THRESHOLD * np.abs(D).max(-1, keepdims=True)
-        no_flux = np.abs(J) <= REGIME_THRESHOLD * np.abs(J).max(-1, keepdims=True)
-        names = np.where(J * D < 0, "reverse", "ordinary")
-        names = np.where(no_flux & ~no_force, "barrier", names)
-        names = np.where(no_force & ~no_flux, "osmotic", names)
-        return np.where(no_force & no_flux, "ordinary", names)
+        return regimes(self.N, self.x0, self.xd)
 
     def blocks(self) -> FilmBlocks:
         """Residual and Jacobian of the film equations at N, with [Gamma] held constant. Raises InputError."""

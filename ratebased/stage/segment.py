@@ -3,11 +3,14 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
+import numpy as np
+
 from ..equipment.protocol import Array, TransferCoefficients
-from ..errors import ConvergenceError
 from ..interface import Bulk, InterfaceFlux, interface_flux
-from ..properties.protocol import PropertyModel
+from ..properties.protocol import Mask, PropertyModel
 from .tray import vapor_temperature
+
+LARGEST_SHARE = 0.9
 
 
 @dataclass(frozen=True)
@@ -15,7 +18,9 @@ class SegmentResult:
     """A packed segment with its ends given, batched over segments.
 
     V mol/s, y (..., n), T_V K: the vapour that would leave above, from the vapour below and the fluxes. transferred: to
-    the liquid, mol/s, (..., n). energy W. interface: at the mean bulk states.
+    the liquid, mol/s, (..., n). energy W. composition_slope: V dy_i over the segment by the fluxes at the mean states,
+    mol/s, (..., n). interface: at the mean bulk states. long: a component loses more than nine tenths of itself, more
+    than one mean state can tell.
     """
 
     V: Array
@@ -23,7 +28,9 @@ class SegmentResult:
     T_V: Array
     transferred: Array
     energy: Array
+    composition_slope: Array
     interface: InterfaceFlux
+    long: Mask
 
 
 def segment_between_ends(V_in: Array, y_in: Array, T_V_in: Array, vapor: tuple[Array, Array],
@@ -32,7 +39,8 @@ def segment_between_ends(V_in: Array, y_in: Array, T_V_in: Array, vapor: tuple[A
     """Transfer in a segment whose mean bulk states are known.
 
     V_in mol/s, y_in, T_V_in: the vapour that enters below. vapor, liquid: (mole fractions, temperature), the means of
-    the two ends. Raises `ConvergenceError` where the fluxes would take more of a component than enters.
+    the two ends. The transfer units of a segment follow from the fluxes alone; the leaving vapour is meant for short
+    segments, `long` says where one is not.
     """
     answer = interface_flux(
         Bulk(*vapor, coefficients.kappa_vapor, coefficients.h_vapor, c_vapor),
@@ -41,11 +49,14 @@ def segment_between_ends(V_in: Array, y_in: Array, T_V_in: Array, vapor: tuple[A
     transferred, energy = area[..., None] * answer.N, area * answer.energy_flux
     g_in = V_in[..., None] * y_in
     g_out = g_in - transferred
-    if (g_out < 0).any():
-        raise ConvergenceError("a packed segment takes more of a component than its vapour brings: the ends of its "
-                               "row are not those of this bed; use shorter segments", residual=g_out.min(-1),
-                               failed=(g_out < 0).any(-1))
+    long = (transferred > LARGEST_SHARE * g_in) & (transferred > 0)
+    if long.any():
+        # Beyond the reach of one mean state: the exponential decay that starts with the same slope instead.
+        share = transferred / np.where(g_in > 0, g_in, 1.0)
+        g_out = np.where(long, g_in * np.exp(-share), g_out)
+        transferred = g_in - g_out
     H_in = (g_in * properties.vapor_enthalpy(T_V_in, P, y_in)).sum(-1)
     T_V = vapor_temperature(properties, P, g_out, H_in - energy, vapor[1])
     V = g_out.sum(-1)
-    return SegmentResult(V, g_out / V[..., None], T_V, transferred, energy, answer)
+    slope = -area[..., None] * (answer.N - vapor[0] * answer.N.sum(-1, keepdims=True))
+    return SegmentResult(V, g_out / V[..., None], T_V, transferred, energy, slope, answer, long.any(-1))
