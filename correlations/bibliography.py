@@ -7,10 +7,7 @@ REFERENCES: dict[str, str] = {
     "bennett_1983": "Bennett, D. L., Agrawal, R., Cook, P. J., AIChE J. 29 (1983) 434.",
     "bennett_1997": "Bennett, D. L., Watson, D. N., Wiescinski, M. A., AIChE J. 43 (1997) 1611.",
     "billet_schultes_1993": "Billet, R., Schultes, M., Chem. Eng. Technol. 16 (1993) 1.",
-    "billet_schultes_1995": "Billet, R., Schultes, M., Chem. Eng. Technol. 18 (1995) 371.",
     "billet_schultes_1999": "Billet, R., Schultes, M., Trans. IChemE 77A (1999) 498.",
-    "bird_stewart_lightfoot": "Bird, R. B., Stewart, W. E., Lightfoot, E. N., Transport Phenomena, 2nd ed., "
-                              "Wiley (2002).",
     "bravo_fair_1982": "Bravo, J. L., Fair, J. R., Ind. Eng. Chem. Process Des. Dev. 21 (1982) 162.",
     "bravo_1985": "Bravo, J. L., Rocha, J. A., Fair, J. R., Hydrocarbon Process. 64(1) (1985) 91.",
     "bravo_1986": "Bravo, J. L., Rocha, J. A., Fair, J. R., Hydrocarbon Process. 65(3) (1986) 45.",
@@ -29,10 +26,8 @@ REFERENCES: dict[str, str] = {
     "fair_1961": "Fair, J. R., Petro/Chem. Eng. 33(10) (1961) 45.",
     "fuller_1966": "Fuller, E. N., Schettler, P. D., Giddings, J. C., Ind. Eng. Chem. 58(5) (1966) 18.",
     "fuller_1969": "Fuller, E. N., Ensley, K., Giddings, J. C., J. Phys. Chem. 73 (1969) 3679.",
-    "geankoplis": "Geankoplis, C. J., Transport Processes and Unit Operations, 3rd ed., Prentice Hall (1993).",
     "gerster_1958": "Gerster, J. A., Hill, A. B., Hochgraf, N. N., Robinson, D. G., Tray Efficiencies in Distillation "
                     "Columns, AIChE (1958).",
-    "hanley_chen_2012": "Hanley, B., Chen, C.-C., AIChE J. 58 (2012) 132.",
     "hayduk_laudie_1974": "Hayduk, W., Laudie, H., AIChE J. 20 (1974) 611.",
     "hayduk_minhas_1982": "Hayduk, W., Minhas, B. S., Can. J. Chem. Eng. 60 (1982) 295.",
     "henriques_de_brito_1994": "Henriques de Brito, M., von Stockar, U., Menendez Bangerter, A., Bomio, P., Laso, M., "
@@ -45,7 +40,6 @@ REFERENCES: dict[str, str] = {
     "kister_haas_1990": "Kister, H. Z., Haas, J. R., Chem. Eng. Prog. 86(9) (1990) 63.",
     "klein_1982": "Klein, G. F., Chem. Eng. 89(9) (1982) 81.",
     "kooijman_taylor_1991": "Kooijman, H. A., Taylor, R., Ind. Eng. Chem. Res. 30 (1991) 1217.",
-    "krishna_taylor": "Taylor, R., Krishna, R., Multicomponent Mass Transfer, Wiley (1993).",
     "le_bas_1915": "Le Bas, G., The Molecular Volumes of Liquid Chemical Compounds, Longmans (1915).",
     "leffler_cullinan_1970": "Leffler, J., Cullinan, H. T., Ind. Eng. Chem. Fundam. 9 (1970) 84.",
     "leibson_1957": "Leibson, I., Kelley, R. E., Bullington, L. A., Pet. Refiner 36(2) (1957) 127.",
@@ -60,13 +54,10 @@ REFERENCES: dict[str, str] = {
     "onda_1967": "Onda, K., Takeuchi, H., Koyama, Y., Kagaku Kogaku 31 (1967) 126.",
     "onda_1968": "Onda, K., Takeuchi, H., Okumoto, Y., J. Chem. Eng. Jpn. 1 (1968) 56.",
     "perkins_geankoplis_1969": "Perkins, L. R., Geankoplis, C. J., Chem. Eng. Sci. 24 (1969) 1035.",
-    "poling": "Poling, B. E., Prausnitz, J. M., O'Connell, J. P., The Properties of Gases and Liquids, 5th ed., "
-              "McGraw-Hill (2001).",
     "robbins_1991": "Robbins, L. A., Chem. Eng. Prog. 87(5) (1991) 87.",
     "rocha_1993": "Rocha, J. A., Bravo, J. L., Fair, J. R., Ind. Eng. Chem. Res. 32 (1993) 641.",
     "rocha_1996": "Rocha, J. A., Bravo, J. L., Fair, J. R., Ind. Eng. Chem. Res. 35 (1996) 1660.",
     "schmidt_1979": "Schmidt, R., IChemE Symp. Ser. 56 (1979) 3.1/1.",
-    "seader_henley": "Seader, J. D., Henley, E. J., Separation Process Principles, Wiley (1998).",
     "schroeder": "Schroeder's additive volumes, as given in Poling, Prausnitz and O'Connell, The Properties of Gases "
                  "and Liquids, 5th ed. (2001).",
     "shulman_1955": "Shulman, H. L., Ullrich, C. F., Proulx, A. Z., Zimmerman, J. O., AIChE J. 1 (1955) 253.",

@@ -166,31 +166,48 @@ def kister_gill_revised(packing_factor: Values) -> Array:
     return INCH_WATER_PER_FOOT * np.where(F > 60, 2.0, 0.12 * F ** 0.7)
 
 
-def _stichlmair_flood(liquid_velocity: Array, vapor_density: Array, vapor_viscosity: Array, liquid_density: Array,
-                      a: Array, eps: Array, C_1: Array, C_2: Array, C_3: Array, factor: Array) -> tuple[Array, Array]:
-    """Vapour velocity and y = dP/(rho_L g H) at flooding for a fixed liquid velocity."""
-    h_0 = 0.555 * np.cbrt(liquid_velocity ** 2 * a / (GRAVITY * eps ** 4.65))
-    if (h_0 >= eps).any():
-        raise NoPhysicalRootError("liquid_velocity: the liquid alone fills the bed")
-    d_p = 6 * (1 - eps) / a
-    top = np.sqrt((eps / h_0 - 1) / factor)
-    u = np.ones(np.broadcast_shapes(np.shape(h_0), np.shape(d_p)))
-    for _ in range(100):  # the exponent c, hence y, depends weakly on u
-        f_0, c = stichlmair_friction(u, vapor_density, vapor_viscosity, a, eps, C_1, C_2, C_3)
+class _StichlmairBed(NamedTuple):
+    """Arguments of the two flooding functions, broadcast."""
+
+    vapor_density: Array
+    vapor_viscosity: Array
+    liquid_density: Array
+    specific_area: Array
+    void_fraction: Array
+    laminar_friction: Array
+    transition_friction: Array
+    turbulent_friction: Array
+    loading_factor: Array
+
+    def flood(self, u: Array, liquid_velocity: Array) -> tuple[Array, Array]:
+        """y = dP/(rho_L g H) at the fold, and the log of the pressure drop at `u` over it."""
+        eps, a = self.void_fraction, self.specific_area
+        h_0 = 0.555 * np.cbrt(liquid_velocity ** 2 * a / (GRAVITY * eps ** 4.65))
+        f_0, c = stichlmair_friction(u, self.vapor_density, self.vapor_viscosity, a, eps, self.laminar_friction,
+                                     self.transition_friction, self.turbulent_friction)
         power = (2 + c) / 3
+        # With z = h - h_0 the condition of the fold is a quadratic in z.
+        solid, free = 1 - eps + h_0, eps - h_0
+        square, linear = 9.3 - 2 * power + 1, (2 * power - 1) * free + 10.3 * solid
+        z = 2 * solid * free / (linear + np.sqrt(linear ** 2 + 4 * square * solid * free))
+        y = np.sqrt(z / (self.loading_factor * h_0))
+        wet = ((solid + z) / (1 - eps)) ** power * (eps / (free - z)) ** 4.65
+        dry = 0.75 * f_0 * a / 6 / eps ** 4.65 * self.vapor_density * u ** 2 / (self.liquid_density * GRAVITY)
+        return y, np.log(dry * wet / y)
 
-        def slope(y: Array, power: Array = power) -> Array:
-            h = h_0 * (1 + factor * y ** 2)
-            return 1 / (2 * factor * h_0 * y ** 2) * (eps - h) - power * (eps - h) / (1 - eps + h) - 4.65
+    def full(self) -> Array:
+        """Liquid velocity at which the holdup without vapour fills the bed."""
+        eps = self.void_fraction
+        return np.sqrt((eps / 0.555) ** 3 * GRAVITY * eps ** 4.65 / self.specific_area)
 
-        y = bracketed_root(slope, 1e-9 * top, top)
-        h = h_0 * (1 + factor * y ** 2)
-        dry = y * liquid_density * GRAVITY / (((1 - eps + h) / (1 - eps)) ** power * (eps / (eps - h)) ** 4.65)
-        before = u
-        u = np.sqrt(dry * d_p * eps ** 4.65 / (0.75 * f_0 * (1 - eps) * vapor_density))
-        if (np.abs(u - before) <= 1e-12 * u).all():
-            return u, y
-    raise NoPhysicalRootError("liquid_velocity: no flooding point found")
+
+def _stichlmair_bed(liquid: Array, *arguments: Array) -> tuple[_StichlmairBed, Array]:
+    """The bed and the argument that fixes the liquid, all of one shape."""
+    liquid, *rest = np.broadcast_arrays(liquid, *arguments)
+    bed = _StichlmairBed(*rest)
+    total = bed.laminar_friction + bed.transition_friction + bed.turbulent_friction
+    require("turbulent_friction", bed.turbulent_friction, total > 0, "at least one friction constant above zero")
+    return bed, liquid
 
 
 _FLOOD_SBF = Validity({}, None, "stichlmair_1989", Confidence.CROSS_CHECKED,
@@ -209,9 +226,16 @@ def stichlmair_flooding_at_liquid_velocity(liquid_velocity: Values, vapor_densit
     Where d(dP)/du is infinite: 1/y^2 = 40 ((2 + c)/3 h_0/(1 - eps + h) + 4.65 h_0/(eps - h)), y = dP/(rho_L g H).
     `NoPhysicalRootError` where the liquid alone fills the bed.
     """
-    u, y = _stichlmair_flood(liquid_velocity, vapor_density, vapor_viscosity, liquid_density, specific_area,
-                             void_fraction, laminar_friction, transition_friction, turbulent_friction, loading_factor)
-    return FloodState(u, y * liquid_density * GRAVITY)
+    bed, liquid = _stichlmair_bed(liquid_velocity, vapor_density, vapor_viscosity, liquid_density, specific_area,
+                                  void_fraction, laminar_friction, transition_friction, turbulent_friction,
+                                  loading_factor)
+    if (liquid >= bed.full()).any():
+        raise NoPhysicalRootError("liquid_velocity: the liquid alone fills the bed")
+    high = np.ones(liquid.shape)
+    while (short := bed.flood(high, liquid)[1] < 0).any():
+        high = np.where(short, 2 * high, high)
+    u = bracketed_root(lambda u: bed.flood(u, liquid)[1], 1e-9 * high, high)
+    return FloodState(u, bed.flood(u, liquid)[0] * bed.liquid_density * GRAVITY)
 
 
 @correlation("flooding velocity and pressure drop", "random and structured packings", "m s-1; Pa m-1", _FLOOD_SBF)
@@ -220,21 +244,13 @@ def stichlmair_flooding(flow_ratio: Values, vapor_density: Values, vapor_viscosi
                         transition_friction: Values, turbulent_friction: Values, *,
                         loading_factor: Values = 20.0) -> FloodState:
     """Flooding of the method of Stichlmair, Bravo and Fair for a fixed L/V [m/s; Pa/m]: see the form at fixed u_L."""
-    slip = flow_ratio * vapor_density / liquid_density
-    # The liquid velocity at which h_0 would fill the bed bounds the liquid, hence the vapour, from above.
-    full = np.sqrt((void_fraction / 0.555) ** 3 * GRAVITY * void_fraction ** 4.65 / specific_area)
-    shape = np.broadcast_shapes(*(np.shape(v) for v in (slip, full, vapor_viscosity, laminar_friction,
-                                                        transition_friction, turbulent_friction, loading_factor)))
-    full = np.broadcast_to(full, shape)
-
-    def flood(liquid_velocity: Array) -> tuple[Array, Array]:
-        return _stichlmair_flood(liquid_velocity, vapor_density, vapor_viscosity, liquid_density, specific_area,
+    bed, ratio = _stichlmair_bed(flow_ratio, vapor_density, vapor_viscosity, liquid_density, specific_area,
                                  void_fraction, laminar_friction, transition_friction, turbulent_friction,
                                  loading_factor)
-
-    liquid = bracketed_root(lambda u: flood(u)[0] * slip - u, 1e-9 * full, (1 - 1e-9) * full)
-    u, y = flood(liquid)
-    return FloodState(u, y * liquid_density * GRAVITY)
+    slip = ratio * bed.vapor_density / bed.liquid_density
+    high = bed.full() / slip  # there the holdup without vapour fills the bed: flooding lies below
+    u = bracketed_root(lambda u: bed.flood(u, slip * u)[1], 1e-9 * high, (1 - 1e-12) * high)
+    return FloodState(u, bed.flood(u, slip * u)[0] * bed.liquid_density * GRAVITY)
 
 
 @correlation("minimum liquid velocity", "random packings", "m s-1", Validity(

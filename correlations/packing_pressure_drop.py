@@ -138,10 +138,9 @@ def stichlmair(vapor_velocity: Values, vapor_density: Values, vapor_viscosity: V
         if beyond.any():
             raise NoPhysicalRootError(f"vapor_velocity: the bed is beyond flooding in {int(beyond.sum())} of "
                                       f"{beyond.size} entries")
-        step = (wet - y) / (1 - slope)
-        y = y + step
-        if (np.abs(step) <= 1e-13 * y).all():
-            return HoldupAndPressureDrop(h_0 * (1 + factor * y ** 2), y * weight)
+        if (np.abs(wet - y) <= 1e-14 * wet).all():
+            return HoldupAndPressureDrop(h, y * weight)
+        y = y + (wet - y) / (1 - slope)
     raise NoPhysicalRootError("vapor_velocity: the bed is at its flooding point within rounding")
 
 
@@ -237,8 +236,7 @@ def rocha_bravo_fair(vapor_velocity: Values, vapor_density: Values, vapor_viscos
         if beyond.any():
             raise NoPhysicalRootError(f"vapor_velocity: the bed is beyond flooding in {int(beyond.sum())} of "
                                       f"{beyond.size} entries")
-        step = (wet - y) / (1 - slope)
-        y = y + step
-        if (np.abs(step) <= 1e-13 * y).all():
-            return HoldupAndPressureDrop(still * (1 - y) ** (-1 / 3), y * flood_pressure_gradient)
+        if (np.abs(wet - y) <= 1e-14 * wet).all():
+            return HoldupAndPressureDrop(h, y * flood_pressure_gradient)
+        y = y + (wet - y) / (1 - slope)
     raise NoPhysicalRootError("vapor_velocity: the bed is at its flooding point within rounding")

@@ -255,16 +255,6 @@ class TestRandomPacking:
         k_L = packing_coefficients.shulman_liquid(4.71e-10, 2.71 / 840, 840.0, 2e-3, 0.0472)
         assert_allclose(k_L, 1.15682e-4, rtol=RTOL)
 
-    def test_hanley_chen(self):
-        bed = dict(specific_area=250.0, void_fraction=0.97)
-        a = pick(HC, packing_area.hanley_chen_sheet, liquid_velocity=0.005, vapor_velocity=1.3,
-                 corrugation_angle=ANGLE, **bed)
-        assert_allclose(a / 250, 1.94560, rtol=RTOL)
-        k_G = pick(HC, packing_coefficients.hanley_chen_sheet_vapor, diffusivity=4.5e-6, vapor_velocity=1.3,
-                   corrugation_angle=ANGLE, **bed)
-        k_L = pick(HC, packing_coefficients.hanley_chen_sheet_liquid, diffusivity=4.0e-9, liquid_velocity=0.005, **bed)
-        assert_allclose([k_G, k_L], [0.0148650, 7.73697e-5], rtol=RTOL)
-
 
 class TestStructuredPacking:
     u_G, u_L = 1.30, 0.0050
