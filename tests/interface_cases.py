@@ -167,11 +167,13 @@ def _draw(rng, kind, n, B, condensable, volatile, limit, interaction, floor):
     fine &= np.isfinite(T_L) & (np.abs(T_L - T_I) < 90) & (T_L > 240)
     if kind == "high-flux":
         fine &= np.abs(N.sum(1)) > 2.0 * c_V * typical
-    y, x = y / y.sum(1, keepdims=True), x / x.sum(1, keepdims=True)
     out = {"y": y, "x": x, "T_V": T_V, "T_L": T_L, "P": P, "kappa_V": kappa_V, "kappa_L": kappa_L, "c_V": c_V,
            "c_L": c_L, "h_V": h_V, "h_L": h_L, "cp_V": cp_V, "cp_L": cp_L, "latent": latent, "T_ref": T_ref,
            "alpha": alpha, "a": a, "b": b, "A": A, "N": N, "x_I": x_I, "T_I": T_I}
-    return {k: v[fine] for k, v in out.items()}
+    out = {k: v[fine] for k, v in out.items()}
+    for k in ("y", "x"):
+        out[k] /= out[k].sum(1, keepdims=True)
+    return out
 
 
 def _norm(A):

@@ -109,10 +109,11 @@ def _derivatives(problem: InterfaceProblem, blocks: InterfaceBlocks,
     dE = blocks.dE_V_dw + (blocks.dE_V_dz[:, None, :] @ dz)[:, 0]
     dq = blocks.dq_vapor_bulk_dw + (blocks.dq_vapor_bulk_dz[:, None, :] @ dz)[:, 0]
     for slopes in (dz, dE, dq):                               # from along e_j - e_n to mole numbers
-        for first, fractions in ((0, problem.y), (n + 1, problem.x)):
+        for first, fractions, present in ((0, problem.y, problem.volatile), (n + 1, problem.x, problem.condensable)):
             part = slopes[..., first:first + n]
             weights = fractions if slopes.ndim == 2 else fractions[:, None, :]
             part -= (part * weights).sum(-1, keepdims=True)
+            part[..., ~present] = 0.0
     dz[:, :n][:, ~problem.ordinary] = 0.0
     w = 2 * n + 2
     return InterfaceDerivatives(shaped(dz[:, :n], n, w), shaped(dE, w), shaped(dq, w), shaped(dz[:, 2 * n], w),

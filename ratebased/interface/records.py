@@ -59,7 +59,8 @@ class InterfaceDerivatives:
 
     dN (..., n, 2n+2); dE, dq_vapor_bulk, dT_I (..., 2n+2); dz (..., 2n+1, 2n+2): of all unknowns (N, u, T_I).
     By fractions they are mole-number derivatives at one mole in all, d/dg_j at sum g = 1: no column depends on the
-    order of the components, and the chain rule through component flows, dy_i/dg_j = (delta_ij - y_i)/G, holds.
+    order of the components, and the chain rule through component flows, dy_i/dg_j = (delta_ij - y_i)/G, holds. The
+    column of a component that cannot be in the phase is zero.
     """
 
     dN: Array

@@ -74,17 +74,27 @@ def bulks_from_interface(N: ArrayLike, properties: PropertyModel, P: ArrayLike, 
                                 h_V.shape, h_L.shape)
     flux, T = np.broadcast_to(flux, (*shape, n)), np.broadcast_to(T, shape)
     x_face, y_face = np.broadcast_to(x_face, (*shape, n)), np.broadcast_to(y_face, (*shape, n))
-    y = _walk(flux, resistances(k_V, c_V), y_face, -1, getattr(properties, "vapor_thermodynamic_factor", None), T,
-              pressure, volatile, properties, "vapor")
-    x = _walk(flux, resistances(k_L, c_L), x_face, 1, properties.thermodynamic_factor, T, pressure, condensable,
-              properties, "liquid")
+    T_V, T_L = T, T
     if vapor_temperature is not None:
         T_V = np.broadcast_to(positive_array("vapor_temperature", vapor_temperature), shape)
-        E = _energy(properties, flux, T, T_V, pressure, y, h_V, 1)[0]
-    elif energy_flux is not None:
-        E = np.broadcast_to(finite_array("energy_flux", energy_flux), shape)
-        T_V = _bulk_temperature(properties, flux, T, pressure, y, h_V, E, 1)
-    T_L = _bulk_temperature(properties, flux, T, pressure, x, h_L, E, -1)
+    given = None if energy_flux is None else np.broadcast_to(finite_array("energy_flux", energy_flux), shape)
+    # [Gamma] belongs to the mean temperature of a film, the bulk temperature to the composition: a few rounds
+    for _ in range(MAX_STEPS):
+        y = _walk(flux, resistances(k_V, c_V), y_face, -1, getattr(properties, "vapor_thermodynamic_factor", None),
+                  0.5 * (T + T_V), pressure, volatile, properties, "vapor")
+        x = _walk(flux, resistances(k_L, c_L), x_face, 1, properties.thermodynamic_factor, 0.5 * (T + T_L), pressure,
+                  condensable, properties, "liquid")
+        before_V, before_L = T_V, T_L
+        if given is None:
+            E = _energy(properties, flux, T, T_V, pressure, y, h_V, 1)[0]
+        else:
+            E, T_V = given, _bulk_temperature(properties, flux, T, pressure, y, h_V, given, 1)
+        T_L = _bulk_temperature(properties, flux, T, pressure, x, h_L, E, -1)
+        moved = np.maximum(np.abs(T_V - before_V), np.abs(T_L - before_L))
+        if moved.max(initial=0.0) < 1e-10 * T.max(initial=1.0):
+            break
+    else:
+        raise ConvergenceError("bulk states behind non-ideal films not found", best=(y, T_V, x, T_L), residual=moved)
     return Bulk(y, np.array(T_V), k_V, h_V, c_V), Bulk(x, T_L, k_L, h_L, c_L)
 
 

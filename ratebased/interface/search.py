@@ -27,7 +27,8 @@ PROFILE = 17
 
 
 def solutions(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: ArrayLike, *,
-              film: FilmMethod = krishna_standart, starts: int = 240, seed: int = 0, tolerance: float = 1e-10) -> InterfaceFlux:
+              film: FilmMethod = krishna_standart, starts: int = 240, seed: int = 0,
+              tolerance: float = 1e-10) -> InterfaceFlux:
     """All distinct physical solutions of one interface, on a leading axis: (roots,) batch.
 
     Newton from `starts` seeded points: T_I from 60 K below to 60 K above the bulk temperatures, the fluxes zero in a
