@@ -28,7 +28,7 @@ EQUATIONS = {"peng-robinson": PENG_ROBINSON, "soave": SOAVE}
 _ACIDS = 42
 """Group COOH of the original UNIFAC table: organic acids diffuse as dimers in most solvents."""
 
-HenryArgument = Sequence[str] | Mapping[str, Mapping[str, HenryConstant]]
+HenryArgument = Sequence[str] | Mapping[str, Mapping[str, HenryConstant | Mapping[str, float]]]
 Model = TypeVar("Model", bound="ThermoProperties")
 CubicModel = TypeVar("CubicModel", bound="CubicProperties")
 
@@ -51,7 +51,8 @@ def build(model: type[Model], names: Sequence[str], activity: str | ActivityMode
     noncondensing : components that stay in the vapour.
     nonvolatile : components that stay in the liquid.
     henry : gases dissolved by Henry's law: a list of names for the constants in water of `henry.IN_WATER`, or
-        {gas: {solvent: HenryConstant}}, every liquid of the mixture being a solvent.
+        {gas: {solvent: HenryConstant}}, every liquid of the mixture being a solvent (or, in place of the object, a
+        mapping of its arguments).
     parameters : those of "nrtl", "wilson", "uniquac": keyword arguments of `Nrtl`, `Wilson`, `Uniquac` (matrices over
         the components that are liquids of their own, in the order of `names`).
     vapor : "ideal", "virial", "peng-robinson", "soave", or a model of your own; k_ij its interaction parameters.
@@ -154,6 +155,8 @@ def _henry_law(data: ComponentData, roles: Sequence[Role], liquids: Sequence[int
         for j in liquids:
             solvent = data.names[j]
             constant = given.get(solvent)
+            if isinstance(constant, Mapping):
+                constant = _henry_constant(f"henry[{gas!r}][{solvent!r}]", constant)
             if constant is None and data.cas[j] == WATER:
                 constant = IN_WATER.get(data.cas[i])
             if constant is None:
@@ -162,6 +165,14 @@ def _henry_law(data: ComponentData, roles: Sequence[Role], liquids: Sequence[int
             row.append(constant)
         rows.append(row)
     return HenryLaw(rows) if rows else None
+
+
+def _henry_constant(label: str, numbers: Mapping[str, float]) -> HenryConstant:
+    """A constant written as a table of numbers, as it stands in a case file."""
+    try:
+        return HenryConstant(**numbers)  # type: ignore[arg-type]
+    except TypeError as error:
+        raise InputError(f"{label}: expected reference and slope, perhaps c, d and source ({error})") from error
 
 
 def _activity(data: ComponentData, liquids: Sequence[int], word: str, parameters: Mapping[str, ArrayLike] | None

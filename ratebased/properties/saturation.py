@@ -132,7 +132,8 @@ class _Problem:
         """The problems of a mask over the batch; a model that varies over the batch gives the model of some entries."""
         own = getattr(self.properties, "entries", None)
         model = self.properties if own is None else own(np.flatnonzero(chosen))
-        return replace(self, properties=model, P=self.P[chosen], z=self.z[chosen], fixed=self.fixed[chosen], present=self.present[chosen])
+        return replace(self, properties=model, P=self.P[chosen], z=self.z[chosen], fixed=self.fixed[chosen],
+                       present=self.present[chosen])
 
     def _composition(self, ln_w: Array) -> Array:
         """w from its logarithms, scaled so that it sums to one in every iterate: no model sees anything else."""

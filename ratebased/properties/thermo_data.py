@@ -14,6 +14,7 @@ from typing import Any
 
 import numpy as np
 
+from correlations.errors import InputError as CorrelationInputError
 from correlations.gas_diffusivity import diffusion_volume
 from correlations.molar_volume import tyn_calus
 
@@ -361,8 +362,13 @@ def _diffusion_volume(data: ComponentData, component: int) -> float:
         return diffusion_volume("air")
     atoms = data.constants.atomss[data.index(component)]
     smiles = data.constants.smiless[data.index(component)]
-    return diffusion_volume({element: int(count) for element, count in atoms.items()},
-                            aromatic_rings=counted_rings(smiles) if smiles else 0)
+    if not atoms:
+        raise InputError(f"{data.names[component]}: the data library has no formula, so no diffusion volume")
+    try:
+        return diffusion_volume({element: int(count) for element, count in atoms.items()},
+                                aromatic_rings=counted_rings(smiles) if smiles else 0)
+    except CorrelationInputError as error:
+        raise InputError(f"{data.names[component]}: no diffusion volume ({error})") from error
 
 
 def _constant_records(data: ComponentData) -> list[PropertyRecord]:

@@ -256,6 +256,17 @@ def test_dissolved_gas_leaves_the_mixing_rules_alone():
     assert model.bubble_point(P, [1e-5, 1 - 1e-5])[0] < water.bubble_point(P, [1.0])[0]
 
 
+def test_henry_constants_as_tables_of_numbers():
+    """As they come out of a case file."""
+    table = {"oxygen": {"water": {"reference": 4.3e9, "slope": 1600.0}, "ethanol": {"reference": 1.7e8, "slope": 0.0}}}
+    objects = {gas: {solvent: HenryConstant(**numbers) for solvent, numbers in row.items()}
+               for gas, row in table.items()}
+    x = [1e-5, 0.5, 0.49999]
+    one, two = (ThermoProperties.from_names(["oxygen", "water", "ethanol"], henry=henry, T_range=(285.0, 350.0))
+                for henry in (table, objects))
+    np.testing.assert_array_equal(one.k_value(310.0, P, x, x), two.k_value(310.0, P, x, x))
+
+
 def test_nonvolatile_component():
     model = ThermoProperties.from_names(["ethanol", "water", "ethylene glycol"], nonvolatile=["ethylene glycol"],
                                         T_range=(290.0, 400.0))
@@ -282,6 +293,10 @@ def test_nonvolatile_component():
     (lambda: ThermoProperties.from_names(["ethanol", "water"], henry=["argon"]), "argon"),
     (lambda: ThermoProperties.from_names(["oxygen", "ethanol"], henry=["oxygen"], T_range=(290, 350)),
      "oxygen in ethanol"),
+    (lambda: ThermoProperties.from_names(["oxygen", "water"], henry={"oxygen": {"water": {"slope": 1.0}}},
+                                         T_range=(290, 350)), "reference"),
+    (lambda: ThermoProperties.from_names(["tetramethylsilane", "water"], "ideal", T_range=(290, 350)),
+     "tetramethylsilane: no diffusion volume"),
     (lambda: ThermoProperties.from_names(["ethanol", "water"], "nrtl"), "nrtl needs"),
     (lambda: ThermoProperties.from_names(["ethanol", "water"], "nrtl", parameters={"taub": 0}), "taub"),
     (lambda: ThermoProperties.from_names(["ethanol", "water"], "margules"), "expected one of ideal, unifac"),

@@ -17,7 +17,7 @@ def water():
 
 @pytest.mark.parametrize("t, p, latent, density, viscosity, conductivity, tension", ROWS)
 def test_saturated_water(water, t, p, latent, density, viscosity, conductivity, tension):
-    """Pressure, density and tension to the printed rounding, viscosity within 0.3, conductivity 0.4, latent heat 0.05 %."""
+    """Pressure, density, tension to the printed rounding; viscosity 0.3, conductivity 0.4, latent heat 0.05 %."""
     T, P, x = t + 273.15, p * 1e3, [1.0]
     assert water.k_value(T, P, x, x)[0] == pytest.approx(1.0, rel=2e-4)
     released = (water.vapor_enthalpy(T, P, x) - water.liquid_enthalpy(T, P, x))[0]
