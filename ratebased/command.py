@@ -69,7 +69,8 @@ def _rate(options: argparse.Namespace) -> None:
     with _progress("reading case, building properties"):
         case = read_rate_case(options.case)
     with _progress(f"rating {int(case.profile.contact.sum())} stages"):
-        table = efficiency_table(case.profile, case.hardware, case.properties, options=case.options)
+        table = efficiency_table(case.profile, case.hardware, case.properties, options=case.options,
+                                 uncertainty=case.uncertainty)
     folder = options.out or options.case.parent / "results"
     written = write_table(table, folder, title=case.title, inputs=case.files)
     print(written[options.format] if options.format != "text" else f"{case.title}\n\n{table}")

@@ -44,6 +44,7 @@ def write_table(table: EfficiencyTable, folder: Path, *, title: str, inputs: Seq
     record = {
         "title": title, "caution": CAUTION, "legend": table.legend(), "version": version("ratebased"),
         "inputs_sha256": sums, "components": list(table.rows.names), "murphree_basis": table.rows.star_basis,
+        "odd_rows": table.remarkable(),
         "rows": [{key: _plain(value) for key, value in row.items()} for row in frame.to_dict("records")]}
     texts = {
         "csv": csv,

@@ -8,6 +8,8 @@
     [[hardware]]   see `hardware.hardware_from`
     [rate]         optional: point ("midpoint" or "integral"), mixing ("pools", "mixed" or "plug"),
                    driving_force_limit, at_liquid_temperature, local_coefficients
+    [uncertainty]  optional: asks for intervals; vapor, liquid, area, vapor_diffusivity, liquid_diffusivity, k_value,
+                   assumed (relative standard deviations), samples, seed
 """
 from __future__ import annotations
 
@@ -15,8 +17,9 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from ..efficiency import RatingOptions
+from ..efficiency import RatingOptions, Uncertainty
 from ..equipment import Section
+from ..errors import InputError
 from ..stage import PlugFlow, WellMixed, exponential_midpoint, integral
 from ..stage_profile import ProfileDraw, ProfileFeed, StageProfile
 from ..toml_table import TomlTable
@@ -39,6 +42,7 @@ class RateCase:
     profile: StageProfile
     hardware: tuple[Section, ...]
     options: RatingOptions
+    uncertainty: Uncertainty | None
     files: tuple[Path, ...]
 
 
@@ -57,9 +61,10 @@ def read_rate_case(path: Path) -> RateCase:
                                     draws=[_draw(t) for t in top.tables("draw")], **tolerances)
     sections = hardware_from(top.tables("hardware"), profile)
     options = _options(top.table("rate", required=False))
+    uncertainty = _uncertainty(top.table("uncertainty")) if top.has("uncertainty") else None
     top.finish()
     properties = properties_from(mixture, profile)
-    return RateCase(title, properties, profile, sections, options, (path, file))
+    return RateCase(title, properties, profile, sections, options, uncertainty, (path, file))
 
 
 def _feed(table: TomlTable, names: list[str]) -> ProfileFeed:
@@ -73,6 +78,20 @@ def _draw(table: TomlTable) -> ProfileDraw:
     draw = ProfileDraw(table.whole("stage"), table.text("phase"), table.number("flow_mol_s", above=0.0))
     table.finish()
     return draw
+
+
+def _uncertainty(table: TomlTable) -> Uncertainty:
+    spreads = {key: table.optional_number(key) for key in (
+        "vapor", "liquid", "area", "vapor_diffusivity", "liquid_diffusivity")}
+    default = Uncertainty()
+    try:
+        found = Uncertainty(**spreads, k_value=table.number("k_value", default.k_value),
+                            assumed=table.number("assumed", default.assumed),
+                            samples=table.whole("samples", default.samples), seed=table.whole("seed", default.seed))
+    except InputError as error:
+        raise error if table.where in str(error) else InputError(f"{table.where}: {error}") from error
+    table.finish()
+    return found
 
 
 def _options(table: TomlTable) -> RatingOptions:

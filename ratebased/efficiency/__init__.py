@@ -10,9 +10,10 @@ from .definitions import (
 )
 from .rating import PackedRows, RatedRows, RatingOptions, rate_rows
 from .table import EfficiencyTable, efficiency_table
+from .uncertainty import Interval, Uncertainty, UncertaintyResult, sample_rows
 
 __all__ = [
-    "EfficiencyTable", "EquilibriumVapor", "PackedRows", "RatedRows", "RatingOptions", "efficiency_table",
-    "equilibrium_vapor", "hausen", "murphree_liquid", "murphree_vapor", "rate_rows", "small_driving_force",
-    "vaporization",
+    "EfficiencyTable", "EquilibriumVapor", "Interval", "PackedRows", "RatedRows", "RatingOptions", "Uncertainty",
+    "UncertaintyResult", "efficiency_table", "equilibrium_vapor", "hausen", "murphree_liquid", "murphree_vapor",
+    "rate_rows", "sample_rows", "small_driving_force", "vaporization",
 ]

@@ -105,11 +105,11 @@ class RatedRows:
 
     ordinary: components in both phases, (n). number, kind; P Pa; T_L, T_V_in, T_V (of the computed vapour), T_bubble
     (of the leaving liquid, None on the liquid-temperature basis), K; V_in, V_out, L mol/s; x, y_in, y_out, y_star,
-    y_profile. murphree, and `flagged` where its driving force is too small; vaporization; dependent: the component with
-    the largest y_out, to be left out when n-1 efficiencies are used. flux mol/(m2 s), transferred mol/s, energy W; area
+    y_profile. murphree; point_murphree: of the froth over the leaving liquid; flagged: a driving force too small for
+    either; vaporization; dependent: the component with the largest y_out, to be left out when n-1 are used. flux mol/(m2 s), transferred mol/s, energy W; area
     m2 and its basis. interface_residual, energy_residual: of the interfaces; component_closure, energy_closure: of the
-    balances. vapor_entropy_share: of the vapour film at the middle of the froth. hydraulics; pools: number in series;
-    interfaces: (rows, interface at the middle of the froth or segment) of each group; notes: remark -> rows.
+    balances. vapor_entropy_share: of the vapour film at the middle of the froth. hydraulics; pools: number in series.
+    interfaces: (rows, interface at the middle of the froth or of the segment) of each group. notes: remark -> rows.
     """
 
     names: tuple[str, ...]
@@ -130,6 +130,7 @@ class RatedRows:
     y_star: Array
     y_profile: Array
     murphree: Array
+    point_murphree: Array
     flagged: Mask
     vaporization: Array
     dependent: NDArray[np.int64]
@@ -232,7 +233,8 @@ def rate_rows(profile: StageProfile, hardware: Hardware, properties: PropertyMod
         names=profile.names, ordinary=ordinary, number=number, kind=kind, P=P, T_L=T_L, T_V_in=entering.T_V, T_V=T_V,
         T_bubble=star.temperature if star.basis == "bubble point" else None, V_in=entering.V, V_out=V_out,
         L=total.L, x=x, y_in=entering.y, y_out=y_out, y_star=star.composition, y_profile=profile.y[rows],
-        murphree=murphree, flagged=small_driving_force(entering.y, star.composition, options.driving_force_limit),
+        murphree=murphree, point_murphree=murphree_vapor(entering.y, total.y_point, star.composition),
+        flagged=small_driving_force(entering.y, star.composition, options.driving_force_limit),
         vaporization=vaporization(K, x, y_out, ordinary), dependent=y_out.argmax(-1), flux=total.flux,
         transferred=total.transferred, energy=total.energy, area=total.area, area_basis=tuple(total.basis),
         star_basis=star.basis, interface_residual=total.films, energy_residual=total.heat,
@@ -328,7 +330,7 @@ class Collected:
     """Arrays over all rows, filled group by group."""
 
     def __init__(self, R: int, n: int) -> None:
-        self.y, self.transferred, self.flux = (np.zeros((R, n)) for _ in range(3))
+        self.y, self.y_point, self.transferred, self.flux = (np.zeros((R, n)) for _ in range(4))
         self.V, self.T_V, self.L, self.energy, self.area, self.pools = (np.zeros(R) for _ in range(6))
         self.films, self.heat, self.energy_closure, self.share = (np.zeros(R) for _ in range(4))
         self.basis = [""] * R
@@ -339,6 +341,7 @@ class Collected:
     def add(self, member: NDArray[np.int64], group: RowGroup, result: TrayResult | SegmentResult, pools: Array) -> None:
         coefficients = group.coefficients
         self.y[member], self.V[member], self.T_V[member] = result.y, result.V, result.T_V
+        self.y_point[member] = result.point.y if isinstance(result, TrayResult) else result.y
         self.transferred[member], self.energy[member] = result.transferred, result.energy
         self.area[member], self.pools[member] = coefficients.area, pools
         self.flux[member] = result.transferred / coefficients.area[..., None]

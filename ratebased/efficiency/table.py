@@ -7,9 +7,12 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 
 from ..equipment import Hardware
+from ..errors import InputError
+from ..explanation import FluxExplanation, explain_flux
 from ..properties.protocol import Array, PropertyModel
 from ..stage_profile import ProfileDraw, ProfileFeed, StageProfile
 from .rating import RatedRows, RatingOptions, rate_rows
+from .uncertainty import Uncertainty, UncertaintyResult, sample_rows
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -29,16 +32,70 @@ LEGEND = (
 class EfficiencyTable:
     """Component efficiencies of every contact row of a profile.
 
-    rows : all arrays. source : where the profile is from.
+    rows : all arrays. source : where the profile is from. uncertainty : intervals, where asked for.
     """
 
     rows: RatedRows
     source: str
+    uncertainty: UncertaintyResult | None = None
 
     @property
     def distance(self) -> Array:
         """Largest |y_out - y| of each row between the vapour computed and the profile's own, (R,)."""
         return np.abs(self.rows.y_out - self.rows.y_profile).max(-1)
+
+    def row_of(self, stage: int) -> int:
+        """Index of a stage among the rated rows."""
+        found = np.flatnonzero(self.rows.number == stage)
+        if not found.size:
+            raise InputError(f"stage = {stage}: no rated row; there are {self.rows.number.tolist()}")
+        return int(found[0])
+
+    def explain(self, stage: int) -> FluxExplanation:
+        """The parts of every flux of a row, at the middle of the froth over the leaving liquid (or of the segment)."""
+        j = self.row_of(stage)
+        for member, interface in self.rows.interfaces:
+            position = np.flatnonzero(member == j)
+            if position.size:
+                return explain_flux(interface, (int(position[0]),))
+        raise InputError(f"stage = {stage}: no interface")
+
+    def sentence(self, stage: int, name: str) -> str:
+        """Why the efficiency of a component in a row is what it is, with its interval where there is one."""
+        r, j = self.rows, self.row_of(stage)
+        if name not in r.names:
+            raise InputError(f"name = {name!r}: expected one of {', '.join(r.names)}")
+        i = r.names.index(name)
+        driving, change = r.y_star[j, i] - r.y_in[j, i], r.y_out[j, i] - r.y_in[j, i]
+        if r.flagged[j, i]:
+            text = f"Stage {stage}, {name}: y* - y_in = {driving:+.2g} is too small for an efficiency"
+        else:
+            text = f"Stage {stage}, {name}: E = {r.murphree[j, i]:.3f} (y* - y_in = {driving:+.2g})"
+        text += f", y_out - y_in = {change:+.2g}"
+        point = r.point_murphree[j, i]
+        if not r.flagged[j, i] and (point < 0) != (r.murphree[j, i] < 0):
+            text += f"; over the leaving liquid alone E = {point:.3f}, the liquid upstream turns the sign"
+        tray = r.kind[j] == "tray"
+        text += ". In the middle of the froth over the leaving liquid, " if tray else ". In the segment, "
+        text += self.explain(stage).sentence(name)
+        u = self.uncertainty
+        if u is not None:
+            figure, what = (u.change, "y_out - y_in") if u.pole[j, i] else (u.murphree, "E")
+            text += (f" Interval (5 to 95 %) of {what}: {figure.p05[j, i]:.3g} to {figure.p95[j, i]:.3g}; probability of "
+                     f"E < 0: {u.negative[j, i]:.2f}; dominated by {u.dominating(j, i)} "
+                     f"({100 * u.shares[j, i].max():.0f} % of the variance).")
+        return text
+
+    def remarkable(self) -> list[str]:
+        """Sentences for every efficiency that is negative, and for the largest above one, flagged ones left out."""
+        r = self.rows
+        sound = r.ordinary & ~r.flagged
+        picked = [(int(j), int(i)) for j, i in np.argwhere(sound & (r.murphree < 0))]
+        above = np.where(sound, r.murphree, 0.0)
+        if above.size and above.max() > 1:
+            j, i = np.unravel_index(int(above.argmax()), above.shape)
+            picked.append((int(j), int(i)))
+        return [self.sentence(int(r.number[j]), r.names[i]) for j, i in picked]
 
     def flags(self) -> list[str]:
         """One text a row: what to know before using its figures."""
@@ -94,7 +151,7 @@ class EfficiencyTable:
             value = getattr(limits, label)
             if value is not None:
                 columns[label] = value
-        columns |= self._packed_columns()
+        columns |= self._packed_columns() | self._uncertainty_columns()
         columns |= {"vapor_film_share": r.vapor_entropy_share, "distance_y": self.distance,
                     "interface_residual": r.interface_residual, "energy_residual": r.energy_residual,
                     "component_closure": r.component_closure, "energy_closure": r.energy_closure,
@@ -121,6 +178,26 @@ class EfficiencyTable:
                 columns[f"{label}_{name}"] = spread(getattr(packed, label)[:, i])
         return columns
 
+    def _uncertainty_columns(self) -> dict[str, Any]:
+        u = self.uncertainty
+        if u is None:
+            return {}
+        columns: dict[str, Any] = {}
+        figures = [("E", u.murphree, u.pole), ("dy", u.change, np.zeros_like(u.pole))]
+        if u.hetp is not None and self.rows.packed is not None:
+            blank = np.ones_like(u.pole)
+            blank[self.rows.packed.position] = self.rows.packed.undefined
+            figures.append(("HETP", u.hetp, blank))
+        for label, interval, blank in figures:
+            for quantile in ("p05", "p50", "p95"):
+                for i, name in enumerate(self.rows.names):
+                    value = getattr(interval, quantile)[:, i]
+                    columns[f"{label}_{quantile}_{name}"] = np.where(blank[:, i], np.nan, value)
+        for i, name in enumerate(self.rows.names):
+            columns[f"P_negative_{name}"] = u.negative[:, i]
+            columns[f"dominating_{name}"] = [u.dominating(j, i) for j in range(u.pole.shape[0])]
+        return columns
+
     def legend(self) -> str:
         """What the columns of the printed table mean."""
         areas = " / ".join(sorted(set(self.rows.area_basis)))
@@ -136,7 +213,9 @@ class EfficiencyTable:
         widths = [max(len(row[k]) for row in lines) for k in range(len(lines[0]))]
         text = ["| " + " | ".join(cell.rjust(width) for cell, width in zip(row, widths)) + " |" for row in lines]
         text.insert(1, "|" + "|".join("-" * (width + 1) + ":" for width in widths) + "|")
-        return "\n".join([*text, "", self.legend(), "", CAUTION, ""])
+        odd = [line for sentence in self.remarkable() for line in (f"- {sentence}",)]
+        remarks = ["", "Odd rows", "", *odd] if odd else []
+        return "\n".join([*text, "", self.legend(), *remarks, "", CAUTION, ""])
 
     def to_text(self) -> str:
         """The table for a terminal."""
@@ -146,7 +225,8 @@ class EfficiencyTable:
         widths = [max(len(row[k]) for row in lines) for k in range(len(lines[0]))]
         text = ["  ".join(cell.rjust(width) for cell, width in zip(row, widths)).rstrip() for row in lines]
         text.insert(1, "-" * max(len(line) for line in text))
-        return "\n".join([*text, "", *textwrap.wrap(self.legend(), 110), "", *textwrap.wrap(CAUTION, 110)])
+        paragraphs = [self.legend(), *self.remarkable(), CAUTION]
+        return "\n".join([*text, *(line for p in paragraphs for line in ("", *textwrap.wrap(p, 110)))])
 
     def _cells(self) -> list[list[str]]:
         r = self.rows
@@ -183,13 +263,16 @@ class EfficiencyTable:
 
 def efficiency_table(profile: pd.DataFrame | StageProfile, hardware: Hardware, properties: PropertyModel, *,
                      feeds: tuple[ProfileFeed, ...] = (), draws: tuple[ProfileDraw, ...] = (),
-                     options: RatingOptions | None = None) -> EfficiencyTable:
+                     options: RatingOptions | None = None,
+                     uncertainty: Uncertainty | None = None) -> EfficiencyTable:
     """Component efficiencies (trays) and HETPs (packings) of every contact row of a profile.
 
     profile: DataFrame with the columns of `StageProfile` (or a `StageProfile`, which brings its own feeds and draws).
     hardware: one contactor or `Section`s. properties: a property model with the profile's components in its order.
+    uncertainty: adds intervals, see `Uncertainty`.
     Raises `InputError` for bad input, `ConvergenceError` where an interface has no solution.
     """
     if not isinstance(profile, StageProfile):
         profile = StageProfile.from_frame(profile, properties.names, feeds=feeds, draws=draws)
-    return EfficiencyTable(rate_rows(profile, hardware, properties, options), profile.source)
+    spread = None if uncertainty is None else sample_rows(profile, hardware, properties, uncertainty, options)
+    return EfficiencyTable(rate_rows(profile, hardware, properties, options), profile.source, spread)

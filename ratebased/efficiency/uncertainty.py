@@ -114,8 +114,9 @@ class UncertaintyResult:
     assumed: tuple[str, ...]
 
     def dominating(self, row: int, component: int) -> str:
-        """The input with the largest share."""
-        return self.inputs[int(self.shares[row, component].argmax())]
+        """The input with the largest share, in words."""
+        name = self.inputs[int(self.shares[row, component].argmax())]
+        return WORDS.get(name, name)
 
 
 @dataclass(frozen=True)
@@ -190,6 +191,8 @@ class _Change:
                        area=c.area * self.area)
 
 
+WORDS = {"vapor": "the vapour coefficients", "liquid": "the liquid coefficients", "area": "the interfacial area",
+         "vapor_diffusivity": "the vapour diffusivities", "liquid_diffusivity": "the liquid diffusivities"}
 FACTORS = ("vapor", "liquid", "area", "vapor_diffusivity", "liquid_diffusivity")
 
 
