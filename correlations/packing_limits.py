@@ -230,7 +230,7 @@ def stichlmair_flooding_at_liquid_velocity(liquid_velocity: Values, vapor_densit
                                   void_fraction, laminar_friction, transition_friction, turbulent_friction,
                                   loading_factor)
     if (liquid >= bed.full()).any():
-        raise NoPhysicalRootError("liquid_velocity: the liquid alone fills the bed")
+        raise NoPhysicalRootError("liquid_velocity: the liquid alone fills the bed", liquid >= bed.full())
     high = np.ones(liquid.shape)
     while (short := bed.flood(high, liquid)[1] < 0).any():
         high = np.where(short, 2 * high, high)

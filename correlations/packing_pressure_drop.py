@@ -128,21 +128,22 @@ def stichlmair(vapor_velocity: Values, vapor_density: Values, vapor_viscosity: V
     power = (2 + c) / 3
     dry, h_0, eps, power, factor = np.broadcast_arrays(dry, h_0, void_fraction, power, loading_factor)
     y = dry.copy()
+    failed = np.zeros(y.shape, bool)
     for _ in range(100):  # the wet curve is convex in y: Newton climbs from below to the lower root
         h = h_0 * (1 + factor * y ** 2)
-        beyond = h >= eps
-        open_space = np.where(beyond, 1.0, eps - h)
-        wet = dry * ((1 - eps + h) / (1 - eps)) ** power * (eps / open_space) ** 4.65
-        slope = wet * (power / (1 - eps + h) + 4.65 / open_space) * 2 * factor * h_0 * y
-        beyond |= slope >= 1
-        if beyond.any():
-            raise NoPhysicalRootError(f"vapor_velocity: the bed is beyond flooding in {int(beyond.sum())} of "
-                                      f"{beyond.size} entries")
-        if (np.abs(wet - y) <= 1e-14 * wet).all():
-            return HoldupAndPressureDrop(h, y * weight)
-        y = y + (wet - y) / (1 - slope)
-    raise NoPhysicalRootError("vapor_velocity: the bed is at its flooding point within rounding")
-
+        failed |= h >= eps
+        free = np.where(failed, 1.0, eps - h)
+        wet = dry * ((1 - eps + h) / (1 - eps)) ** power * (eps / free) ** 4.65
+        slope = wet * (power / (1 - eps + h) + 4.65 / free) * 2 * factor * h_0 * y
+        failed |= slope >= 1
+        open_ = ~failed & (np.abs(wet - y) > 1e-14 * wet)
+        if not open_.any():
+            break
+        y = np.where(open_, y + (wet - y) / np.where(open_, 1 - slope, 1.0), y)
+    failed |= open_
+    if failed.any():
+        raise NoPhysicalRootError("vapor_velocity: the bed is beyond flooding", failed)
+    return HoldupAndPressureDrop(h, y * weight)
 
 
 @correlation("pressure drop", "random and structured packings", "Pa m-1", Validity(
@@ -182,8 +183,7 @@ def bravo_rocha_fair(vapor_velocity: Values, vapor_density: Values, vapor_viscos
     Re = d * U * vapor_density / vapor_viscosity
     room = 1 - wet_constant * liquid_velocity / np.sqrt(d * GRAVITY)
     if (room <= 0).any():
-        raise NoPhysicalRootError(f"liquid_velocity: the channels are full in {int((room <= 0).sum())} of {room.size} "
-                                  "entries")
+        raise NoPhysicalRootError("liquid_velocity: the channels are full", room <= 0)
     return (0.171 + 92.7 / Re) * vapor_density * U ** 2 / d * room ** -5.0
 
 
@@ -223,20 +223,21 @@ def rocha_bravo_fair(vapor_velocity: Values, vapor_density: Values, vapor_viscos
         / (liquid_density * np.sin(corrugation_angle) * void_fraction * gravity))
     dry, still, K_2 = np.broadcast_arrays(dry / flood_pressure_gradient, still, K_2)
     y = dry.copy()
-    for _ in range(200):  # the wet curve is convex in y: Newton climbs from below to the lowest root
-        beyond = y >= 1
-        left = np.where(beyond, 1.0, 1 - y)
+    failed = np.zeros(y.shape, bool)
+    for _ in range(100):  # the wet curve is convex in y: Newton climbs from below to the lowest root
+        failed |= y >= 1
+        left = np.where(failed, 1.0, 1 - y)
         h = still * left ** (-1 / 3)
-        room = 1 - K_2 * h
-        beyond |= room <= 0
-        room = np.where(beyond, 1.0, room)
+        failed |= K_2 * h >= 1
+        room = np.where(failed, 1.0, 1 - K_2 * h)
         wet = dry * room ** -5.0
         slope = wet * 5 * K_2 / room * h / (3 * left)
-        beyond |= slope >= 1
-        if beyond.any():
-            raise NoPhysicalRootError(f"vapor_velocity: the bed is beyond flooding in {int(beyond.sum())} of "
-                                      f"{beyond.size} entries")
-        if (np.abs(wet - y) <= 1e-14 * wet).all():
-            return HoldupAndPressureDrop(h, y * flood_pressure_gradient)
-        y = y + (wet - y) / (1 - slope)
-    raise NoPhysicalRootError("vapor_velocity: the bed is at its flooding point within rounding")
+        failed |= slope >= 1
+        open_ = ~failed & (np.abs(wet - y) > 1e-14 * wet)
+        if not open_.any():
+            break
+        y = np.where(open_, y + (wet - y) / np.where(open_, 1 - slope, 1.0), y)
+    failed |= open_
+    if failed.any():
+        raise NoPhysicalRootError("vapor_velocity: the bed is beyond flooding", failed)
+    return HoldupAndPressureDrop(h, y * flood_pressure_gradient)

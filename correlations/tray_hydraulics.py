@@ -166,18 +166,20 @@ def treybal_effective_weir(liquid_flow: Values, weir_length: Values, column_diam
     side = np.sqrt(ratio ** 2 - 1)
     crest = 2 * 0.666 * (liquid_flow / weir_length) ** (2 / 3) / weir_length
     r = np.ones(np.broadcast_shapes(np.shape(ratio), np.shape(crest)))
+    failed = np.zeros(r.shape, bool)
     for _ in range(60):  # the residual is convex in r: Newton falls monotonically from 1 to the largest root
         inner = side + crest * r ** (-2 / 3)
         slope = 2 * r - (4 / 3) * inner * crest * r ** (-5 / 3)
         step = (r ** 2 - ratio ** 2 + inner ** 2) / np.where(slope > 0, slope, 1.0)
-        stuck = (slope <= 0) | (r - step <= 0)
-        if stuck.any():
-            raise NoPhysicalRootError(f"weir crest fills the segment in {int(stuck.sum())} of {stuck.size} entries: "
-                                      "liquid flow too large for the weir")
+        failed |= (slope <= 0) | (r - step <= 0)
+        step = np.where(failed, 0.0, step)
         r = r - step
         if (np.abs(step) < 1e-14).all():
-            return r
-    raise NoPhysicalRootError("weir crest fills the segment: liquid flow too large for the weir")
+            break
+    failed |= np.abs(step) >= 1e-14
+    if failed.any():
+        raise NoPhysicalRootError("liquid_flow: the crest fills the segment of the weir", failed)
+    return r
 
 
 @correlation("orifice coefficient", "sieve trays", "-", Validity(

@@ -252,8 +252,11 @@ def test_stichlmair_turns_vertical():
     # beside the fold the distance goes with the root of the margin
     gaps = flood.pressure_gradient - np.array([dP(1 - 1e-6), dP(1 - 4e-6)])
     assert_allclose(gaps[1] / gaps[0], 2.0, rtol=1e-2)
-    with pytest.raises(NoPhysicalRootError, match="flooding"):
-        dP(1 + 1e-6)
+    with pytest.raises(NoPhysicalRootError, match="flooding in 2 of 3 entries") as caught:
+        dP(np.array([1 + 1e-6, 0.9, 1.2]))
+    np.testing.assert_array_equal(caught.value.failed, [True, False, True])
+    with pytest.raises(NoPhysicalRootError, match="fills the bed"):
+        packing_limits.stichlmair_flooding_at_liquid_velocity(1.0, 5.0, 5e-5, 1200.0, *bed, *friction)
 
 
 def test_minimum_wetting_rules():

@@ -13,6 +13,7 @@ from scipy.optimize import brentq
 
 from correlations import (
     InputError,
+    NoPhysicalRootError,
     mixing,
     tray_hydraulics,
     tray_limits,
@@ -227,3 +228,13 @@ def test_chen_chuang_ratio_of_the_films():
     N_L = tray_transfer.chen_chuang_liquid_units(4e-9, **state, molar_flow_ratio=1.2, vapor_molar_mass=0.07,
                                                  liquid_molar_mass=0.08)
     assert_allclose(N_L / N_G, 14 / 11 * 1.2 * 0.07 / 0.08 * np.sqrt(4e-9 * RHO_L / (4.5e-6 * RHO_V)))
+
+
+def test_weir_too_short_for_its_liquid():
+    """treybal_effective_weir: a crest that fills the segment is an error, a short crest leaves the weir whole."""
+    assert_allclose(tray_hydraulics.treybal_effective_weir(1e-9, 0.875, 1.25), 1.0, rtol=1e-4)
+    with pytest.raises(NoPhysicalRootError, match="1 of 2 entries") as caught:
+        tray_hydraulics.treybal_effective_weir([0.005, 5.0], 0.875, 1.25)
+    np.testing.assert_array_equal(caught.value.failed, [False, True])
+    with pytest.raises(InputError, match="weir_length"):
+        tray_hydraulics.treybal_effective_weir(0.005, 1.3, 1.25)
