@@ -154,9 +154,13 @@ def transfer(states: list[tuple[Contactor, NDArray[np.intp], ContactState]], cou
     return Transfer(TransferCoefficients(**arrays, basis=basis, notes=notes), c_vapor, c_liquid)
 
 
-def film_transfer_units(kappa: Array, c: Array, area: Array, flow: Array) -> Array:
-    """area c kappa/flow of a film, kappa the harmonic mean over the pairs, (...)."""
+def film_transfer_units(kappa: Array, c: Array, area: Array, flow: Array, z: Array) -> Array:
+    """area c kappa_i/flow of a film for each component, (..., n), kappa_i = (1 - z_i)/sum z_j/kappa_ij (Wilke 1950)."""
     n = kappa.shape[-1]
     off = ~np.eye(n, dtype=bool)
-    inverse = np.where(off, 1.0 / np.where(off, kappa, 1.0), 0.0).sum((-1, -2)) / max(n * (n - 1), 1)
-    return np.asarray(area * c / (np.where(inverse > 0, inverse, 1.0) * flow))
+    inverse = np.where(off, 1.0 / np.where(off, kappa, 1.0), 0.0)
+    drag = (inverse @ z[..., None])[..., 0]
+    plain = inverse.sum(-1) / max(n - 1, 1)
+    rest = 1.0 - z
+    effective = np.where(rest > 1e-9, rest / np.where(rest > 1e-9, drag, 1.0), 1.0 / np.where(plain > 0, plain, 1.0))
+    return np.asarray((area * c / flow)[..., None] * effective)

@@ -368,6 +368,8 @@ def solve_state(problem: Problem, efficiency: EfficiencySet | None, progress: Pr
         return outcome.state, outcome, rows
     tried.append(f"Newton from constant molar overflow ended at {outcome.reason}, residual {outcome.residual:.2g}")
     first = outcome
+    if margin is not None and margin <= 0:
+        raise convergence_error("equilibrium column", tried, first.worst, first.residual, margin, first.state)
     outcome = newton(problem, rows, start, damped=True, progress=progress)
     if outcome.converged:
         return outcome.state, outcome, rows

@@ -34,14 +34,34 @@ class RateState:
 
 
 @dataclass(frozen=True)
+class Shares:
+    """Share of the entering state in the bulk state of the C contact stages: compositions and temperatures, (C,)."""
+
+    y: Array
+    x: Array
+    T_V: Array
+    T_L: Array
+
+    def any(self) -> bool:
+        """Whether any bulk state depends on what enters."""
+        return bool(self.y.any() or self.x.any() or self.T_V.any() or self.T_L.any())
+
+    def distance(self, other: Shares) -> float:
+        """Largest difference of a share."""
+        return max(float(np.abs(getattr(self, name) - getattr(other, name)).max()) for name in ("y", "x", "T_V", "T_L"))
+
+
+@dataclass(frozen=True)
 class RateSetup:
-    """What does not change while the column is solved: contactors, flow patterns, factor on all areas."""
+    """What does not change while the column is solved: contactors, flow patterns, factor on all areas; shares of the
+    entering states, which the solver sets from its start."""
 
     problem: Problem
     layout: Layout
     vapor: FlowPattern
     liquid: FlowPattern
     area_factor: float = 1.0
+    shares: Shares | None = None
 
 
 @dataclass(frozen=True)
@@ -61,7 +81,6 @@ class RateSystem:
     z_above: Array | None
     blocks: StageBlocks
     transfer: Transfer
-    weights: tuple[Array, Array, Array, Array]
 
 
 @dataclass(frozen=True)
@@ -125,14 +144,15 @@ def rate_system(setup: RateSetup, state: RateState) -> RateSystem:
     m = 2 * n + 2
     c = problem.contact
     vapor_in, liquid_in, vapor, liquid = entering(problem, state)
-    coefficients, weights = _coefficients(setup, state, vapor_in, liquid_in, vapor.cp, liquid.cp)
+    shares = flow_shares(setup, state) if setup.shares is None else setup.shares
+    coefficients = _coefficients(setup, state, vapor_in, liquid_in, shares)
     unknowns = StageUnknowns(state.v[c], state.T_V[c], state.l[c], state.T_L[c], state.z[:, :n], state.z[:, n:2 * n],
                              state.z[:, 2 * n])
     blocks = stage_residuals(
         unknowns, _take(vapor_in, c), _take(liquid_in, c), problem.properties, problem.P[c],
         coefficients.coefficients, coefficients.c_vapor, coefficients.c_liquid, duty=problem.duty[c],
-        vapor_weight=weights[0], liquid_weight=weights[1], vapor_temperature_weight=weights[2],
-        liquid_temperature_weight=weights[3], flow_scale=problem.F, energy_scale=problem.energy_scale,
+        vapor_weight=shares.y, liquid_weight=shares.x, vapor_temperature_weight=shares.T_V,
+        liquid_temperature_weight=shares.T_L, flow_scale=problem.F, energy_scale=problem.energy_scale,
         y_interface=state.y_I)
     bulk = np.zeros((S, m))
     D, lower, upper = np.zeros((S, m, m)), np.zeros((S, m, m)), np.zeros((S, m, m))
@@ -148,79 +168,91 @@ def rate_system(setup: RateSetup, state: RateState) -> RateSystem:
     # interfaces condensed: dz = -(z0 + z_own d + ...)
     right = [blocks.interface[..., None], blocks.interface_by_bulk]
     right += [block for block in (z_below, z_above) if block is not None]
-    solved: Array = np.linalg.solve(blocks.interface_by_interface, np.concatenate(right, -1))
+    solved = np.asarray(np.linalg.solve(blocks.interface_by_interface, np.concatenate(right, -1)), dtype=np.float64)
     z0, z_own = solved[..., 0], solved[..., 1:m + 1]
-    rest: Array = solved[..., m + 1:]
+    place = m + 1
     D[c] -= blocks.bulk_by_interface @ z_own
     rhs = bulk.copy()
     rhs[c] -= (blocks.bulk_by_interface @ z0[..., None])[..., 0]
     if z_below is not None:
-        z_below = rest[..., :n + 1]
-        rest = np.asarray(rest[..., n + 1:])
+        z_below = solved[..., place:place + n + 1]
+        place += n + 1
         upper[c, :, :n + 1] -= blocks.bulk_by_interface @ z_below
     if z_above is not None:
-        z_above = rest
+        z_above = solved[..., place:]
         lower[c, :, n + 1:] -= blocks.bulk_by_interface @ z_above
     _end_rows(problem, state, vapor_in, liquid_in, vapor, liquid, bulk, D, lower, upper)
     ends = np.flatnonzero(~problem.column.contact)
     rhs[ends] = bulk[ends]
     interface = blocks.interface.copy()
     interface[:, :2 * n - 2] /= blocks.films.terms[:, None]
-    return RateSystem(rhs, D, lower, upper, bulk, interface, z0, z_own, z_below, z_above, blocks, coefficients, weights)
+    return RateSystem(rhs, D, lower, upper, bulk, interface, z0, z_own, z_below, z_above, blocks, coefficients)
 
 
 def _take(stream: Entering, index: NDArray[np.intp]) -> Entering:
     return Entering(stream.flows[index], stream.temperature[index], stream.enthalpy[index])
 
 
-def _coefficients(setup: RateSetup, state: RateState, vapor_in: Entering, liquid_in: Entering, CV: Array, CL: Array
-                  ) -> tuple[Transfer, tuple[Array, Array, Array, Array]]:
-    """Coefficients at the bulk states, and the shares of the entering states: y, x, T_V, T_L."""
+def _coefficients(setup: RateSetup, state: RateState, vapor_in: Entering, liquid_in: Entering, shares: Shares
+                  ) -> Transfer:
+    """Coefficients at the bulk states."""
     problem = setup.problem
     c = problem.contact
-    v, l = state.v[c], state.l[c]
-    V, L = v.sum(1), l.sum(1)
-    y, x = v / V[:, None], l / L[:, None]
+    V, L = state.v[c].sum(1), state.l[c].sum(1)
+    y, x = state.v[c] / V[:, None], state.l[c] / L[:, None]
     T_V, T_L, height = state.T_V[c], state.T_L[c], problem.column.segment_height
-    short = np.full(c.size, 0.5)
-    theta_V, theta_L = setup.vapor.weight(short), setup.liquid.weight(short)
-    if theta_V.any():
+    if shares.y.any() or shares.T_V.any():
         V_in = vapor_in.flows[c].sum(1)
-        y = y + theta_V[:, None] * (vapor_in.flows[c] / V_in[:, None] - y)
-        T_V, V = T_V + theta_V * (vapor_in.temperature[c] - T_V), V + theta_V * (V_in - V)
-    if theta_L.any():
+        y = y + shares.y[:, None] * (vapor_in.flows[c] / V_in[:, None] - y)
+        T_V, V = T_V + shares.T_V * (vapor_in.temperature[c] - T_V), V + shares.y * (V_in - V)
+    if shares.x.any() or shares.T_L.any():
         L_in = liquid_in.flows[c].sum(1)
-        x = x + theta_L[:, None] * (liquid_in.flows[c] / L_in[:, None] - x)
-        T_L, L = T_L + theta_L * (liquid_in.temperature[c] - T_L), L + theta_L * (L_in - L)
+        x = x + shares.x[:, None] * (liquid_in.flows[c] / L_in[:, None] - x)
+        T_L, L = T_L + shares.T_L * (liquid_in.temperature[c] - T_L), L + shares.x * (L_in - L)
     states = setup.layout.states(problem.properties, V, L, T_V, T_L, problem.P[c], y, x,
                                  None if height is None else height[c])
-    result = transfer(states, c.size, setup.area_factor)
+    return transfer(states, c.size, setup.area_factor)
+
+
+def flow_shares(setup: RateSetup, state: RateState) -> Shares:
+    """Shares of the entering states by the flow patterns, from the transfer units at a state.
+
+    They are held while a column is solved: they follow from numbers of transfer units, which need no accuracy.
+    """
+    problem = setup.problem
+    c = problem.contact
+    short = np.full(c.size, 0.5)
+    first = Shares(setup.vapor.weight(short), setup.liquid.weight(short), setup.vapor.temperature_weight(short),
+                   setup.liquid.temperature_weight(short))
+    if not first.any():
+        return first
+    vapor_in, liquid_in, vapor, liquid = entering(problem, state)
+    result = _coefficients(setup, state, vapor_in, liquid_in, first)
+    units_V, units_L = overall_transfer_units(problem, state, result)
     k = result.coefficients
-    area = np.broadcast_to(k.area, V.shape)
-    units_V, units_L = overall_transfer_units(problem, state, result, V, L)
+    area = np.broadcast_to(k.area, (c.size,))
 
     def heat(h: Array, flows: Array, cp: Array) -> Array:
         return np.asarray(h * area / np.maximum((flows * cp).sum(1), 1e-300))
 
-    return result, (setup.vapor.weight(units_V), setup.liquid.weight(units_L),
-                    setup.vapor.temperature_weight(heat(k.h_vapor, v, CV[c])),
-                    setup.liquid.temperature_weight(heat(k.h_liquid, l, CL[c])))
+    return Shares(setup.vapor.weight(units_V), setup.liquid.weight(units_L),
+                  setup.vapor.temperature_weight(heat(k.h_vapor, state.v[c], vapor.cp[c])),
+                  setup.liquid.temperature_weight(heat(k.h_liquid, state.l[c], liquid.cp[c])))
 
 
-def overall_transfer_units(problem: Problem, state: RateState, transferred: Transfer, V: Array, L: Array
-                           ) -> tuple[Array, Array]:
+def overall_transfer_units(problem: Problem, state: RateState, transferred: Transfer) -> tuple[Array, Array]:
     """Transfer units of vapour and liquid with both films in series, of the component that has most, (C,).
 
     1/N_OV = 1/N_V + S/N_L and N_OL = S N_OV with the stripping factor S = K V/L, K from the interface.
     """
-    k = transferred.coefficients
+    k, c, n = transferred.coefficients, problem.contact, problem.n
+    V, L = state.v[c].sum(1), state.l[c].sum(1)
     area = np.broadcast_to(k.area, V.shape)
-    vapor = film_transfer_units(k.kappa_vapor, transferred.c_vapor, area, V)[:, None]
-    liquid = film_transfer_units(k.kappa_liquid, transferred.c_liquid, area, L)[:, None]
-    n = problem.n
-    K = (state.y_I / np.maximum(state.z[:, n:2 * n], 1e-300))[:, problem.ordinary]
+    vapor = film_transfer_units(k.kappa_vapor, transferred.c_vapor, area, V, state.v[c] / V[:, None])
+    liquid = film_transfer_units(k.kappa_liquid, transferred.c_liquid, area, L, state.l[c] / L[:, None])
+    K = state.y_I / np.maximum(state.z[:, n:2 * n], 1e-300)
     S = np.maximum(K, 1e-12) * (V / L)[:, None]
-    units = 1.0 / (1.0 / vapor + S / liquid)
+    units = np.where(problem.ordinary, 1.0 / (1.0 / vapor + S / liquid), 0.0)
     return np.asarray(units.max(1)), np.asarray((S * units).max(1))
 
 

@@ -34,6 +34,8 @@ from .rate_system import (
     RateSetup,
     RateState,
     RateSystem,
+    Shares,
+    flow_shares,
     overall_transfer_units,
     rate_system,
     updated_condenser_vapor,
@@ -47,6 +49,8 @@ PRESSURE_TOLERANCE = 1e-7
 """Relative change of the pressures at which the hydraulics and the column agree."""
 MAX_PRESSURE_ROUNDS = 30
 INTERFACE_TEMPERATURE_STEP = 10.0
+MAX_SHARE_ROUNDS = 4
+SHARE_TOLERANCE = 1e-3
 LARGEST_SEGMENT = 2.0
 """Transfer units of a packed segment above which a warning is given."""
 
@@ -61,6 +65,7 @@ class RateOutcome:
     residual: float
     worst: str
     reason: str = ""
+    shares: Shares | None = None
 
 
 def solve_ratebased(column: Column, properties: PropertyModel, contactor: ContactorLayout, *,
@@ -103,25 +108,39 @@ def solve_ratebased(column: Column, properties: PropertyModel, contactor: Contac
                       positive_scalar("area_factor", area_factor))
     state = _given_start(setup, start) if start is not None else None
     path, outcome = _solve(setup, state, progress)
+    setup, outcome = _settle_shares(setup, outcome, progress)
     if isinstance(column.pressure, ContactorPressure):
         setup, outcome = _with_pressure_drop(setup, outcome, progress)
         problem = setup.problem
-    system = rate_system(setup, outcome.state)
-    _warn_coarse(setup, outcome.state, system)
-    record = _record(setup, outcome.state, system)
+    positive = _lifted(problem, outcome.state)
+    system = rate_system(setup, positive)
+    _warn_coarse(setup, positive, system)
+    record = _record(setup, positive, system)
     s = outcome.state
     return make_profile(problem, s.v, s.T_V, s.l, s.T_L, "rate-based", outcome.iterations, outcome.residual, path,
-                        record,
-                        float(system.blocks.films.size.max()))
+                        record, float(system.blocks.films.size.max()))
+
+
+def _settle_shares(setup: RateSetup, outcome: RateOutcome, progress: Progress | None
+                   ) -> tuple[RateSetup, RateOutcome]:
+    """Shares of the entering states that go with the answer: solved again until they agree."""
+    used = outcome.shares
+    for _ in range(MAX_SHARE_ROUNDS):
+        shares = flow_shares(setup, _lifted(setup.problem, outcome.state))
+        if used is not None and shares.distance(used) < SHARE_TOLERANCE:
+            break
+        trial = newton(replace(setup, shares=shares), _lifted(setup.problem, outcome.state), progress=progress)
+        if not trial.converged:
+            break
+        outcome, used = replace(trial, iterations=outcome.iterations + trial.iterations), shares
+    return replace(setup, shares=used), outcome
 
 
 def _warn_coarse(setup: RateSetup, state: RateState, system: RateSystem) -> None:
     """A stage whose bulk is a mean of both ends overshoots when it is too long."""
     if not isinstance(setup.vapor, Averaged):
         return
-    c = setup.problem.contact
-    units = np.maximum(*overall_transfer_units(setup.problem, state, system.transfer, state.v[c].sum(1),
-                                               state.l[c].sum(1)))
+    units = np.maximum(*overall_transfer_units(setup.problem, state, system.transfer))
     if (units > LARGEST_SEGMENT).any():
         j = int(np.argmax(units))
         warnings.warn(f"stage {int(setup.problem.contact[j]) + 1}: {units[j]:.2g} transfer units in one segment, keep "
@@ -145,8 +164,10 @@ def _start_from(setup: RateSetup, v: Array, T_V: Array, l: Array, T_L: Array) ->
                          "undetermined otherwise")
     area = np.broadcast_to(k.coefficients.area, (c.size,))
     unit = np.ones(c.size)
-    conductance = np.minimum(film_transfer_units(k.coefficients.kappa_vapor, k.c_vapor, unit, unit),
-                             film_transfer_units(k.coefficients.kappa_liquid, k.c_liquid, unit, unit))
+    even = np.full_like(x, 1.0 / problem.n)
+    conductance = np.minimum(
+        np.median(film_transfer_units(k.coefficients.kappa_vapor, k.c_vapor, unit, unit, even), -1),
+        np.median(film_transfer_units(k.coefficients.kappa_liquid, k.c_liquid, unit, unit, even), -1))
     v_in = problem.feeds.vapor.copy()
     v_in[:-1] += after_draw(v, problem.vapor_draw)[0][1:]
     N = (v_in - v)[c] / (area + V / conductance)[:, None]
@@ -216,9 +237,10 @@ def newton(setup: RateSetup, state: RateState, *, tolerance: float = TOLERANCE, 
     problem = setup.problem
     S, n = problem.S, problem.n
     m = 2 * n + 2
-    probe = np.full(1, 0.5)
-    wide = bool(setup.vapor.weight(probe).any() or setup.liquid.weight(probe).any())
-    width = 3 * n + 2 if wide else 2 * n + 1
+    if setup.shares is None:
+        setup = replace(setup, shares=flow_shares(setup, state))
+    assert setup.shares is not None
+    width = 3 * n + 2 if setup.shares.any() else 2 * n + 1
     band = block_tridiagonal(S, m, n + 1, n + 1, width, width)
     reason, residual, worst, iteration = "the iteration limit", np.inf, "", 0
     floor = 1e2 * np.finfo(float).eps
@@ -253,7 +275,7 @@ def newton(setup: RateSetup, state: RateState, *, tolerance: float = TOLERANCE, 
                             z=state.z + dz, y_I=system.blocks.films.y_I)
             least = min(final.v.min(), final.l.min()) / problem.F
             if least > -1e-10 and final.z[:, n:2 * n].min() > -1e-9:
-                return RateOutcome(final, True, iteration, residual, worst)
+                return RateOutcome(final, True, iteration, residual, worst, shares=setup.shares)
         largest = max(float(np.abs(dT_V).max()), float(np.abs(dT_L).max()))
         f = min(1.0, LARGEST_TEMPERATURE_STEP / largest) if largest > 0 else 1.0
         z = state.z + f * dz
@@ -359,7 +381,7 @@ def _with_pressure_drop(setup: RateSetup, outcome: RateOutcome, progress: Progre
     pressure = setup.problem.column.pressure
     assert isinstance(pressure, ContactorPressure)
     for _ in range(MAX_PRESSURE_ROUNDS):
-        drop = _hydraulics(setup, outcome.state).get("pressure_drop")
+        drop = _hydraulics(setup, _lifted(setup.problem, outcome.state)).get("pressure_drop")
         if drop is None:
             raise InputError("pressure: the contactor has no pressure-drop method on every contact stage; give the "
                              "pressures")

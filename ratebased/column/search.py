@@ -6,12 +6,13 @@ the first crossing, and tells the best that can be reached when there is none.
 """
 from __future__ import annotations
 
+import warnings
 from collections.abc import Callable
 
 import numpy as np
 from scipy.optimize import brentq, minimize_scalar
 
-from ..errors import ConvergenceError, InputError, NoSolutionError
+from ..errors import ConvergenceError, InputError, NoSolutionError, RateBasedWarning
 from .definition import Column
 from .profile import Profile
 from .specifications import (
@@ -52,8 +53,10 @@ def with_search(column: Column, solve: Solver) -> Profile:
     problems: list[str] = []
 
     def gap(log_value: float) -> float:
-        profile = solve(column.with_(specifications=(*rest, vary(float(np.exp(log_value))))),
-                        next(reversed(found.values()), None))
+        with warnings.catch_warnings():                # doubts about a trial are no doubts about the answer
+            warnings.simplefilter("ignore", RateBasedWarning)
+            profile = solve(column.with_(specifications=(*rest, vary(float(np.exp(log_value))))),
+                            next(reversed(found.values()), None))
         found[log_value] = profile
         return measured(profile, wanted) - wanted.value
 

@@ -114,6 +114,26 @@ class StageBlocks:
         return _stack(self.bulk_by_liquid_in, self.interface_by_liquid_in, self.interface.shape[-1])
 
 
+    def by_vapor_below(self, H: Array, heat_capacity: Array) -> Array:
+        """Derivative of all rows by flows and temperature of the vapour stream that enters, (..., 4n+3, n+1).
+
+        H: its partial molar enthalpies, J/mol, (..., n); heat_capacity: its flow of heat capacity, W/K, (...). For one
+        stream alone: in a mixture with a feed the temperature is that of the mixture.
+        """
+        return _by_stream(self.by_vapor_in, H, heat_capacity)
+
+    def by_liquid_above(self, H: Array, heat_capacity: Array) -> Array:
+        """`by_vapor_below` for the liquid."""
+        return _by_stream(self.by_liquid_in, H, heat_capacity)
+
+
+def _by_stream(block: Array, H: Array, heat_capacity: Array) -> Array:
+    slope = block[..., :-1].copy()
+    slope[..., :-1] += block[..., -1:] * H[..., None, :]
+    slope[..., -1] += block[..., -1] * np.asarray(heat_capacity)[..., None]
+    return slope
+
+
 def _stack(upper: Array, lower: Array | None, k: int) -> Array:
     rest = np.zeros((*upper.shape[:-2], k, upper.shape[-1])) if lower is None else lower
     return np.concatenate((upper, rest), -2)
@@ -146,7 +166,8 @@ def stage_residuals(state: StageUnknowns, vapor_in: Entering, liquid_in: Enterin
     Returns
     -------
     StageBlocks : rows liquid balances, liquid energy, vapour balances, vapour energy, interface. Signs: leaving minus
-        entering, minus what the interface brings (N and energy positive from vapour to liquid). Nothing is checked: the
+        entering, minus what the interface brings (N and energy positive from vapour to liquid). The scale of the
+        interface's energy row is taken as constant in the derivatives. Nothing is checked: the
         kernels below trust their input.
 
     Source: nonequilibrium stage of Krishnamurthy & Taylor, AIChE J. 31 (1985) 449, with exact films.

@@ -138,8 +138,9 @@ def absorber(seed: int) -> Case:
     vapor = np.sort(rng.uniform(35.0, 150.0, n))
     a, b = 22.0, 2600.0
     properties = ConstantVolatility([f"c{i + 1}" for i in range(n)], K * P / np.exp(a - b / 305.0), latent, a=a, b=b,
-                                    vapor_heat_capacity=vapor, liquid_heat_capacity=1.6 * vapor, condensable=condensable,
-                                    volatile=volatile, vapor_molar_density=P / (8.314 * 305), liquid_molar_density=5e3)
+                                    vapor_heat_capacity=vapor, liquid_heat_capacity=1.6 * vapor,
+                                    condensable=condensable, volatile=volatile,
+                                    vapor_molar_density=P / (8.314 * 305), liquid_molar_density=5e3)
     stages = int(rng.integers(3, 31))
     packed = bool(rng.random() < 0.3)
     y = np.append(rng.dirichlet(np.concatenate(([6.0], np.ones(n - 2)))), 0.0)

@@ -1,0 +1,163 @@
+"""Profiles: tables, files without loss, entropy, comparison."""
+from __future__ import annotations
+
+from dataclasses import fields
+from pathlib import Path
+
+import numpy as np
+import pandas as pd
+import pytest
+from columns import absorber, absorber_mixture, absorber_trays, distillation, ternary, trays
+
+from ratebased.column import Averaged, LiquidDraw, Plug, Profile, VaporDraw, compare, solve_equilibrium, solve_ratebased
+from ratebased.column.compare import FED_BACK, ONE_EFFICIENCY, RATE_BASED, stages_for_purity
+from ratebased.efficiency_set import EfficiencySet
+from ratebased.errors import InputError
+from ratebased.properties import ConstantVolatility
+from ratebased.properties.protocol import GAS_CONSTANT
+
+RATE = solve_ratebased(distillation(), ternary(), trays())
+
+
+def equal(a: object, b: object) -> bool:
+    """Exactly equal, arrays and records of arrays included."""
+    if isinstance(a, np.ndarray):
+        return isinstance(b, np.ndarray) and np.array_equal(a, b)
+    if hasattr(a, "__dataclass_fields__"):
+        return all(equal(getattr(a, f.name), getattr(b, f.name)) for f in fields(a) if f.name not in ("streams",
+                                                                                                      "properties"))
+    if isinstance(a, dict):
+        return isinstance(b, dict) and a.keys() == b.keys() and all(equal(a[k], b[k]) for k in a)
+    return bool(a == b)
+
+
+@pytest.mark.parametrize("profile", [
+    RATE, solve_equilibrium(distillation(14).with_(draws=[LiquidDraw(4, 5.0), VaporDraw(9, 3.0)]), ternary()),
+    solve_ratebased(absorber(6, packed=True), absorber_mixture(), absorber_trays(6.0))], ids=["rate", "draws", "bed"])
+def test_saved_and_loaded_without_loss(profile: Profile, tmp_path: Path) -> None:
+    table, record = profile.save(tmp_path / "column")
+    assert table.name == "column.csv" and record.name == "column.json"
+    loaded = Profile.load(tmp_path / "column")
+    assert equal(profile, loaded) and equal(profile, Profile.load(record))
+    frame = pd.read_csv(table, float_precision="round_trip")
+    pd.testing.assert_frame_equal(frame, profile.to_frame(), check_exact=True, check_dtype=False)
+    if profile.contact is not None:
+        model = profile.properties
+        assert model is not None
+        assert np.array_equal(loaded.efficiency(properties=model).vaporization, profile.efficiency().vaporization)
+        with pytest.raises(InputError, match="a loaded profile holds no property model"):
+            loaded.efficiency()
+
+
+def test_load_refuses_other_files(tmp_path: Path) -> None:
+    (tmp_path / "other.json").write_text("{}")
+    with pytest.raises(InputError, match="not a column profile"):
+        Profile.load(tmp_path / "other")
+
+
+def test_frame() -> None:
+    frame = RATE.to_frame()
+    assert list(frame.columns[:7]) == ["stage", "kind", "T_K", "T_vapor_K", "P_Pa", "L_mol_s", "V_mol_s"]
+    assert {"x_light", "y_heavy", "T_interface_K", "flux_middle", "area_m2"} <= set(frame.columns)
+    assert frame["V_mol_s"][0] == 0.0 and frame["L_mol_s"][0] == pytest.approx(100.0)
+    assert frame["T_interface_K"].isna().tolist() == [True] + [False] * 10 + [True]
+
+
+def test_other_models_are_refused() -> None:
+    with pytest.raises(InputError, match="a model of air"):
+        RATE.efficiency(properties=absorber_mixture())
+    with pytest.raises(InputError, match="solve it rate-based"):
+        solve_equilibrium(distillation(), ternary()).entropy_production()
+    with pytest.raises(InputError, match="component 'water'"):
+        RATE.purity("water")
+
+
+def one_gibbs_energy() -> ConstantVolatility:
+    """K and enthalpies of one Gibbs energy: latent heat R b for all, cp_V = cp_L."""
+    b = 4000.0
+    return ConstantVolatility(["light", "middle", "heavy"], [4.0, 2.0, 1.0], GAS_CONSTANT * b, a=22.5, b=b,
+                              vapor_heat_capacity=[75.0, 95.0, 115.0], liquid_heat_capacity=[75.0, 95.0, 115.0],
+                              reference_temperature=350.0, vapor_molar_density=35.0, liquid_molar_density=9e3)
+
+
+@pytest.mark.parametrize("pattern", [None, Averaged(), Plug()], ids=["mixed", "averaged", "plug"])
+def test_entropy_balance_closes(pattern: Averaged | Plug | None) -> None:
+    """Against entropies written down by hand: s_L = cp ln(T/T_ref) - R ln x, s_V = s_L of the same x + R ln(K P x/(y
+    P)).
+    """
+    model = one_gibbs_energy()
+    column = distillation().with_(duties={4: 3e4})
+    profile = solve_ratebased(column, model, trays(60.0), vapor=pattern, liquid=pattern)
+    production = profile.entropy_production()
+    cp, T_ref = model.liquid_cp, model.reference_temperature
+
+    def liquid(flows: np.ndarray, T: float) -> float:
+        return float(flows @ (cp * np.log(T / T_ref) - GAS_CONSTANT * np.log(flows / flows.sum())))
+
+    def vapor(flows: np.ndarray, T: float, P: float) -> float:
+        jump = GAS_CONSTANT * (np.log(model.volatility) + model.a - np.log(P))
+        return float(flows @ (cp * np.log(T / T_ref) - GAS_CONSTANT * np.log(flows / flows.sum()) + jump))
+
+    for k, j in enumerate(profile.contact_index):
+        P = profile.P[j]
+        v, l = profile.V[:, None] * profile.y, profile.L[:, None] * profile.x
+        out = vapor(v[j], profile.T_V[j], P) + liquid(l[j], profile.T_L[j])
+        into = vapor(v[j + 1], profile.T_V[j + 1], P) + liquid(l[j - 1], profile.T_L[j - 1])
+        for feed, T, phase in ((profile.feeds.vapor[j], profile.feeds.vapor_temperature[j], True),
+                               (profile.feeds.liquid[j], profile.feeds.liquid_temperature[j], False)):
+            if feed.any():
+                into += vapor(feed, T, P) if phase else liquid(feed, T)
+        expected = out - into - profile.duty[j] / profile.contact.T_L_bulk[k]
+        turnover = abs(out) + abs(into)
+        assert abs(production.total[k] - expected) < 1e-12 * turnover
+    for part in ("vapor_diffusion", "liquid_diffusion", "vapor_conduction", "liquid_conduction"):
+        assert (getattr(production, part) > -1e-12).all()
+    assert np.abs(production.inconsistency).max() < 1e-9 * production.total.max()
+    assert production.closure.max() < 1e-12
+    assert len(production.to_frame()) == 10
+
+
+def test_inconsistent_properties_show() -> None:
+    """Latent heats that are not R b: the films do not add up, and the term says so."""
+    production = RATE.entropy_production()
+    assert np.abs(production.inconsistency).max() > 1e-4 * production.total.max()
+    assert production.closure.max() < 1e-12
+
+
+def test_comparison() -> None:
+    result = compare(distillation(), ternary(), trays())
+    assert list(result.profiles) == [ONE_EFFICIENCY, FED_BACK, RATE_BASED]
+    assert np.abs(result.profiles[FED_BACK].x - result.profiles[RATE_BASED].x).max() < 1e-8
+    assert 0.3 < result.efficiency < 0.9 and result.efficiency_source.startswith("O'Connell")
+    assert result.stages_needed[RATE_BASED] == result.stages_needed[FED_BACK] == 10
+    assert any(s.startswith(FED_BACK) and "the same column" in s for s in result.differences)
+    assert any("mole fraction" in s and "on stage" in s for s in result.differences)
+    frame = result.to_frame()
+    assert list(frame["model"]) == [ONE_EFFICIENCY, FED_BACK, RATE_BASED] and "condenser_duty_W" in frame
+    assert len(result.profile_frame()) == 12
+    given = compare(distillation(), ternary(), trays(), efficiency=0.6, count_stages=False)
+    assert given.efficiency == 0.6 and given.efficiency_source == "given" and given.stages_needed == {}
+
+
+def test_comparison_of_an_absorber_and_of_a_bed() -> None:
+    result = compare(absorber(), absorber_mixture(), absorber_trays())
+    assert "absorbers" in result.efficiency_source and result.purity[0] == "first"
+    bed = compare(absorber(packed=True), absorber_mixture(), absorber_trays(6.0), count_stages=False)
+    assert bed.efficiency_source.startswith("median of the segments")
+
+
+def test_stages_for_a_purity() -> None:
+    """More equilibrium stages, purer: the count is the first that reaches it."""
+    def solve(n: int) -> Profile:
+        return solve_equilibrium(distillation(n + 2), ternary())
+
+    known = solve(10)
+    target = solve(7).purity(0)
+    assert stages_for_purity(solve, known, 0, "top", target) == 7
+    assert stages_for_purity(solve, known, 0, "top", 0.99999) is None
+
+
+def test_rounded_set_keeps_its_shape() -> None:
+    efficiency = RATE.efficiency().murphree_set().rounded(3, 2)
+    assert isinstance(efficiency, EfficiencySet)
+    np.testing.assert_allclose(efficiency.values * 1e3, np.round(efficiency.values * 1e3), atol=1e-6)
