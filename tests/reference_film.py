@@ -13,7 +13,8 @@ from reference_efficiency import Comparison
 
 from ratebased.bootstrap import Bootstrap, Equimolar, FluxRatio, LatentHeat, LinearBootstrap, Stagnant, TotalFlux
 from ratebased.errors import HighFluxWarning, NoSolutionError, OtherSolutionWarning
-from ratebased.film import FilmStatus, krishna_standart, numerical, solutions
+from ratebased.film import FilmFlux, krishna_standart, numerical, solutions
+from ratebased.film.blocks import coth_blocks, resistances
 
 Case = Mapping[str, Any]
 
@@ -107,6 +108,12 @@ def compare_nonideal(case: Case) -> Iterator[Comparison]:
                      1e-6 * listed + 1e-9)
 
 
+def determinant_sign(film: FilmFlux, N: np.ndarray) -> float:
+    """Sign of det(dF/dN) of the coth form with the bootstrap as its last row."""
+    blocks = coth_blocks(N, resistances(film.kappa, film.c_t), film.x0, film.xd)
+    return float(np.sign(np.linalg.det(np.vstack((blocks.dN, film.nu)))))
+
+
 def compare_multiplicity(case: Case) -> Iterator[Comparison]:
     """One of the listed roots with the named warning where it is due, or the named error; the search finds them all."""
     problem = (case["x0"], case["xd"], case["kappa"], case["ct"], bootstrap(case))
@@ -128,7 +135,7 @@ def compare_multiplicity(case: Case) -> Iterator[Comparison]:
         nearest = min(distance(one.N, root) for root in listed)
         yield Comparison("one of the listed roots", np.array(nearest), np.array(0.0), 1e-9)
         warned = any(issubclass(w.category, OtherSolutionWarning) for w in caught)
-        due = one.status == FilmStatus.OTHER_BRANCH
+        due = determinant_sign(one, one.N) != determinant_sign(one, 0.0 * one.N)
         yield Comparison("the named warning", np.array(float(warned)), np.array(float(due)), 0)
     found = solutions(*problem)
     for k, root in enumerate(listed):

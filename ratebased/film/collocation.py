@@ -18,7 +18,7 @@ from ..errors import ApproximationWarning, InputError, UnstableMixtureError
 from ..maxwell_stefan import GAS_CONSTANT, face_entropy, film_matrix, reduced, resistances, solve
 from .exact import STAGNATION, solve_exact, solve_singular
 from .grid import Grid, grid, interpolation
-from .methods import evaluated, evaluated_gamma, report, solve_problem, unstable_films
+from .methods import evaluated, evaluated_gamma, faces_and_mean, report, solve_problem, unstable_films
 from .problem import (
     Array,
     Composition,
@@ -27,7 +27,6 @@ from .problem import (
     FilmStatus,
     Mask,
     Solved,
-    checked_fractions,
     film_names,
     pose,
 )
@@ -62,8 +61,7 @@ def numerical(x0: ArrayLike, xd: ArrayLike, kappa: ArrayLike | Composition, c_t:
     film. Warns `ApproximationWarning` where the estimate stays above 1e-6 (boundary layers thinner than a thousandth of
     the film). Source: collocation, Villadsen and Michelsen (1978) (from memory).
     """
-    x0, xd = np.broadcast_arrays(checked_fractions("x0", x0), checked_fractions("xd", xd))
-    mean = 0.5 * (x0 + xd)
+    x0, xd, mean = faces_and_mean(x0, xd)
     problem = pose(x0, xd, evaluated("kappa", kappa, mean), c_t, bootstrap, evaluated_gamma(gamma, mean))
     equations = Equations(problem, kappa, gamma)
     first = solve_problem(solve_exact, problem, throw)

@@ -7,18 +7,30 @@ from collections.abc import Callable
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from ..arguments import finite_array, mole_fractions
+from ..arguments import finite_array
 from ..bootstrap import Bootstrap
 from ..errors import (
     ApproximationWarning,
     ConvergenceError,
     HighFluxWarning,
+    InputError,
     NoSolutionError,
     OtherSolutionWarning,
     UnstableMixtureError,
 )
 from .exact import HIGH_FLUX, solve_exact
-from .problem import MESSAGES, Array, Composition, FilmProblem, FilmStatus, Solved, existence, film_names, pose
+from .problem import (
+    MESSAGES,
+    Array,
+    Composition,
+    FilmProblem,
+    FilmStatus,
+    Solved,
+    checked_fractions,
+    existence,
+    film_names,
+    pose,
+)
 from .result import FilmFlux, RateFactor
 from .taylor import solve_series
 from .ternary import solve_ternary
@@ -70,8 +82,7 @@ def solve_frozen(solver: Solver, rate: RateFactor, x0: ArrayLike, xd: ArrayLike,
     if not (callable(kappa) or callable(gamma)):
         problem = pose(x0, xd, kappa, c_t, bootstrap, gamma)
         return report(problem, solve_problem(solver, problem, throw), rate, throw)
-    x0, xd = mole_fractions("x0", x0), mole_fractions("xd", xd)
-    mean = 0.5 * (x0 + xd)
+    x0, xd, mean = faces_and_mean(x0, xd)
     problem = pose(x0, xd, evaluated("kappa", kappa, mean), c_t, bootstrap, evaluated_gamma(gamma, mean))
     flux = report(problem, solve_problem(solver, problem, throw), rate, throw)
     averaged = pose(x0, xd, _simpson("kappa", kappa, x0, xd), c_t, bootstrap,
@@ -85,6 +96,17 @@ def solve_frozen(solver: Solver, rate: RateFactor, x0: ArrayLike, xd: ArrayLike,
                       f"max|N| in {film_names(np.ravel(doubtful), np.shape(doubtful))}; use `numerical`",
                       ApproximationWarning, stacklevel=4)
     return flux
+
+
+def faces_and_mean(x0: ArrayLike, xd: ArrayLike) -> tuple[Array, Array, Array]:
+    """x0, xd and the mean composition, of one shape. Raises InputError."""
+    x0 = checked_fractions("x0", x0)
+    xd = checked_fractions("xd", xd, x0.shape[-1])
+    try:
+        x0, xd = np.broadcast_arrays(x0, xd)
+    except ValueError as error:
+        raise InputError(f"batch shapes of x0 and xd do not broadcast: {x0.shape}, {xd.shape}") from error
+    return x0, xd, 0.5 * (x0 + xd)
 
 
 def evaluated(name: str, value: ArrayLike | Composition, x: Array) -> Array:

@@ -16,8 +16,8 @@ from .exact import (
     pivoted,
     rate_factors,
 )
-from .methods import evaluated, evaluated_gamma, report, unstable_films
-from .problem import Array, Composition, FilmProblem, FilmStatus, Mask, Solved, checked_fractions, pose
+from .methods import evaluated, evaluated_gamma, faces_and_mean, report, unstable_films
+from .problem import Array, Composition, FilmProblem, FilmStatus, Mask, Solved, pose
 from .result import FilmFlux, RateFactor
 from .spectral import profile_shape
 
@@ -42,8 +42,7 @@ def solutions(x0: ArrayLike, xd: ArrayLike, kappa: ArrayLike | Composition, c_t:
     """
     if starts < 1:
         raise InputError(f"starts = {starts}: expected one or more")
-    x0, xd = checked_fractions("x0", x0), checked_fractions("xd", xd)
-    mean = 0.5 * (x0 + xd)
+    x0, xd, mean = faces_and_mean(x0, xd)
     one = pose(x0, xd, evaluated("kappa", kappa, mean), c_t, bootstrap, evaluated_gamma(gamma, mean))
     if one.shape:
         raise InputError(f"solutions: one film at a time, got a batch of shape {one.shape}")

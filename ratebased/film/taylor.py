@@ -205,7 +205,7 @@ def _broyden(problem: FilmProblem, part: NDArray[np.intp], N: Array, row: NDArra
             done = error <= 1e-14
         else:
             done = (error <= 0.1 * STEP) | ((error <= STEP) & (error <= 0.1 * last))
-            done |= (error <= 10.0 * STEP) & (error <= 1e-3 * last)
+            done |= (error <= 3.0 * STEP) & (error <= 1e-3 * last)
             done &= np.abs(residual).max(0) <= 1e-4 * scale
         done &= sane
         last = error
