@@ -2,9 +2,9 @@
 
 Run as a script; prints ratios measured in one run, single-threaded, the fastest of several repeats. Both sides give,
 for every stage: K, [Gamma], partial molar enthalpies and heat capacities of both phases, density, viscosity,
-conductivity, heat capacity and pair diffusivities of both phases, surface tension. The loop keeps its objects and passes lists, which
-is its quickest way. The data library has no diffusivities: the loop evaluates the same published formulas pair by pair
-with the standard `math` module.
+conductivity, heat capacity and pair diffusivities of both phases, surface tension. The loop keeps its objects and
+passes lists, which is its quickest way. The data library has no diffusivities: the loop evaluates the same published
+formulas pair by pair with the standard `math` module.
 """
 from __future__ import annotations
 
