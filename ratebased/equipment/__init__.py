@@ -4,11 +4,13 @@ from .packings import BilletConstants, BilletSchultes, BravoFair, Onda, RandomPa
 from .protocol import Contactor, ContactState, Hydraulics, TransferCoefficients
 from .sections import Hardware, Section, by_contactor
 from .state import contact_state
-from .tray_methods import AIChESieve, ChanFair, ChenChuang, Zuiderweg
-from .trays import SieveTray
+from .structured import BravoRochaFair, RochaBravoFair, StructuredPacking, TsaiArea
+from .tray_methods import AIChEBubbleCap, AIChESieve, ChanFair, ChenChuang, Zuiderweg
+from .trays import BubbleCapTray, SieveTray, ValveTray
 
 __all__ = [
-    "AIChESieve", "BilletConstants", "BilletSchultes", "BravoFair", "ChanFair", "ChenChuang", "ContactState",
-    "Contactor", "FixedCoefficients", "Hardware", "Hydraulics", "Onda", "RandomPacking", "Section", "SieveTray",
-    "TransferCoefficients", "Zuiderweg", "by_contactor", "contact_state",
+    "AIChEBubbleCap", "AIChESieve", "BilletConstants", "BilletSchultes", "BravoFair", "BravoRochaFair",
+    "BubbleCapTray", "ChanFair", "ChenChuang", "ContactState", "Contactor", "FixedCoefficients", "Hardware",
+    "Hydraulics", "Onda", "RandomPacking", "RochaBravoFair", "Section", "SieveTray", "StructuredPacking",
+    "TransferCoefficients", "TsaiArea", "ValveTray", "Zuiderweg", "by_contactor", "contact_state",
 ]

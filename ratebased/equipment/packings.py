@@ -254,7 +254,7 @@ class RandomPacking(PackedBed):
         flooding = drop = holdup = None
         b = self.billet
         if b is not None and b.flooding is not None:
-            flooding = vapor_velocity / billet_flooding(self, state, calls)
+            flooding = vapor_velocity / billet_flooding(self, state)
         elif self.packing_factor is not None:
             flooding = vapor_velocity / calls(
                 packing_limits.generalized_flooding, flow_ratio=state.liquid_mass_flow / state.vapor_mass_flow,
@@ -269,7 +269,7 @@ class RandomPacking(PackedBed):
         return Hydraulics(flooding=flooding, pressure_drop=drop, liquid_holdup=holdup)
 
 
-def billet_flooding(bed: PackedBed, state: ContactState, calls: Calls) -> Array:
+def billet_flooding(bed: PackedBed, state: ContactState) -> Array:
     """Flooding velocity of the vapour at the same L/V, m/s (Billet & Schultes 1999)."""
     arguments = {
         "flow_ratio": state.liquid_mass_flow / state.vapor_mass_flow, "vapor_density": state.vapor.mass_density,

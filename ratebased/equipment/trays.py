@@ -16,7 +16,7 @@ from ..errors import InputError
 from .calls import Calls
 from .heat import analogy
 from .protocol import Array, ContactState, Hydraulics, TransferCoefficients
-from .tray_methods import AIChESieve, TrayOperation, TrayTransferMethod
+from .tray_methods import AIChEBubbleCap, AIChESieve, TrayOperation, TrayTransferMethod
 
 
 @dataclass(frozen=True)
@@ -134,7 +134,7 @@ class CrossFlowTray:
         """The correlations used, by what for."""
         return {**self.method.correlations, "flooding": tray_limits.fair_flooding,
                 "froth density": tray_hydraulics.bennett_froth_density,
-                "dry pressure drop": tray_hydraulics.sieve_dry_head, "weep point": tray_limits.froude_weep_point,
+                "dry pressure drop": self.dry_correlation, "weep point": tray_limits.froude_weep_point,
                 "entrainment": tray_limits.hunt_entrainment,
                 "downcomer backup": tray_hydraulics.downcomer_backup}
 
@@ -176,6 +176,11 @@ class CrossFlowTray:
                               net_velocity=o.net_velocity, tray_spacing=self.spacing,
                               clear_liquid_height=o.clear_liquid))
 
+    @property
+    def dry_correlation(self) -> Correlation[..., Any]:
+        """What the dry pressure drop comes from."""
+        return tray_hydraulics.sieve_dry_head
+
     def weep_velocity(self, operation: TrayOperation, state: ContactState, calls: Calls) -> Array:
         """Hole velocity at the weep point, m/s."""
         return calls(tray_limits.froude_weep_point, clear_liquid_height=operation.clear_liquid,
@@ -185,3 +190,44 @@ class CrossFlowTray:
 @dataclass(frozen=True)
 class SieveTray(CrossFlowTray):
     """A sieve tray; `method` `AIChESieve()` (default), `ChanFair()`, `ChenChuang()` or `Zuiderweg()`."""
+
+
+@dataclass(frozen=True)
+class BubbleCapTray(CrossFlowTray):
+    """A bubble-cap tray; hole dimensions are those of the risers. `method` `AIChEBubbleCap()`.
+
+    The hydraulics are those of sieve trays and only a guide: caps have their own charts.
+    """
+
+    method: TrayTransferMethod = field(default_factory=AIChEBubbleCap)
+
+
+@dataclass(frozen=True)
+class ValveTray(CrossFlowTray):
+    """A tray with floating valves: the AIChE transfer units serve in the absence of data of its own.
+
+    closed_loss, open_loss: K of the dry pressure drop with the valves closed and open, head = K u_h^2 rho_V/rho_L,
+    s2/m; valve_thickness m and valve_density kg/m3 of their metal. All four are data of the valve and the user's.
+    """
+
+    closed_loss: float = math.nan
+    open_loss: float = math.nan
+    valve_thickness: float = math.nan
+    valve_density: float = 7900.0
+
+    def __post_init__(self) -> None:
+        super().__post_init__()
+        for name in ("closed_loss", "open_loss", "valve_thickness", "valve_density"):
+            positive_scalar(name, getattr(self, name))
+
+    @property
+    def dry_correlation(self) -> Correlation[..., Any]:
+        """What the dry pressure drop comes from."""
+        return tray_hydraulics.valve_dry_head
+
+    def dry_head(self, operation: TrayOperation, state: ContactState, calls: Calls) -> Array:
+        """Dry pressure drop, m of liquid: valves partly or fully open, whichever is more (Klein 1982)."""
+        return calls(tray_hydraulics.valve_dry_head, hole_velocity=operation.hole_velocity,
+                     vapor_density=state.vapor.mass_density, liquid_density=state.liquid.mass_density,
+                     closed_loss=self.closed_loss, open_loss=self.open_loss, valve_thickness=self.valve_thickness,
+                     valve_density=self.valve_density)
