@@ -298,6 +298,41 @@ def test_binary_with_equal_capacities_and_latent_heats_is_near_equimolar():
     assert r.N[0] != 0
 
 
+def controlled(side, spread):
+    """Ternary with equal latent heats and no heat capacities, one film in control; N_i/(y_i - y*_i) of the components."""
+    rng = np.random.default_rng(19)
+    model = ConstantVolatility(("a", "b", "c"), [4.0, 2.0, 1.0], 3e4, a=23.0, b=4025.0)
+    x, y = np.array([0.3, 0.3, 0.4]), np.array([0.35, 0.4, 0.25])
+    weight = model.volatility * x
+    T = model.b / (model.a + np.log(weight.sum() / P))
+    kappa = np.where(np.eye(3), 0.0, pairs_of(rng, spread))
+    slow, fast = 0.02 * kappa, 1e4 * kappa
+    vapor, liquid = (slow, fast) if side == "vapor" else (fast, 1e-4 * kappa)
+    r = interface_flux(Bulk(y, T, vapor, 1e-9, 35.0), Bulk(x, T, liquid, 1e-9, 1.2e4), model, P)
+    return r.N / (y - weight / weight.sum())
+
+
+def pairs_of(rng, spread):
+    k = np.triu(spread ** rng.uniform(-0.5, 0.5, (3, 3)), 1)
+    return k + k.T
+
+
+def test_equal_diffusivities_with_vapor_control_give_equal_coefficients():
+    ratio = controlled("vapor", 1.0)
+    np.testing.assert_allclose(ratio, ratio[0], rtol=2e-3)
+
+
+def test_equal_diffusivities_with_liquid_control_do_not():
+    """K differs among the components, so their driving forces in the liquid do: not a consequence of diffusion."""
+    ratio = controlled("liquid", 1.0)
+    assert ratio.max() > 1.3 * ratio.min()
+
+
+def test_unequal_diffusivities_with_vapor_control_do_not():
+    ratio = controlled("vapor", 10.0)
+    assert ratio.max() > 1.1 * ratio.min()
+
+
 # ------------------------------------------------------------------------------------------------------------ reverse
 @pytest.mark.parametrize("known", ["vapor_temperature", "energy_flux"])
 def test_bulks_from_the_interface_are_the_bulks(mixture, known):
