@@ -133,20 +133,6 @@ def _structured_packing(table: TomlTable) -> StructuredPacking:
 STRUCTURED_FIELDS = {"specific_area_m2_m3": "specific_area", "void_fraction": "void_fraction", "base_m": "base",
                      "corrugation_height_m": "height_of_corrugation", "side_m": "side", "angle_deg": "angle",
                      "surface_factor": "surface_factor"}
-RANDOM_FIELDS.items():
-        if table.has(key) or not (named or key == "packing_factor_1_m"):
-            fields[name] = table.number(key, above=0)
-        table.asked.add(key)
-    if table.has("billet"):
-        inner = table.table("billet")
-        fields["billet"] = BilletConstants(**{key: inner.optional_number(key, above=0) for key in (
-            "liquid", "vapor", "holdup", "friction", "flooding", "loading")})
-        inner.finish()
-    fields["method"] = table.choice("method", RANDOM_METHODS, "Onda")
-    diameter = table.number("diameter_m", above=0)
-    return RandomPacking.of(table.text("packing"), diameter, **fields) if named else RandomPacking(diameter, **fields)
-
-
 RANDOM_FIELDS = {"specific_area_m2_m3": "specific_area", "void_fraction": "void_fraction",
                  "nominal_size_m": "nominal_size", "critical_surface_tension_N_m": "critical_surface_tension",
                  "packing_factor_1_m": "packing_factor"}
