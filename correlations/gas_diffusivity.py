@@ -171,7 +171,7 @@ def chapman_enskog(temperature: Values, pressure: Values, molar_mass_a: Values, 
 
 
 @correlation("pair diffusivity", "gases", "m2 s-1", Validity(
-    _KINETIC_RANGE, 0.085, "wilke_lee_1955", Confidence.VERIFIED, error_note="mean 8 to 9 %, from memory",
+    _KINETIC_RANGE, 0.09, "wilke_lee_1955", Confidence.VERIFIED, error_note="mean 8 to 9 %, from memory",
     range_note="low pressure"), dimensional=True, variables={"reduced_temperature": _reduced_temperature})
 def wilke_lee(temperature: Values, pressure: Values, molar_mass_a: Values, molar_mass_b: Values,
               collision_diameter_a: Values, collision_diameter_b: Values, energy_parameter_a: Values,

@@ -21,7 +21,7 @@ _THIN = {"solvent_viscosity": Range(None, 0.025)}
 
 
 @correlation("diffusivity at infinite dilution", "liquids", "m2 s-1", Validity(
-    {}, 0.12, "wilke_chang_1955", Confidence.VERIFIED,
+    {}, 0.15, "wilke_chang_1955", Confidence.VERIFIED,
     range_note=f"{UNKNOWN}; fails for water as the solute (up to a factor of 2)",
     error_note="10 to 15 % for organic solutes"), dimensional=True)
 def wilke_chang(temperature: Values, solvent_viscosity: Values, solvent_molar_mass: Values, solute_volume: Values,

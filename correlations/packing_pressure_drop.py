@@ -10,7 +10,7 @@ from .constants import FOOT, GRAVITY, INCH_WATER_PER_FOOT
 from .errors import NoPhysicalRootError
 from .packing_coefficients import bravo_equivalent_diameter
 from .record import Values, correlation, require
-from .validity import UNKNOWN, Array, Confidence, Validity
+from .validity import UNKNOWN, Array, Confidence, Range, Validity
 
 POUND = 0.45359237
 POUND_PER_FT3 = POUND / FOOT ** 3
@@ -147,21 +147,21 @@ def stichlmair(vapor_velocity: Values, vapor_density: Values, vapor_viscosity: V
 
 
 @correlation("pressure drop", "random and structured packings", "Pa m-1", Validity(
-    {}, None, "robbins_1991", Confidence.VERIFIED,
-    range_note=f"{UNKNOWN} as groups; up to 3 bar, flow parameter above 0.3 tested with air and water only",
-    error_note=UNKNOWN), dimensional=True)
+    {"pressure": Range(None, 3e5)}, None, "robbins_1991", Confidence.VERIFIED,
+    range_note="flow parameter above 0.3 tested with air and water only", error_note=UNKNOWN), dimensional=True)
 def robbins(vapor_velocity: Values, vapor_density: Values, liquid_velocity: Values, liquid_density: Values,
-            liquid_viscosity: Values, dry_packing_factor: Values) -> Array:
+            liquid_viscosity: Values, dry_packing_factor: Values, *, pressure: Values = 101325.0) -> Array:
     """Pressure drop by Robbins [Pa/m].
 
     t + 0.4 (L_f/20000)^0.1 t^4 inches of water per foot, t = 7.4e-8 G_f^2 10^(2.7e-5 L_f);
     G_f = G (0.075/rho_V)^0.5 (F_pd/20)^0.5, L_f = L (62.4/rho_L)(F_pd/20)^0.5 mu^0.1 (lb, h, ft, cP), the ratio turned
-    over in L_f above F_pd = 200 1/ft (from memory).
+    over in L_f above F_pd = 200 1/ft and G_f times 10^(0.0187 rho_V) above one atmosphere (both from memory).
     """
     F = dry_packing_factor * FOOT / 20
     G = vapor_velocity * vapor_density / POUND_PER_HOUR_FT2
     L = liquid_velocity * liquid_density / POUND_PER_HOUR_FT2
-    G_f = G * np.sqrt(0.075 / (vapor_density / POUND_PER_FT3) * F)
+    rho_V = vapor_density / POUND_PER_FT3
+    G_f = G * np.sqrt(0.075 / rho_V * F) * np.where(pressure > 101325.0, 10 ** (0.0187 * rho_V), 1.0)
     L_f = (L * 62.4 / (liquid_density / POUND_PER_FT3) * np.where(F > 10, 1 / np.sqrt(F), np.sqrt(F))
            * (liquid_viscosity * 1e3) ** 0.1)
     t = 7.4e-8 * G_f ** 2 * 10 ** (2.7e-5 * L_f)

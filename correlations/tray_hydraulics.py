@@ -109,10 +109,13 @@ def colwell_clear_liquid(weir_height: Values, weir_load: Values, active_velocity
     froude = vapor_density * active_velocity ** 2 / (GRAVITY * (liquid_density - vapor_density))
     load = weir_constant * (weir_load * (1 - weeping_fraction)) ** (2 / 3)
     height = np.asarray(weir_height + load)
-    # The map has a logarithmic slope below 0.4 everywhere: 50 passes are far below rounding.
+    # The map has a logarithmic slope below 0.4 everywhere: 50 passes would end far below rounding.
     for _ in range(50):
         alpha = 1 / (1 + 12.6 * (froude / height) ** 0.4 * hole_area_fraction ** -0.25)
+        before = height
         height = alpha * (weir_height + _colwell_crest(load / alpha ** (2 / 3), weir_height))
+        if (np.abs(height - before) <= 1e-15 * height).all():
+            break
     return height
 
 
@@ -124,7 +127,11 @@ def _colwell_crest(base: Array, weir_height: Array) -> Array:
     x = A / 0.61 ** (2 / 3)
     for _ in range(30):  # Newton on a convex increasing function from above: monotone
         C = 0.61 + 0.08 * x
-        x = x - (x * C ** (2 / 3) - A) / (C ** (2 / 3) + (2 / 3) * 0.08 * x * C ** (-1 / 3))
+        root = np.cbrt(C)
+        step = (x * root ** 2 - A) / (root ** 2 + (2 / 3) * 0.08 * x / root)
+        x = x - step
+        if (np.abs(step) <= 1e-15 * x).all():
+            break
     return np.where(high < 8.135 * weir_height, weir_height * x, high)
 
 

@@ -57,7 +57,7 @@ def lygeros_magoulas_flooding(flow_parameter: Values, tray_spacing: Values, surf
 
 
 @correlation("flooding velocity on the net area", "sieve and valve trays", "m s-1", Validity(
-    {}, 0.15, "kister_haas_1990", Confidence.CROSS_CHECKED, range_note=UNKNOWN,
+    {}, 0.20, "kister_haas_1990", Confidence.CROSS_CHECKED, range_note=UNKNOWN,
     error_note="band of 15 to 20 %, from memory"), dimensional=True)
 def kister_haas_flooding(weir_load: Values, tray_spacing: Values, hole_diameter: Values, hole_area_fraction: Values,
                          surface_tension: Values, vapor_density: Values, liquid_density: Values) -> Array:
@@ -113,7 +113,7 @@ _WEEP_NOTE = f"{UNKNOWN}; holes from 3 mm, below about 11 bar, not for large tra
 
 
 @correlation("weeping velocity on the hole area", "sieve trays", "m s-1", Validity(
-    {}, 0.225, "lockett_banik_1986", Confidence.CROSS_CHECKED, range_note=_WEEP_NOTE,
+    {}, 0.30, "lockett_banik_1986", Confidence.CROSS_CHECKED, range_note=_WEEP_NOTE,
     error_note="band of 15 to 30 %"), dimensional=True)
 def lockett_banik_weeping(hole_velocity: Values, clear_liquid_height: Values, vapor_density: Values,
                           liquid_density: Values) -> Array:
@@ -126,7 +126,7 @@ def lockett_banik_weeping(hole_velocity: Values, clear_liquid_height: Values, va
 
 
 @correlation("weeping velocity on the hole area", "sieve trays", "m s-1", Validity(
-    {}, 0.225, "colwell_obara", Confidence.CROSS_CHECKED, range_note=_WEEP_NOTE, error_note="band of 15 to 30 %"),
+    {}, 0.30, "colwell_obara", Confidence.CROSS_CHECKED, range_note=_WEEP_NOTE, error_note="band of 15 to 30 %"),
     dimensional=True)
 def colwell_obara_weeping(hole_velocity: Values, clear_liquid_height: Values, vapor_density: Values,
                           liquid_density: Values) -> Array:

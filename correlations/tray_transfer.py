@@ -54,7 +54,8 @@ def aiche_bubble_cap_liquid_units(diffusivity: Values, active_velocity: Values, 
 
 @correlation("vapour coefficient times area per vapour volume", "sieve trays", "s-1", Validity(
     {"flood_fraction": Range(0.3, 0.9)}, 0.06, "chan_fair_1984", Confidence.CROSS_CHECKED,
-    error_note="mean on 143 points, from memory"), dimensional=True)
+    error_note="mean on 143 points, from memory", range_note="range advised, about; from memory",
+    range_confidence=Confidence.MEMORY), dimensional=True)
 def chan_fair_vapor(diffusivity: Values, flood_fraction: Values, clear_liquid_height: Values) -> Array:
     """Volumetric vapour coefficient of a sieve tray by Chan and Fair [1/s]: N_G = k_G a t_V.
 

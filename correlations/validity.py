@@ -63,7 +63,8 @@ class Validity:
 
     ranges : variable -> `Range`, or None where the variable limits the correlation but its bounds are missing.
         Variables are argument names or dimensionless groups; the record of the correlation knows how to compute them.
-    mean_error : mean relative deviation from the data, as a fraction, or None.
+    mean_error : mean relative deviation from the data as a fraction, or None; where only a band is published, the wider
+        end of it (`error_note` says so).
     source : key into the bibliography.
     confidence : in formula and constants.
     range_note, error_note : a remark on either; where the figure is None, one of `WORDS` opens the remark.

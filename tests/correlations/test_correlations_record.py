@@ -2,6 +2,8 @@
 from __future__ import annotations
 
 import inspect
+import subprocess
+import sys
 import warnings
 
 import numpy as np
@@ -20,6 +22,7 @@ from correlations import (
     packing_area,
     packing_coefficients,
     packing_limits,
+    packing_pressure_drop,
     packings,
     tray_limits,
     tray_transfer,
@@ -216,6 +219,22 @@ class TestPackings:
                     2.0, 1.19, 998.0, 1.82e-5, 1e-3, **{n: row[n] for n in ("specific_area", "void_fraction",
                                                                            "flooding_constant")})
                 assert 0.045 < flood.vapor_velocity * (1.19 / 996.8) ** 0.5 < 0.17, row.name
+
+
+def test_imports_numpy_and_scipy_only():
+    """In a fresh interpreter: nothing from the layers above, no table or plot library."""
+    code = ("import sys, correlations; "
+            "print(sorted({m.split('.')[0] for m in sys.modules} & {'ratebased', 'pandas', 'thermo', 'matplotlib'}))")
+    found = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True)
+    assert found.stdout.strip() == "[]"
+
+
+def test_robbins_above_one_atmosphere():
+    """The factor 10^(0.0187 rho_V), lb/ft3, acts on the gas load: t grows with its square."""
+    state = dict(vapor_velocity=0.5, vapor_density=3.0, liquid_velocity=1e-9, liquid_density=700.0,
+                 liquid_viscosity=3e-4, dry_packing_factor=100.0)
+    low, high = (packing_pressure_drop.robbins(**state, pressure=p) for p in (101325.0, 2e5))
+    assert high / low == pytest.approx(10 ** (2 * 0.0187 * 3.0 / 16.018463), rel=1e-3)
 
 
 def test_roots():
