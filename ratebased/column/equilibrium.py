@@ -24,7 +24,7 @@ from .profile import Profile
 from .result import equilibrium_profile
 from .search import with_search
 from .specifications import RefluxRatio
-from .start import State, dry_margin, masked, starting_state
+from .start import State, condensing_state, dry_margin, masked, starting_state
 from .steps import TINY, after_draw, fractions, limited
 
 TOLERANCE = 1e-10
@@ -379,6 +379,11 @@ def solve_state(problem: Problem, efficiency: EfficiencySet | None, progress: Pr
         if outcome.converged:
             return outcome.state, outcome, rows
         tried.append(f"continuation from equilibrium stages: {outcome.reason}")
+    if problem.top is None and problem.bottom is None and efficiency is None:
+        outcome = newton(problem, rows, condensing_state(problem), progress=progress)
+        if outcome.converged:
+            return outcome.state, outcome, rows
+        tried.append(f"Newton from bubble points of the liquids: {outcome.reason}")
     if isinstance(problem.top, RefluxRatio) and efficiency is None:
         outcome = _reflux_continuation(problem, rows, progress)
         if outcome.converged:

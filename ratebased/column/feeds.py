@@ -126,9 +126,44 @@ def _at_vapor_fraction(properties: PropertyModel, flows: Array, P: float, wanted
             return FlashResult(high, flows.copy(), np.zeros_like(flows))
         if high - low < 1e-9 * low:
             return FlashResult(low, flows * wanted, flows * (1.0 - wanted))
+    found = _two_phase(properties, flows, P, wanted, low + wanted * (high - low))
+    if found is not None:
+        return found
     T = brentq(lambda t: _at_temperature(properties, flows, P, t).vapor_fraction - wanted, low, high, xtol=1e-11,
                rtol=8.9e-16)
     return _at_temperature(properties, flows, P, float(T))
+
+
+def _two_phase(properties: PropertyModel, flows: Array, P: float, beta: float, T: float) -> FlashResult | None:
+    """Newton's method in T at a vapour fraction strictly between the limits, K substituted; None if it fails."""
+    z = flows / flows.sum()
+    gas, heavy = ~properties.condensable, ~properties.volatile
+    ordinary = ~(gas | heavy)
+    x, y = _first_phases(z, gas, heavy)
+    low, high = getattr(properties, "T_range", (1.0, 1e5))
+    pressure = np.asarray(P)
+
+    def k_at(T: float, x: Array, y: Array) -> Array:
+        return np.where(ordinary, properties.k_value(np.asarray(T), pressure, x, y), 1.0)
+
+    for _ in range(MAX_SUBSTITUTIONS):
+        K, step = k_at(T, x, y), 1e-3 if T + 1e-3 < high else -1e-3
+        slope = (k_at(T + step, x, y) - K) / step
+        rest = 1.0 + beta * (K - 1.0)
+        excess = float(np.where(ordinary, z * (K - 1.0) / rest, 0.0).sum())
+        excess += float(z[gas].sum()) / beta - float(z[heavy].sum()) / (1.0 - beta)
+        change = float(np.clip(-excess / (z * slope / rest ** 2)[ordinary].sum(), -20.0, 20.0))
+        T = min(max(T + change, low), high)
+        new_x = np.where(gas, 0.0, np.where(heavy, z / (1.0 - beta), z / rest))
+        new_y = np.where(heavy, 0.0, np.where(gas, z / beta, K * z / rest))
+        new_x, new_y = new_x / new_x.sum(), new_y / new_y.sum()
+        moved = max(float(np.abs(new_x - x).max()), float(np.abs(new_y - y).max()), abs(change) / T)
+        x, y = new_x, new_y
+        if moved < FLASH_TOLERANCE * 10.0:
+            share = beta * np.where(ordinary, K / rest, np.where(gas, 1.0 / beta, 0.0))
+            vapor = flows * share
+            return FlashResult(T, vapor, flows - vapor)
+    return None
 
 
 def _bracket(properties: PropertyModel, flows: Array, P: float, wanted: float) -> tuple[float, float]:

@@ -15,7 +15,7 @@ from ..properties.protocol import Array
 from .contact import FlowPattern, Layout, Transfer, film_transfer_units, transfer
 from .ends import bubble_vapor, condenser_rows, equilibrium_part, reboiler_rows
 from .problem import Problem
-from .stage_system import Entering, StageBlocks, StageUnknowns, stage_residuals
+from .stage_system import Caloric, Entering, StageBlocks, StageUnknowns, stage_residuals
 from .steps import after_draw
 
 
@@ -153,7 +153,7 @@ def rate_system(setup: RateSetup, state: RateState) -> RateSystem:
         coefficients.coefficients, coefficients.c_vapor, coefficients.c_liquid, duty=problem.duty[c],
         vapor_weight=shares.y, liquid_weight=shares.x, vapor_temperature_weight=shares.T_V,
         liquid_temperature_weight=shares.T_L, flow_scale=problem.F, energy_scale=problem.energy_scale,
-        y_interface=state.y_I)
+        y_interface=state.y_I, leaving=Caloric(vapor.H[c], vapor.cp[c], liquid.H[c], liquid.cp[c]))
     bulk = np.zeros((S, m))
     D, lower, upper = np.zeros((S, m, m)), np.zeros((S, m, m)), np.zeros((S, m, m))
     bulk[c], D[c] = blocks.bulk, blocks.bulk_by_bulk

@@ -67,6 +67,16 @@ class Entering:
 
 
 @dataclass(frozen=True)
+class Caloric:
+    """Partial molar enthalpies, J/mol, and heat capacities, J/(mol K), of what leaves, vapour and liquid, (..., n)."""
+
+    H_V: Array
+    C_V: Array
+    H_L: Array
+    C_L: Array
+
+
+@dataclass(frozen=True)
 class StageBlocks:
     """Residuals and Jacobian blocks of a batch of stages; m = 2n+2 bulk rows, k = 2n+1 interface rows.
 
@@ -144,8 +154,8 @@ def stage_residuals(state: StageUnknowns, vapor_in: Entering, liquid_in: Enterin
                     duty: ArrayLike = 0.0, vapor_weight: ArrayLike = 0.0, liquid_weight: ArrayLike = 0.0,
                     vapor_temperature_weight: ArrayLike | None = None,
                     liquid_temperature_weight: ArrayLike | None = None,
-                    flow_scale: float = 1.0, energy_scale: float = 1.0, y_interface: Array | None = None
-                    ) -> StageBlocks:
+                    flow_scale: float = 1.0, energy_scale: float = 1.0, y_interface: Array | None = None,
+                    leaving: Caloric | None = None) -> StageBlocks:
     """Residuals of rate-based stages and their derivatives, for a column script of one's own.
 
     Parameters
@@ -162,6 +172,7 @@ def stage_residuals(state: StageUnknowns, vapor_in: Entering, liquid_in: Enterin
         own where they are given.
     flow_scale, energy_scale : divide the balances (mol/s) and energy rows (W).
     y_interface : interface vapour at which K is first evaluated; None: the bulk vapour.
+    leaving : enthalpies of what leaves, where they are known already.
 
     Returns
     -------
@@ -190,9 +201,12 @@ def stage_residuals(state: StageUnknowns, vapor_in: Entering, liquid_in: Enterin
         Bulk(x_b, T_Lb, coefficients.kappa_liquid, coefficients.h_liquid, np.asarray(c_liquid, float)),
         properties, P, state.z, y_guess=y_interface)
     assert films.dw is not None and films.dE_V_dw is not None and films.dE_L_dw is not None
-    HV = np.broadcast_to(properties.vapor_enthalpy(T_V, P, y), v.shape)
-    HL = np.broadcast_to(properties.liquid_enthalpy(T_L, P, x), l.shape)
-    CV, CL = vapor_heat_capacity(properties, T_V, P, y), liquid_heat_capacity(properties, T_L, P, x)
+    if leaving is None:
+        leaving = Caloric(np.broadcast_to(properties.vapor_enthalpy(T_V, P, y), v.shape),
+                          vapor_heat_capacity(properties, T_V, P, y),
+                          np.broadcast_to(properties.liquid_enthalpy(T_L, P, x), l.shape),
+                          liquid_heat_capacity(properties, T_L, P, x))
+    HV, CV, HL, CL = leaving.H_V, leaving.C_V, leaving.H_L, leaving.C_L
     area = np.broadcast_to(coefficients.area, batch)
     AN = area[..., None] * state.N
 

@@ -11,9 +11,7 @@ from dataclasses import dataclass
 import numpy as np
 from scipy.linalg import solve_banded
 
-from ..errors import ConvergenceError, InputError, PropertyRangeError
 from ..properties.protocol import Array
-from ..properties.saturation import bubble_point
 from .problem import Problem
 from .specifications import BoilupRatio, BottomsRate, DistillateRate, ReboilerDuty, RefluxRatio
 from .steps import TINY
@@ -21,6 +19,7 @@ from .steps import TINY
 SWEEPS = 30
 SWEEP_TOLERANCE = 1.0
 """K. Sweeps end when no temperature moves by more."""
+BOILING_STEPS = 2
 
 
 @dataclass(frozen=True)
@@ -39,6 +38,11 @@ def starting_state(problem: Problem) -> State:
     if problem.top is None and problem.bottom is None:
         return _sum_rates(problem, V, L)
     return _bubble_sweeps(problem, V, L)
+
+
+def condensing_state(problem: Problem) -> State:
+    """A second start for columns without ends, where the gas condenses rather than dissolves: every liquid boils."""
+    return _bubble_sweeps(problem, *overflow(problem))
 
 
 def _feed_latent_heat(problem: Problem) -> float:
@@ -157,26 +161,29 @@ def masked(problem: Problem, v: Array, l: Array) -> tuple[Array, Array]:
     return v, l
 
 
-def _boiling(problem: Problem, x: Array, T: Array) -> tuple[Array, Array]:
-    """Bubble points of the condensable part; a stage that has none in the model's range keeps its temperature."""
+def _boiling(problem: Problem, x: Array, T: Array, y: Array) -> tuple[Array, Array]:
+    """Nearly bubble points of the condensable part, by Newton steps of ln(sum K x) in 1/T, in which it is nearly straight.
+
+    An oil raises the boiling point without limit: here it counts for half of the liquid at most.
+    """
     shares = np.where(problem.gas, 0.0, x)
-    if problem.heavy.any():                    # an oil raises the boiling point without limit: half of it at most
+    if problem.heavy.any():
         volatile = np.where(problem.heavy, 0.0, shares).sum(-1, keepdims=True)
         heavy = shares.sum(-1, keepdims=True) - volatile
         cap = np.minimum(1.0, volatile / np.maximum(heavy, 1e-300))
         shares = np.where(problem.heavy, shares * cap, shares)
     shares = shares / shares.sum(-1, keepdims=True)
-    try:
-        return bubble_point(problem.properties, problem.P, shares, T)
-    except (ConvergenceError, PropertyRangeError, InputError):
-        pass
-    T, y = T.copy(), np.empty_like(x)
-    for j in range(problem.S):
-        try:
-            T[j], y[j] = bubble_point(problem.properties, problem.P[j], shares[j], T[j])
-        except (ConvergenceError, PropertyRangeError, InputError):
-            Kx = problem.properties.k_value(T[j], problem.P[j], shares[j], shares[j]) * shares[j]
-            y[j] = Kx / Kx.sum()
+    low, high = problem.temperature_limits
+    properties, P = problem.properties, problem.P
+    for _ in range(BOILING_STEPS):
+        Kx = np.where(problem.ordinary, properties.k_value(T, P, shares, y), 0.0) * shares
+        total = Kx.sum(-1)
+        y = Kx / total[:, None]
+        near = np.minimum(T + 0.05, high) - np.where(T + 0.05 > high, 0.05, 0.0)
+        other = np.where(problem.ordinary, properties.k_value(near, P, shares, y), 0.0) * shares
+        slope = np.log(other.sum(-1) / total) / (1.0 / near - 1.0 / T)              # by 1/T: minus a latent heat over R
+        inverse = 1.0 / T - np.log(total) / np.minimum(slope, -500.0)
+        T = np.clip(1.0 / np.maximum(inverse, 1e-6), np.maximum(T - 60.0, low), np.minimum(T + 60.0, high))
     return T, y
 
 
@@ -184,14 +191,19 @@ def _bubble_sweeps(problem: Problem, V: Array, L: Array) -> State:
     S = problem.S
     z = np.where(problem.gas, 0.0, problem.feed_components)
     x = np.tile(z / z.sum(), (S, 1))
-    T, y = _boiling(problem, x, np.full(S, problem.mean_feed_temperature))
+    vapor = np.where(problem.heavy, 0.0, problem.feed_components)
+    y = np.tile(vapor / vapor.sum(), (S, 1))
+    low, high = problem.temperature_limits
+    T = np.full(S, np.clip(problem.mean_feed_temperature, low, high))
+    for _ in range(4):
+        T, y = _boiling(problem, x, T, y)
     v, l = y, x
     for _ in range(SWEEPS):
         K = problem.properties.k_value(T, problem.P, x, y)
         v, l = _liquid_profile(problem, K, V, L)
         _, inside = masked(problem, v, l)
         x = inside / inside.sum(-1, keepdims=True)
-        new, y = _boiling(problem, x, T)
+        new, y = _boiling(problem, x, T, y)
         change = np.abs(new - T).max()
         T = new
         if change < SWEEP_TOLERANCE:
