@@ -13,7 +13,14 @@ from .components import PropertyRecord, PureComponents, Role
 from .cubic import PENG_ROBINSON, SOAVE, CubicEquation, CubicForm, CubicVapor
 from .diffusion import DiluteDiffusivity, Fuller, HaydukMinhas, LiquidDiffusivity, WilkeChang
 from .henry import IN_WATER, HenryConstant, HenryLaw
-from .thermo_data import ComponentData, boiling_surface_tension, default_range, pure_components, unifac_groups
+from .thermo_data import (
+    ComponentData,
+    bank_record,
+    boiling_surface_tension,
+    default_range,
+    pure_components,
+    unifac_groups,
+)
 from .vapor import VaporModel, VirialVapor
 
 if TYPE_CHECKING:
@@ -37,7 +44,7 @@ def build(model: type[Model], names: Sequence[str], activity: str | ActivityMode
           T_range: tuple[float, float] | None = None, noncondensing: Sequence[str] = (),
           nonvolatile: Sequence[str] = (), henry: HenryArgument = (),
           parameters: Mapping[str, ArrayLike] | None = None, vapor: str | VaporModel = "ideal", poynting: bool = False,
-          diffusivity: str = "wilke-chang", k_ij: ArrayLike = 0.0, surface_tension: SurfaceTension | None = None
+          diffusivity: str = "wilke-chang", k_ij: ArrayLike | None = None, surface_tension: SurfaceTension | None = None
           ) -> Model:
     """A `ThermoProperties` of components given by name or CAS number.
 
@@ -63,6 +70,12 @@ def build(model: type[Model], names: Sequence[str], activity: str | ActivityMode
     Raises `InputError` for an unknown name, a property nobody has (naming component and property), a missing
     parameter; warns `PropertyWarning` where a method had to be replaced or stretched.
     """
+    if isinstance(henry, str):
+        raise InputError(f"henry: expected a list of names, got {henry!r}")
+    if parameters is not None and not isinstance(activity, str):
+        raise InputError("parameters: an activity model given as an object has its own")
+    if k_ij is not None and (not isinstance(vapor, str) or vapor == "ideal"):
+        raise InputError("k_ij: an ideal vapour has none, and a vapour model given as an object has its own")
     data = ComponentData(names)
     roles = _roles(data.names, noncondensing, nonvolatile, list(henry))
     liquids = [i for i, role in enumerate(roles) if role.has_liquid_data]
@@ -72,9 +85,10 @@ def build(model: type[Model], names: Sequence[str], activity: str | ActivityMode
     law = _henry_law(data, roles, liquids, henry)
     mixing = activity if not isinstance(activity, str) else _activity(data, liquids, activity, parameters)
     components = pure_components(data, roles, span)
-    gas = vapor if not isinstance(vapor, str) else _vapor(components, vapor, k_ij)
+    gas = vapor if not isinstance(vapor, str) else _vapor(components, vapor, 0.0 if k_ij is None else k_ij)
     liquid = liquid_diffusivity(data, components, diffusivity)
-    records = _mixture_records(mixing, gas, law, poynting, diffusivity, surface_tension is not None)
+    records = [bank_record(components.bank),
+               *_mixture_records(mixing, gas, law, poynting, diffusivity, surface_tension is not None)]
     return model(components, mixing, henry=law, vapor=gas, poynting=poynting, surface_tension=surface_tension,
                  gas_diffusivity=Fuller(components.molar_mass, components.diffusion_volume),
                  liquid_diffusivity=liquid, records=records)
@@ -90,7 +104,8 @@ def build_cubic(model: type[CubicModel], names: Sequence[str], equation: str | C
     form: CubicForm = chosen("equation", equation, EQUATIONS) if isinstance(equation, str) else equation
     cubic = CubicEquation(form, components.critical_temperature, components.critical_pressure,
                           components.acentric_factor, k_ij)
-    records = [PropertyRecord("mixture", "fugacity_enthalpy_density", form.source, None, None, "this library",
+    records = [bank_record(components.bank),
+               PropertyRecord("mixture", "fugacity_enthalpy_density", form.source, None, None, "this library",
                               note="liquid volume shifted"),
                *transport_records(diffusivity, surface_tension is not None)]
     return model(components, cubic, gas_diffusivity=Fuller(components.molar_mass, components.diffusion_volume),
@@ -229,7 +244,7 @@ def transport_records(diffusivity: str, own_tension: bool) -> list[PropertyRecor
         ("vapor_viscosity", "Wilke (1950)", "a gas at low pressure"),
         ("vapor_conductivity", "Wassiljewa with Mason & Saxena (1958)", "a gas at low pressure"),
         ("vapor_diffusivity", "Fuller, Schettler & Giddings (1966), volumes of 1969",
-         "never from Lennard-Jones constants (one default set is fitted to liquids)"),
+         "no Lennard-Jones constants (one default set is fitted to liquids) and no dipole moments (some are low)"),
         ("liquid_viscosity", "logarithms by mole fraction, Grunberg & Nissan (1949) without interaction",
          "low by up to a factor of two for cold aqueous alcohols; never an electrolyte rule"),
         ("liquid_conductivity", "power rule of Vredeveld", "dissolved gases left out"),
@@ -247,7 +262,8 @@ def _mixture_records(activity: ActivityModel, vapor: VaporModel | None, law: Hen
     def row(name: str, method: str, note: str = "", source: str = "this library") -> PropertyRecord:
         return PropertyRecord("mixture", name, method, None, None, source, note=note)
 
-    records = [row("activity_coefficients", activity.describe()),
+    groups = "a component without groups is refused, not taken for one of no size"
+    records = [row("activity_coefficients", activity.describe(), groups if isinstance(activity, Unifac) else ""),
                row("vapor_fugacity_and_density", "ideal gas" if vapor is None else vapor.describe()),
                row("liquid_fugacity", "vapour pressure" + ("" if vapor is None else " and its fugacity coefficient")
                    + (", Poynting's correction" if poynting else "")),

@@ -145,7 +145,12 @@ class _Problem:
         return (self.z, w) if self.sign > 0 else (w, self.z)
 
     def _ln_k(self, T: Array, w: Array) -> Array:
-        return np.log(np.where(self.present, self.properties.k_value(T, self.P, *self._phases(w)), 1.0))
+        K = np.where(self.present, self.properties.k_value(T, self.P, *self._phases(w)), 1.0)
+        if not (K > 0).all():
+            where = tuple(int(i) for i in np.argwhere(~(K > 0))[0])
+            raise InputError(f"properties: K of {self.properties.names[where[-1]]} is {K[where]} at "
+                             f"{T[where[:-1]]:.6g} K, expected a number above zero for a component in both phases")
+        return np.log(K)
 
     def solve(self, T: Array, w: Array | None = None) -> tuple[Array, Array, Array]:
         """Newton with a step that is halved until the residual falls: T, w and the largest residual, (...)."""
@@ -193,7 +198,11 @@ class _Problem:
         jacobian[..., :n, :n] = np.eye(n) - self.sign * np.where(pairs, by_other * portions[..., None, :], 0.0)
         jacobian[..., :n, n] = np.where(self.present, -self.sign * slopes.temperature, 0.0)
         jacobian[..., n, :n] = portions / portions.sum(-1, keepdims=True)
-        return np.asarray(np.linalg.solve(jacobian, -residual[..., None])[..., 0], dtype=np.float64)
+        try:
+            step = np.linalg.solve(jacobian, -residual[..., None])
+        except np.linalg.LinAlgError:  # a state on the spinodal: the shortest step that reduces the residual
+            step = np.linalg.pinv(jacobian) @ -residual[..., None]
+        return np.asarray(step[..., 0], dtype=np.float64)
 
 
 def smallest_gamma_eigenvalue(properties: PropertyModel, T: ArrayLike, P: ArrayLike, x: ArrayLike) -> Array:

@@ -35,6 +35,7 @@ AIR = {"7727-37-9": 0.7812, "7782-44-7": 0.2096, "7440-37-1": 0.0092}
 """Dry air as nitrogen, oxygen and argon, mole fractions (common practice)."""
 
 OVERRIDES = {
+    "ln_vapor_pressure": "never used above the critical temperature",
     "gas_viscosity": "floor of 1e-5 Pa s outside the method's range removed",
     "vaporization_enthalpy": "liquid enthalpy is the ideal gas less this, never an integral of a liquid heat capacity "
                              "(one default there, of chloroform, is a third low)",
@@ -100,6 +101,8 @@ class ComponentData:
     def __init__(self, names: Sequence[str]) -> None:
         from thermo import ChemicalConstantsPackage
 
+        if isinstance(names, str) or not len(names):
+            raise InputError(f"names: expected a list of component names, got {names!r}")
         self.names = tuple(names)
         self.cas = tuple("air" if name.strip().lower() == "air" else resolve(name) for name in names)
         duplicates = {cas for cas in self.cas if self.cas.count(cas) > 1}
@@ -371,11 +374,22 @@ def _diffusion_volume(data: ComponentData, component: int) -> float:
         raise InputError(f"{data.names[component]}: no diffusion volume ({error})") from error
 
 
+def bank_record(bank: TemperatureBank) -> PropertyRecord:
+    """How the temperature functions are kept."""
+    segments = len(bank.edges) - 1
+    return PropertyRecord("mixture", "temperature_functions", f"Chebyshev series of degree {bank.degree}, {segments} "
+                          f"segment{'s' if segments > 1 else ''}", *bank.T_range, "this library",
+                          note="a new series starts at every limit of a method, where it has a kink")
+
+
 def _constant_records(data: ComponentData) -> list[PropertyRecord]:
     labels = {"MWs": "molar_mass", "Tcs": "critical_temperature", "Pcs": "critical_pressure",
               "Vcs": "critical_volume", "omegas": "acentric_factor", "Tbs": "boiling_temperature"}
     records = []
     for i, name in enumerate(data.names):
+        identity = "nitrogen, oxygen and argon" if data.is_air(i) else f"CAS {data.cas[i]}"
+        records.append(PropertyRecord(name, "identity", identity, None, None, _source(),
+                                      note="by name or number; formulas are refused, some stand for another substance"))
         for attribute, label in labels.items():
             note = ""
             if attribute == "Tbs" and not data.is_air(i) and data.constant("Tbs", i, required=False) < data.constant(

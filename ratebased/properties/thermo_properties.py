@@ -31,7 +31,7 @@ if TYPE_CHECKING:
 
 
 class ThermoProperties(MixtureModel):
-    """Activity coefficients over vapour pressures, ideal-gas enthalpies, corresponding transport properties.
+    """Activity coefficients over vapour pressures, with enthalpies and transport properties of both phases.
 
     K_i = gamma_i(T, x) Psat_i(T)/P; a dissolved gas has K_i = H_i(T, x)/P; a masked component 0. With a model of the
     vapour, K_i = gamma_i Psat_i phi_sat_i/(phi_i P), and with `poynting` times exp(V_i (P - Psat_i)/(R T)).
@@ -81,7 +81,7 @@ class ThermoProperties(MixtureModel):
                    T_range: tuple[float, float] | None = None, noncondensing: Sequence[str] = (),
                    nonvolatile: Sequence[str] = (), henry: HenryArgument = (),
                    parameters: Mapping[str, ArrayLike] | None = None, vapor: str | VaporModel = "ideal",
-                   poynting: bool = False, diffusivity: str = "wilke-chang", k_ij: ArrayLike = 0.0,
+                   poynting: bool = False, diffusivity: str = "wilke-chang", k_ij: ArrayLike | None = None,
                    surface_tension: SurfaceTension | None = None) -> ThermoProperties:
         """A model of components given by name or CAS number; see `from_names.build` for every argument."""
         from .from_names import build

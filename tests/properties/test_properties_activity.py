@@ -143,6 +143,21 @@ def test_order_of_components_does_not_matter(n):
     np.testing.assert_allclose(two, one[:, order], atol=1e-13)
 
 
+def test_temperature_and_composition_broadcast():
+    """One composition at many temperatures, many compositions at one, and both at once give the same numbers."""
+    x = compositions(3, 4)
+    for model in all_models(3):
+        many_T = model.ln_gamma(TEMPERATURES, x[0], 2), model.mole_number_derivatives(TEMPERATURES, x[0])
+        many_x = model.ln_gamma(TEMPERATURES[1], x, 2), model.mole_number_derivatives(TEMPERATURES[1], x)
+        table = model.ln_gamma(TEMPERATURES[:, None], x, 2), model.mole_number_derivatives(TEMPERATURES[:, None], x)
+        for k in range(3):
+            assert table[0].terms[k].shape == (3, 4, 3)
+            np.testing.assert_allclose(many_T[0].terms[k], table[0].terms[k][:, 0], rtol=1e-12, atol=1e-15)
+            np.testing.assert_allclose(many_x[0].terms[k], table[0].terms[k][1], rtol=1e-12, atol=1e-15)
+        np.testing.assert_allclose(many_T[1], table[1][:, 0], rtol=1e-12, atol=1e-14)
+        np.testing.assert_allclose(many_x[1], table[1][1], rtol=1e-12, atol=1e-14)
+
+
 def test_absent_component_has_its_infinite_dilution_value():
     """x_i = 0 exactly is finite everywhere and the limit of x_i -> 0."""
     x, nearly = np.array([0.0, 0.4, 0.6]), np.array([1e-9, 0.4, 0.6 - 1e-9])

@@ -3,7 +3,7 @@ import numpy as np
 import pytest
 
 from ratebased.errors import InputError, NoSolutionError, PropertyWarning
-from ratebased.properties import CubicProperties
+from ratebased.properties import CubicProperties, ThermoProperties
 from ratebased.properties.cubic import PENG_ROBINSON, SOAVE, CubicEquation, CubicVapor, Phase
 from ratebased.properties.protocol import GAS_CONSTANT
 
@@ -148,6 +148,21 @@ def test_bubble_and_dew_agree_and_supercritical_is_refused(model):
     small = CubicProperties.from_names(["propane", "n-butane"], T_range=(240.0, 460.0))
     with pytest.raises(NoSolutionError, match="critical"):
         small.bubble_point(7e6, [0.5, 0.5])
+
+
+def test_two_routes_to_one_mixture():
+    """Near-ideal propane/n-butane at 0.6 MPa: the equation of state against vapour pressures with an ideal liquid,
+    virial vapour and Poynting's correction. They share critical constants only; y within 0.005, T within 0.5 K."""
+    names, x = ["propane", "n-butane"], np.array([[0.2, 0.8], [0.46, 0.54], [0.8, 0.2]])
+    cubic = CubicProperties.from_names(names, T_range=(250.0, 350.0))
+    virial = ThermoProperties.from_names(names, "ideal", T_range=(250.0, 350.0), vapor="virial", poynting=True)
+    (T_one, y_one), (T_two, y_two) = cubic.bubble_point(6e5, x), virial.bubble_point(6e5, x)
+    np.testing.assert_allclose(T_one, T_two, atol=0.5)
+    np.testing.assert_allclose(y_one, y_two, atol=0.005)
+    P = np.full(3, 6e5)
+    latent = [(m.vapor_enthalpy(T, P, y) * y).sum(-1) - (m.liquid_enthalpy(T, P, x) * x).sum(-1)
+              for m, T, y in ((cubic, T_one, y_one), (virial, T_two, y_two))]
+    np.testing.assert_allclose(latent[0], latent[1], rtol=0.02)
 
 
 def test_transport_of_light_components_is_held_at_its_critical_limit(model):

@@ -100,6 +100,16 @@ def test_bad_arguments_are_named(call, words):
         call(gas)
 
 
+def test_a_model_without_a_k_value_is_named():
+    class Broken(OnlyRequired):
+        def __init__(self, model):
+            super().__init__(model)
+            self.k_value = lambda T, P, x, y: model.k_value(T, P, x, y) * np.array([1.0, 0.0, 1.0])
+
+    with pytest.raises(InputError, match="K of b is 0"):
+        bubble_point(Broken(MODEL), P, [0.2, 0.3, 0.5])
+
+
 def test_solution_outside_the_range_is_an_error():
     class Bounded(OnlyRequired):
         T_range = (300.0, 350.0)

@@ -159,6 +159,37 @@ def test_latent_heats_and_clausius_clapeyron():
     np.testing.assert_allclose(gaps["virial"], [0.021, 0.008, 0.004], atol=0.001)
 
 
+def test_poynting_equals_the_data_library(states):
+    import thermo
+
+    data = ComponentData(NAMES)
+    f = data.functions
+    T, _, x, y = states
+    liquid = thermo.GibbsExcessLiquid(
+        VaporPressures=f.VaporPressures, VolumeLiquids=f.VolumeLiquids, HeatCapacityGases=f.HeatCapacityGases,
+        EnthalpyVaporizations=f.EnthalpyVaporizations, equilibrium_basis="Poynting", T=300.0, P=2e6,
+        zs=[1 / 3] * 3, GibbsExcessModel=thermo.IdealSolution(T=300.0, xs=[1 / 3] * 3))
+    K = ThermoProperties.from_names(NAMES, "ideal", T_range=(285.0, 400.0), poynting=True).k_value(T, 2e6, x, y)
+    for s in range(6):
+        np.testing.assert_allclose(K[s], liquid.to(T=float(T[s]), P=2e6, zs=x[s].tolist()).phis(), rtol=1e-10)
+
+
+@pytest.mark.parametrize("options", [{}, {"poynting": True}, {"vapor": "virial", "poynting": True},
+                                     {"vapor": "peng-robinson"}, {"vapor": "soave"}], ids=str)
+def test_every_option_leaves_a_pure_component_at_its_vapor_pressure(options):
+    """K = 1 at P = Psat and the latent heat is the measured one: corrections act on mixtures and other pressures."""
+    plain = ThermoProperties.from_names(NAMES, "ideal", T_range=(285.0, 400.0))
+    model = ThermoProperties.from_names(NAMES, "ideal", T_range=(285.0, 400.0), **options)
+    T = np.array([300.0, 340.0, 390.0])
+    for i in range(3):
+        pure = np.tile(np.eye(3)[i], (3, 1))
+        saturation = plain.k_value(T, 1.0, pure, pure)[:, i]
+        np.testing.assert_allclose(model.k_value(T, saturation, pure, pure)[:, i], 1.0, rtol=1e-10)
+        latent, measured = ((m.vapor_enthalpy(T, saturation, pure) - m.liquid_enthalpy(T, saturation, pure))[:, i]
+                            for m in (model, plain))
+        np.testing.assert_allclose(latent, measured, rtol=1e-8)
+
+
 def test_masks_and_gas_as_any_component(ternary, absorber, states):
     """A gas that does not condense changes nothing in the liquid, wherever it stands in the list."""
     T, pressure, x, y = states
@@ -297,6 +328,11 @@ def test_nonvolatile_component():
                                          T_range=(290, 350)), "reference"),
     (lambda: ThermoProperties.from_names(["tetramethylsilane", "water"], "ideal", T_range=(290, 350)),
      "tetramethylsilane: no diffusion volume"),
+    (lambda: ThermoProperties.from_names("water"), "expected a list of component names"),
+    (lambda: ThermoProperties.from_names(["oxygen", "water"], henry="oxygen"), "henry: expected a list"),
+    (lambda: ThermoProperties.from_names(["ethanol", "water"], k_ij=0.1), "k_ij: an ideal vapour"),
+    (lambda: ThermoProperties.from_names(["ethanol", "water"], Nrtl(2, tau_b=1.0), parameters={"alpha": 0.3}),
+     "parameters: an activity model given as an object"),
     (lambda: ThermoProperties.from_names(["ethanol", "water"], "nrtl"), "nrtl needs"),
     (lambda: ThermoProperties.from_names(["ethanol", "water"], "nrtl", parameters={"taub": 0}), "taub"),
     (lambda: ThermoProperties.from_names(["ethanol", "water"], "margules"), "expected one of ideal, unifac"),
@@ -332,6 +368,7 @@ def test_defects_of_the_source_are_overridden():
     assert 105.0 < cp_chloroform < 125.0
     assert components.boiling_volume[3] == pytest.approx(33.3e-6, rel=0.02)  # not the liquid at its sublimation point
     notes = {(r.component, r.property): r.note for r in components.records}
+    assert "critical" in notes["water", "ln_vapor_pressure"] and "formulas" in notes["water", "identity"]
     assert "floor" in notes["tert-butanol", "gas_viscosity"]
     assert "sublimation" in notes["carbon dioxide", "boiling_temperature"]
     assert "never an integral" in notes["chloroform", "vaporization_enthalpy"]
@@ -345,7 +382,12 @@ def test_summary_explains_itself(absorber):
     assert set(frame.component) == {"air", *NAMES, "mixture"}
     assert (frame.method.str.len() > 0).all() and (frame.source.str.len() > 0).all()
     assert frame.fit_error.dropna().max() < 1e-10
-    assert "electrolyte" in frame.set_index("property").note["liquid_viscosity"]
+    notes = frame[frame.component == "mixture"].set_index("property").note
+    for name, word in (("liquid_viscosity", "electrolyte"), ("surface_tension", "too high"),
+                       ("vapor_diffusivity", "Lennard"), ("vapor_diffusivity", "dipole"),
+                       ("activity_coefficients", "without groups"), ("temperature_functions", "kink"),
+                       ("liquid_conductivity", "dissolved gases left out")):
+        assert word in notes[name]
 
 
 def test_far_extrapolation_is_warned_about():

@@ -25,14 +25,15 @@ class Nrtl:
         self.size = size
         self._tau = PairFunction(size, "tau", {"a": tau_a, "b": tau_b, "c": tau_c, "d": tau_d, "e": tau_e,
                                                "f": tau_f})
-        self._constant_alpha = pair_coefficients("alpha", alpha, size)
+        constant = pair_coefficients("alpha", alpha, size)
+        self._minus_alpha = -constant
         slope = pair_coefficients("alpha_slope", alpha_slope, size)
-        self._alpha = PairFunction(size, "alpha", {"a": self._constant_alpha, "d": slope}) if slope.any() else None
+        self._alpha = PairFunction(size, "alpha", {"a": constant, "d": slope}) if slope.any() else None
 
     def _local(self, T: Array, x: Array, order: int) -> tuple[Jet, Jet, Jet]:
         """G_ij/S_j, q_j and F_ij = G_ij (tau_ij - q_j)/S_j; S_j = sum_k x_k G_kj, q_j = sum_k x_k tau_kj G_kj/S_j."""
         tau = self._tau(T, order)
-        G = (-(tau * (self._constant_alpha if self._alpha is None else self._alpha(T, order)))).exp()
+        G = (tau * (self._minus_alpha if self._alpha is None else -self._alpha(T, order))).exp()
         row = x[..., None, :]
         per_mole = G / (row @ G)
         q = row @ (tau * per_mole)
