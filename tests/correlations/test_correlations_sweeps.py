@@ -6,12 +6,12 @@ from fractions import Fraction
 
 import numpy as np
 import pytest
-from hypothesis import given, settings
+from hypothesis import assume, given, settings
 from hypothesis import strategies as st
 from numpy.testing import assert_allclose
 from typical_arguments import INTERVALS, NESTED, plain, sample
 
-from correlations import InputError, catalogue
+from correlations import InputError, NoPhysicalRootError, catalogue
 from correlations.glossary import GLOSSARY
 from correlations.record import REGISTRY
 
@@ -48,7 +48,7 @@ def test_typical_values_cover_the_glossary():
 
 
 @pytest.mark.parametrize("name", CONSISTENT)
-@settings(max_examples=5, deadline=None)
+@settings(max_examples=5, deadline=None, derandomize=True)
 @given(seed=st.integers(0, 10 ** 6), length=st.floats(1.0, 4.0), mass=st.floats(0.1, 10.0), kelvin=st.floats(0.1, 10.0),
        mole=st.floats(0.1, 10.0))
 def test_units(name, seed, length, mass, kelvin, mole):
@@ -65,7 +65,11 @@ def test_units(name, seed, length, mass, kelvin, mole):
 
     other = {n: value * change(GLOSSARY[n].unit) for n, value in arguments.items()}
     units = function.record.unit.split("; ")
-    for before, after, unit in zip(parts(function.silent(**arguments)), parts(function.silent(**other)), units):
+    try:
+        original = parts(function.silent(**arguments))
+    except NoPhysicalRootError:
+        assume(False)  # a bed drawn beyond its flooding point
+    for before, after, unit in zip(original, parts(function.silent(**other)), units):
         assert_allclose(after, before * change(unit), rtol=1e-9)
     for group, value in function.record.range_variables(**arguments).items():
         if group not in function.record.parameters and group != "liquid_load_m_h":
