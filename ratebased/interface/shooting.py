@@ -11,7 +11,9 @@ entry, and with latent heats and dlnK/dT above zero the determinant has the sign
 """
 from __future__ import annotations
 
+from collections.abc import Iterator
 from dataclasses import dataclass, replace
+from itertools import pairwise
 from math import factorial
 
 import numpy as np
@@ -29,17 +31,19 @@ LARGEST = 8.0
 """|A|_1 up to which a film is shot: rounding grows with its exponential."""
 WORTHWHILE = 256
 """Batch below which the call overhead of the two paths is the same."""
-FIRST_ROUND, MAX_ITERATIONS = 7, 11
+FIRST_ROUND, MAX_ITERATIONS = 6, 10
 """Iterations before the unfinished problems of all chunks are brought together, and after that."""
 SLOPE_ACCURACY = 1e-3
 """Last term kept in the series of a derivative."""
 CHUNK = 2000
 """Problems handled at a time: few enough for the cache, enough to hide the calls."""
-FULL = 4
+FULL = 3
 """Jacobians taken at most; after that only updates of the last one."""
+SIZES = (1.0, 2.0, 4.0)
+"""|A|_1 at which a new chunk begins."""
 SUPERLINEAR = 1e-2
 """e^2/e_before foretells the error after a step of Broyden's method: accepted below this share of the tolerance."""
-SURE = 7
+SURE = 6
 """Iterations up to which the sign of the determinant carried along is taken for that at the answer."""
 COMPACT = 0.4
 """Share of a chunk that must be finished before it is taken out."""
@@ -210,11 +214,6 @@ def _step(c: _Columns, d: Array, size: Array) -> tuple[Array, Array]:
     return d * t, t
 
 
-def _first_step(F: Array, J: Array) -> Array:
-    """J^-1 F."""
-    return solve_linear(np.ascontiguousarray(np.moveaxis(J, -1, 0)), F.T).T
-
-
 def _inverse(J: Array) -> tuple[Array, Array]:
     """Inverse with the batch last, NaN for a singular matrix, and the sign of the determinant."""
     first = np.ascontiguousarray(np.moveaxis(J, -1, 0))
@@ -236,15 +235,15 @@ def solve(problem: InterfaceProblem, tolerance: float, earlier: Array | None = N
     shot = Shot(np.full((B, 2 * n + 1), np.nan), np.full((B, n), np.nan), np.full((B, n), np.nan), np.zeros(B, bool),
                 np.zeros(B, bool), np.full(B, np.nan), np.full(B, np.nan), np.zeros(B, np.int64))
     if earlier is None:
-        N, T = np.zeros((n, B)), zero_flux_temperature(problem, 1e-2)
+        N, T = _first_step(problem)
     else:
         N, T = np.ascontiguousarray(earlier[:, :n].T), earlier[:, 2 * n].copy()
     # films of one size together: the largest of a chunk sets the length of the series
-    order = np.argsort(_expected_size(problem, T), kind="stable") if B > CHUNK else np.arange(B)
+    size = 2.0 * np.abs(N).max(0) * np.maximum(problem.K_V.max((-1, -2)), problem.K_L.max((-1, -2)))
+    order = np.argsort(np.where(np.isfinite(size), size, np.inf), kind="stable")
     for limit in (FIRST_ROUND, MAX_ITERATIONS):              # the slow ones of all chunks together
         order = order[~shot.solved[order]]
-        for first in range(0, len(order), CHUNK):
-            index = order[first:first + CHUNK]
+        for index in _chunks(order, size):
             c = _columns(problem.take(index))
             run = _iterate(c, N[:, index], T[index], tolerance, limit)
             N[:, index], T[index] = run.N, run.T
@@ -253,14 +252,27 @@ def solve(problem: InterfaceProblem, tolerance: float, earlier: Array | None = N
     return shot
 
 
-def _expected_size(problem: InterfaceProblem, T: Array) -> Array:
-    """A rough |A|_1 beforehand: from the distance of the bulks, in composition and in temperature."""
-    K = np.asarray(problem.properties.k_value(T, problem.P, problem.x, problem.y))
-    apart = np.where(problem.ordinary, np.abs(problem.y - K * problem.x), 0.0).max(-1)
-    heat = problem.h_V * np.abs(problem.T_V - T) + problem.h_L * np.abs(problem.T_L - T)
-    latent = np.abs(problem.H_V - problem.H_L).max(-1)
-    size: Array = apart + heat / (latent * problem.flux_scale)
-    return size
+def _chunks(order: NDArray[np.int64], size: Array) -> Iterator[NDArray[np.int64]]:
+    """Pieces of `order`, sorted by size, none of them mixing films of very different size."""
+    edges = [0, *np.searchsorted(size[order], SIZES), len(order)]
+    for low, high in pairwise(edges):
+        for first in range(low, high, CHUNK):
+            yield order[first:min(first + CHUNK, high)]
+
+
+def _first_step(problem: InterfaceProblem) -> tuple[Array, Array]:
+    """N (n, B) and T (B,) after the Newton step from zero flux."""
+    N, T = np.empty((problem.n, len(problem.y))), zero_flux_temperature(problem, 1e-2)
+    for first in range(0, len(T), CHUNK):
+        part = slice(first, first + CHUNK)
+        c = _columns(problem.take(part))
+        with np.errstate(all="ignore"):
+            F, J = _rows(c, np.zeros_like(c.y), T[part], True, at_rest=True).system
+            d = -solve_linear(np.ascontiguousarray(np.moveaxis(J, -1, 0)), F.T).T
+            d, _ = _step(c, d, np.zeros(d.shape[1]))
+        N[:, part] = d[:-1]
+        T[part] += d[-1]
+    return N, T
 
 
 def _accept(c: _Columns, run: _Run, index: NDArray[np.int64], shot: Shot) -> None:
@@ -308,14 +320,12 @@ def _iterate(c: _Columns, N: Array, T: Array, tolerance: float, limit: int) -> _
     n, M = N.shape
     end = _Run(N.copy(), T.copy(), np.zeros(M, bool), np.full(M, limit), np.zeros(M))
     index, before = np.arange(M), np.full(M, np.inf)
-    fresh, at_rest = True, not N.any()
+    fresh = True
     F_before = s = H = sign = np.empty(0)
     with np.errstate(all="ignore"):
         for iteration in range(1, limit + 1):
-            rows = _rows(c, N, T, fresh, at_rest)
-            if at_rest:
-                pass
-            elif fresh and rows.J is not None:
+            rows = _rows(c, N, T, fresh)
+            if fresh and rows.J is not None:
                 H, sign = _inverse(rows.J)
             else:
                 Hy = _apply(H, rows.F - F_before)
@@ -323,15 +333,12 @@ def _iterate(c: _Columns, N: Array, T: Array, tolerance: float, limit: int) -> _
                 w = (s - Hy) / np.where(scale == 0, 1.0, scale)
                 H += w[:, None] * np.einsum("im,ijm->jm", s, H)[None]
                 sign = np.where(scale < 0, -sign, sign)
-            d = -_first_step(*rows.system) if at_rest else -_apply(H, rows.F)
-            s, t = _step(c, d, rows.size)
+            s, t = _step(c, -_apply(H, rows.F), rows.size)
             N, T = N + s[:n], T + s[n]
             e = np.maximum(np.abs(s[:n]).max(0) / (np.abs(N).max(0) + 1e-300), np.abs(s[n]) / T)
             ready = (t == 1.0) & ((e < 0.1 * tolerance) | ((e * e < SUPERLINEAR * tolerance * before) & (e < 1e-6)))
             lost = ~np.isfinite(e) | (rows.size > LARGEST) | (T < 0)
             leaving = ready | lost
-            if at_rest:
-                leaving[:] = False
             F_before, before = rows.F, e
             if leaving.any() and (leaving.mean() > COMPACT or iteration == limit):
                 keep = np.flatnonzero(~leaving)
@@ -343,8 +350,7 @@ def _iterate(c: _Columns, N: Array, T: Array, tolerance: float, limit: int) -> _
                     return end
                 N, T, s, H, sign, c = N[:, keep], T[keep], s[:, keep], H[:, :, keep], sign[keep], _kept(c, keep)
                 F_before, before = F_before[:, keep], e[keep]
-            fresh = at_rest or iteration < FULL and bool(np.count_nonzero(before > 0.1) > 0.3 * len(before))
-            at_rest = False
+            fresh = iteration < FULL and bool(np.count_nonzero(before > 0.1) > 0.3 * len(before))
     fit = np.isfinite(N).all(0) & (T > 0)
     end.N[:, index[fit]], end.T[index[fit]] = N[:, fit], T[fit]
     return end
