@@ -63,8 +63,7 @@ def _parser() -> argparse.ArgumentParser:
 
 def _rate(options: argparse.Namespace) -> None:
     from .case import read_rate_case
-    from .efficiency import efficiency_table
-    from .files import write_table
+    from .efficiency import efficiency_table, write_package
 
     with _progress("reading case, building properties"):
         case = read_rate_case(options.case)
@@ -72,7 +71,7 @@ def _rate(options: argparse.Namespace) -> None:
         table = efficiency_table(case.profile, case.hardware, case.properties, options=case.options,
                                  uncertainty=case.uncertainty)
     folder = options.out or options.case.parent / "results"
-    written = write_table(table, folder, title=case.title, inputs=case.files)
+    written = write_package(table, folder, title=case.title, hardware=case.hardware, inputs=case.files)
     print(written[options.format] if options.format != "text" else f"{case.title}\n\n{table}")
     print(f"written: {', '.join(str(folder / name) for name in ('table.csv', 'table.md', 'table.json'))}",
           file=sys.stderr)

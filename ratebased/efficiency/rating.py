@@ -106,8 +106,9 @@ class RatedRows:
     ordinary: components in both phases, (n). number, kind; P Pa; T_L, T_V_in, T_V (of the computed vapour), T_bubble
     (of the leaving liquid, None on the liquid-temperature basis), K; V_in, V_out, L mol/s; x, y_in, y_out, y_star,
     y_profile. murphree; point_murphree: of the froth over the leaving liquid; flagged: a driving force too small for
-    either; vaporization; dependent: the component with the largest y_out, to be left out when n-1 are used. flux mol/(m2 s), transferred mol/s, energy W; area
-    m2 and its basis. interface_residual, energy_residual: of the interfaces; component_closure, energy_closure: of the
+    either; vaporization; dependent: the component with the largest y_out, to be left out when n-1 are used. flux
+    mol/(m2 s), transferred mol/s, energy W; area m2 and its basis. interface_residual, energy_residual: of the
+    interfaces; component_closure, energy_closure: of the
     balances. vapor_entropy_share: of the vapour film at the middle of the froth. hydraulics; pools: number in series.
     interfaces: (rows, interface at the middle of the froth or of the segment) of each group. notes: remark -> rows.
     """

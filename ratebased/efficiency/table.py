@@ -1,7 +1,9 @@
 """The efficiency table: rated rows as a DataFrame, as text and as files, with everything a reader needs beside them."""
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
+from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
@@ -81,8 +83,8 @@ class EfficiencyTable:
         u = self.uncertainty
         if u is not None:
             figure, what = (u.change, "y_out - y_in") if u.pole[j, i] else (u.murphree, "E")
-            text += (f" Interval (5 to 95 %) of {what}: {figure.p05[j, i]:.3g} to {figure.p95[j, i]:.3g}; probability of "
-                     f"E < 0: {u.negative[j, i]:.2f}; dominated by {u.dominating(j, i)} "
+            text += (f" Interval (5 to 95 %) of {what}: {figure.p05[j, i]:.3g} to {figure.p95[j, i]:.3g}; probability "
+                     f"of E < 0: {u.negative[j, i]:.2f}; dominated by {u.dominating(j, i)} "
                      f"({100 * u.shares[j, i].max():.0f} % of the variance).")
         return text
 
@@ -197,6 +199,14 @@ class EfficiencyTable:
             columns[f"P_negative_{name}"] = u.negative[:, i]
             columns[f"dominating_{name}"] = [u.dominating(j, i) for j in range(u.pole.shape[0])]
         return columns
+
+    def to_design_package(self, folder: Path, *, title: str = "Efficiency table", hardware: Hardware | None = None,
+                          inputs: Sequence[Path] = ()) -> None:
+        """Write table.csv, table.md and table.json: the table, the correlations of `hardware` with source and range,
+        residuals, versions, checksums of the `inputs`."""
+        from .package import write_package
+
+        write_package(self, Path(folder), title=title, hardware=hardware, inputs=inputs)
 
     def legend(self) -> str:
         """What the columns of the printed table mean."""
