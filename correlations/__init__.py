@@ -2,7 +2,8 @@
 
 Modules by what is predicted; a function is named by its authors: `packing_area.onda`, `tray_limits.fair_flooding`.
 Every public correlation carries a `record` (what it predicts, for what, range, scatter, source, confidence) and warns
-`OutOfRangeWarning` outside its range; `catalogue()` lists all records.
+`OutOfRangeWarning` outside its range; `catalogue()` lists all records. Arguments are named, with unit and domain, in
+`glossary`; the docstrings are completed from it and from the record.
 """
 from __future__ import annotations
 

@@ -1,11 +1,9 @@
 """Generic packings: form, material, size, and the constants the correlations take, each with source and confidence."""
 from __future__ import annotations
 
-import tomllib
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from functools import cache
-from importlib.resources import files
 from types import MappingProxyType
 from typing import Any
 
@@ -86,4 +84,7 @@ def packing(name: str) -> Packing:
 
 
 def _table() -> dict[str, Any]:
+    import tomllib  # here, because most programs that import the correlations never read the table
+    from importlib.resources import files
+
     return tomllib.loads(files(__package__).joinpath("packings.toml").read_text(encoding="utf-8"))
