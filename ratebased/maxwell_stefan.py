@@ -430,10 +430,8 @@ def entropy_production(N: ArrayLike, x0: ArrayLike, xd: ArrayLike, *, ln_gamma0:
 
 def face_entropy(N: Array, x0: Array, xd: Array, ln_gamma_difference: Array | float = 0.0) -> Array:
     """The kernel of `entropy_production`."""
-    with np.errstate(divide="ignore", invalid="ignore"):
-        ratio = np.log(x0) - np.log(xd) + ln_gamma_difference
-        terms = np.where(N == 0, 0.0, N * ratio)
-    absent = (x0 == 0) & (xd == 0)
-    terms = np.where(absent, 0.0, terms)
-    result: Array = GAS_CONSTANT * terms.sum(-1)
-    return result
+    present = (x0 > 0) & (xd > 0)
+    ratio = np.log(np.where(present, x0, 1.0) / np.where(present, xd, 1.0)) + ln_gamma_difference
+    vanishes = ((x0 > 0) != (xd > 0)) & (np.abs(N) > 1e-12 * np.abs(N).max(-1, keepdims=True))
+    total: Array = GAS_CONSTANT * np.where(present, N * ratio, 0.0).sum(-1)
+    return np.where(vanishes.any(-1), np.inf, total)

@@ -143,8 +143,9 @@ def profile_shape(Z: Array, eta: Array, D: Array) -> Array:
     with np.errstate(over="ignore", invalid="ignore"):
         down = np.expm1(safe * e) / np.expm1(safe)        # argument has a real part below zero
         up = (np.exp(safe * (1.0 - e)) - np.exp(safe)) / (-np.expm1(safe))
-    shape = np.where(small, e * (1.0 + 0.5 * w * (e - 1.0)), np.where(rising, up, down))
-    values: Array = ((shape * y) @ np.swapaxes(V, -1, -2)).real
+    # what the straight line leaves: zero at both faces, whatever the rounding of V
+    shape = np.where(small, 0.5 * e * w * (e - 1.0), np.where(rising, up, down) - e)
+    values: Array = e * D[..., None, :] + ((shape * y) @ np.swapaxes(V, -1, -2)).real
     for where in np.argwhere(bad):
         i = tuple(where)
         values[i] = [_profile_exponential(np.asarray(Z[i]), float(t)) @ D[i] for t in eta]
