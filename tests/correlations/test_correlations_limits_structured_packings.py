@@ -71,6 +71,9 @@ def test_partial_wetting_factor():
     function = packing_area.rocha_bravo_fair_holdup_factor
     assert_allclose(slope(function, "liquid_velocity", **state), 0.4, rtol=1e-5)
     assert_allclose(slope(function, "liquid_viscosity", **state), 0.2, rtol=1e-5)
+    # cos gamma evaluated apart: 0.9 up to the joint, 0.618011 at 0.055 N/m
+    wet, dry = function(**dict(state, surface_tension=np.array([0.045, 0.055])))
+    assert_allclose(dry / wet, (0.045 / 0.055) ** 0.15 * (1 - 0.93 * 0.9) / (1 - 0.93 * 0.618011), rtol=1e-5)
     edge = function(**dict(state, surface_tension=np.array([0.045, 0.0450001])))
     assert_allclose(edge[0], edge[1], rtol=0.07)  # cos gamma 0.9 and 0.9106 at the joint
     sheet = packing_area.rocha_bravo_fair_sheet(**state, specific_area=A, surface_factor=0.35)
