@@ -19,7 +19,19 @@ from ratebased.errors import (
     UnstableMixtureError,
 )
 from ratebased.film import FilmFlux, krishna_standart
-from ratebased.interface import Bulk, InterfaceStatus, bulks_from_interface, interface_flux, shooting
+from ratebased.interface import (
+    Bulk,
+    InterfaceStatus,
+    branch,
+    bulks_from_interface,
+    interface_flux,
+    paths,
+    shooting,
+    solutions,
+)
+from ratebased.interface.blocks import evaluate
+from ratebased.interface.newton import Iterate
+from ratebased.interface.problem import prepare
 from ratebased.properties import ConstantVolatility
 from ratebased.properties.protocol import GAS_CONSTANT
 
@@ -196,6 +208,62 @@ def test_derivatives_by_both_bulks(mixture):
                 assert np.abs((up - ends[1][key]) / (2 * h) - slope[..., first + j]).max() < 2e-7 * np.abs(slope).max()
 
 
+# --------------------------------------------------------------------------------------------------- paths and branches
+@pytest.mark.parametrize("interaction", [0.0, 1.5])
+def test_continuation_reaches_the_same_solution(interaction):
+    rng = np.random.default_rng(24)
+    case = construct(rng, "condensation", 3, 12, interaction=interaction)
+    r = solve(case)
+    problem = prepare(case.vapor, case.liquid, case.model, case.P, krishna_standart)
+    run, reached = branch.continuation(problem, 1e-10)
+    assert run.converged.all() and (reached == 1.0).all()
+    np.testing.assert_allclose(run.z[:, :3], r.N, atol=1e-9 * np.abs(r.N).max())
+    assert (r.status == InterfaceStatus.SOLVED).all()
+
+
+def test_second_start_and_continuation_take_over(monkeypatch):
+    """Newton made to fail from the first start, then from both: the next path solves, and the status names it."""
+    rng = np.random.default_rng(25)
+    case = construct(rng, "ordinary", 3, 6)
+    expected = solve(case)
+    real, calls, allowed = paths.newton, [], [0]
+
+    def lame(problem, z, y, *, tolerance, max_iterations=60):
+        calls.append(1)
+        run = real(problem, z, y, tolerance=tolerance, max_iterations=max_iterations)
+        return replace(run, converged=run.converged & (len(calls) > allowed[0]))
+
+    monkeypatch.setattr(paths, "newton", lame)
+    for failures, label in enumerate((InterfaceStatus.SECOND_START, InterfaceStatus.CONTINUATION), 1):
+        allowed[0] = failures
+        calls.clear()
+        r = solve(case)
+        assert (r.status == label).all()
+        np.testing.assert_allclose(r.N, expected.N, atol=1e-9 * np.abs(expected.N).max())
+    nothing = Iterate(np.full((6, 7), 300.0), np.zeros((6, 3)), np.zeros(6, bool), np.zeros(6, int))
+    monkeypatch.setattr(paths, "newton", lambda p, z, y, **options: nothing)
+    monkeypatch.setattr(paths, "continuation", lambda p, tolerance: (nothing, np.full(6, 0.25)))
+    with pytest.raises(NoSolutionError, match=r"interface\[0\].*25 % of the way.*6 of 6") as caught:
+        solve(case)
+    assert caught.value.failed.all() and caught.value.best.shape == (6, 7)
+
+
+@pytest.mark.parametrize("kind", ["ordinary", "noncondensing", "nonvolatile", "wide-diffusivity", "high-flux"])
+def test_sign_at_zero_flux_is_the_one_derived(kind):
+    """The fast path knows the sign at zero flux beforehand: the general path, which computes it, agrees."""
+    rng = np.random.default_rng(26)
+    case = construct(rng, kind, 4, 300, lean=True)
+    problem = prepare(case.vapor, case.liquid, case.model, case.P, krishna_standart)
+    shot = shooting.solve(problem, 1e-10)
+    z, y = shot.z[shot.solved], shot.y_I[shot.solved]
+    rest = problem.take(shot.solved)
+    at_zero = branch.zero_flux_sign(rest)
+    assert (at_zero == at_zero[0]).all() and at_zero[0] != 0
+    general = branch.determinant_sign(evaluate(rest, z, y, False).dz) == at_zero
+    assert (general == shot.connected[shot.solved]).all()
+    assert shot.solved.sum() > (10 if kind == "high-flux" else 200)
+
+
 # ------------------------------------------------------------------------------------------------------- permutations
 def permuted_bulk(bulk, order):
     return replace(bulk, composition=bulk.composition[..., order],
@@ -299,7 +367,7 @@ def test_binary_with_equal_capacities_and_latent_heats_is_near_equimolar():
 
 
 def controlled(side, spread):
-    """Ternary with equal latent heats and no heat capacities, one film in control; N_i/(y_i - y*_i) of the components."""
+    """Ternary, equal latent heats, no heat capacities, one film in control; N_i/(y_i - y*_i) of the components."""
     rng = np.random.default_rng(19)
     model = ConstantVolatility(("a", "b", "c"), [4.0, 2.0, 1.0], 3e4, a=23.0, b=4025.0)
     x, y = np.array([0.3, 0.3, 0.4]), np.array([0.35, 0.4, 0.25])
@@ -398,6 +466,25 @@ def test_bad_input_names_argument_and_entry(one):
         interface_flux(replace(vapor, temperature=np.full(3, 350.0)), liquid, model, P, start=first)
 
 
+def test_solutions_takes_one_interface(one):
+    model, vapor, liquid = one
+    with pytest.raises(InputError, match="takes one interface"):
+        solutions(replace(vapor, temperature=np.full(3, 350.0)), liquid, model, P)
+    with pytest.raises(InputError, match="starts = 1"):
+        solutions(vapor, liquid, model, P, starts=1)
+    every = solutions(vapor, liquid, model, P, starts=60)
+    r = interface_flux(vapor, liquid, model, P)
+    assert every.N.shape == (1, 3)
+    np.testing.assert_allclose(every.N[0], r.N, rtol=1e-9)
+
+
+def test_one_component_is_an_error():
+    model = ConstantVolatility(("a",), [1.0], 3e4, a=23.0, b=4025.0)
+    one = np.ones((1, 1))
+    with pytest.raises(InputError, match="two components or more"):
+        interface_flux(Bulk(np.ones(1), 350.0, one, 50.0, 35.0), Bulk(np.ones(1), 350.0, one, 1e3, 1e4), model, P)
+
+
 def test_nothing_that_can_pass_is_an_error():
     model = ConstantVolatility(("gas", "salt"), [1.0, 1.0], 3e4, a=23.0, b=4025.0, condensable=[False, True],
                                volatile=[True, False])
@@ -406,15 +493,17 @@ def test_nothing_that_can_pass_is_an_error():
                        Bulk(np.array([0.0, 1.0]), 350.0, np.array(1e-4), 1e3, 1e4), model, P)
 
 
-def test_unstable_liquid_is_an_error():
-    """|A| = 4 in a symmetric binary: inside the spinodal between x = 0.15 and 0.85."""
+@pytest.mark.parametrize("x", [0.5, 0.2])
+def test_unstable_liquid_is_an_error(x):
+    """|A| = 4 in a symmetric binary: x(1 - x) > 1/8, inside the spinodal from 0.146 to 0.854."""
     rng = np.random.default_rng(21)
     model = replace(margules(rng, 2), interaction=np.array([[0.0, 4.0], [4.0, 0.0]]), alpha=np.array([1.0, 1.0]))
     vapor, liquid = random_bulks(rng, (), model)
-    with pytest.raises((UnstableMixtureError, NoSolutionError)):
-        interface_flux(vapor, replace(liquid, composition=np.array([0.5, 0.5])), model, P)
-    r = interface_flux(vapor, replace(liquid, composition=np.array([0.5, 0.5])), model, P, throw=False)
-    assert r.status in (InterfaceStatus.UNSTABLE_LIQUID, InterfaceStatus.FAILED) and np.isnan(r.N).all()
+    liquid = replace(liquid, composition=np.array([x, 1.0 - x]))
+    with pytest.raises(UnstableMixtureError, match="would split in two"):
+        interface_flux(vapor, liquid, model, P)
+    r = interface_flux(vapor, liquid, model, P, throw=False)
+    assert r.status == InterfaceStatus.UNSTABLE_LIQUID and np.isnan(r.N).all()
 
 
 def test_temperature_outside_the_property_range(one):
@@ -431,11 +520,16 @@ def test_temperature_outside_the_property_range(one):
     ranged = Ranged(model)
     with pytest.raises(PropertyRangeError, match="vapor.temperature"):
         interface_flux(replace(vapor, temperature=400.0), replace(liquid, temperature=340.0), ranged, P)
-    free = interface_flux(replace(vapor, temperature=344.0), replace(liquid, temperature=344.0), model, 1.5 * P)
-    assert not 343.0 < free.T_I < 345.0 or free.T_I > 345.0
-    if free.T_I > 345.0:
-        with pytest.raises(PropertyRangeError, match="T_I"):
-            interface_flux(replace(vapor, temperature=344.0), replace(liquid, temperature=344.0), ranged, 1.5 * P)
+    vapor, liquid = replace(vapor, temperature=350.0), replace(liquid, temperature=350.0)
+    free = interface_flux(vapor, liquid, model, P)
+    ranged.T_range = (300.0, float(free.T_I) + 30.0)
+    inside = interface_flux(vapor, liquid, ranged, P)
+    assert inside.T_I == pytest.approx(float(free.T_I), rel=1e-10)
+    middle = 0.5 * (350.0 + float(free.T_I))
+    assert abs(free.T_I - 350.0) > 1.0
+    ranged.T_range = (300.0, middle) if free.T_I > 350.0 else (middle, 400.0)
+    with pytest.raises(PropertyRangeError, match="T_I runs out"):
+        interface_flux(vapor, liquid, ranged, P)
 
 
 def test_failed_entries_leave_the_others_alone():

@@ -69,7 +69,8 @@ def _judge(problem: InterfaceProblem, found: Found, status: NDArray[np.int64], r
     solved = status <= InterfaceStatus.OTHER_BRANCH
     status[solved & ~(residual < RESIDUAL_LIMIT)] = int(InterfaceStatus.FAILED)
     if not problem.ideal_liquid:
-        status[solved & ~(_smallest_eigenvalue(problem, x_I, T_I) > 0)] = int(InterfaceStatus.UNSTABLE_LIQUID)
+        # of a failed one x_I is that of the bulk
+        status[~(_smallest_eigenvalue(problem, x_I, T_I) > 0)] = int(InterfaceStatus.UNSTABLE_LIQUID)
     low, high = problem.limits
     at_end = (found.z[:, -1] <= low) | (found.z[:, -1] >= high)
     status[(status == InterfaceStatus.FAILED) & at_end] = int(InterfaceStatus.OUT_OF_RANGE)

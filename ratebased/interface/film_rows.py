@@ -12,7 +12,7 @@ from numpy.typing import NDArray
 
 from ..bootstrap import TotalFlux
 from ..errors import RateBasedWarning
-from ..film import FilmFlux, krishna_standart
+from ..film import FilmFlux, krishna_standart, linearized
 from ..film.blocks import FilmBlocks, coth_blocks, linearized_blocks
 
 Array = NDArray[np.float64]
@@ -28,7 +28,7 @@ def rows_of(film: FilmMethod) -> FilmRows:
     """The rows of a film method: coth form, its linearised form, or differences."""
     if film is krishna_standart:
         return coth_blocks
-    if getattr(film, "__name__", "") == "linearized" and getattr(film, "__module__", "").startswith("ratebased.film"):
+    if film is linearized:
         return linearized_blocks
     return DifferencedRows(film)
 

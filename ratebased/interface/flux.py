@@ -84,6 +84,8 @@ def checked(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: ArrayLike
              ) -> tuple[Bulk, Bulk, Array, tuple[int, ...]]:
     n = len(properties.names)
     condensable, volatile = np.asarray(properties.condensable, bool), np.asarray(properties.volatile, bool)
+    if n < 2:
+        raise InputError(f"properties: an interface needs two components or more, got {n}")
     if not (condensable & volatile).any():
         raise InputError("properties: no component is both condensable and volatile, nothing can pass the interface")
     checked = []

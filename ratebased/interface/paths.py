@@ -6,6 +6,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from ..maxwell_stefan import film_matrix, reduced
 from . import shooting
 from .blocks import at_rest, evaluate
 from .branch import continuation, determinant_sign, zero_flux_sign
@@ -56,10 +57,19 @@ def nothing_yet(problem: InterfaceProblem) -> Found:
 
 
 def physical(problem: InterfaceProblem, run: Iterate) -> NDArray[np.bool_]:
-    """Converged with no negative fraction."""
+    """Converged with no negative fraction at the interface and no profile that turns out of the simplex.
+
+    The second by the imaginary parts of the eigenvalues of [Phi] (pi at most), for films large enough to have them.
+    """
     n = problem.n
-    positive = (run.z[:, n:2 * n].min(-1) >= PHYSICAL) & (run.y.min(-1) >= PHYSICAL)
-    return np.asarray(run.converged & positive)
+    good = run.converged & (run.z[:, n:2 * n].min(-1) >= PHYSICAL) & (run.y.min(-1) >= PHYSICAL)
+    if n > 2 and problem.exact_films:
+        for K in (problem.K_V, problem.K_L):
+            index = np.flatnonzero(good)
+            A = film_matrix(run.z[index, :n], K[index])
+            index, A = (v[np.abs(A).sum(-2).max(-1) > np.pi] for v in (index, A))
+            good[index] = np.abs(np.linalg.eigvals(reduced(A)).imag).max(-1, initial=0.0) <= np.pi
+    return np.asarray(good)
 
 
 def find(problem: InterfaceProblem, restart: Iterate | None, tolerance: float) -> Found:

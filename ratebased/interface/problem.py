@@ -14,6 +14,9 @@ from .records import Bulk
 
 Array = NDArray[np.float64]
 
+MARGIN = 0.05
+"""K, how far iterates of T_I keep from the ends of a property model's range."""
+
 
 @dataclass(frozen=True)
 class InterfaceProblem:
@@ -61,9 +64,9 @@ class InterfaceProblem:
 
     @property
     def limits(self) -> tuple[float, float]:
-        """Temperature range of the property model, K; wide open where it states none."""
+        """Temperature range of the property model, K, less room for differences; wide open where it states none."""
         low, high = getattr(self.properties, "T_range", (1.0, 1e5))
-        return float(low), float(high)
+        return float(low) + MARGIN, float(high) - MARGIN
 
     @property
     def exact_films(self) -> bool:

@@ -44,7 +44,7 @@ SIZES = (1.0, 2.0, 4.0)
 SUPERLINEAR = 1e-2
 """e^2/e_before foretells the error after a step of Broyden's method: accepted below this share of the tolerance."""
 SURE = 6
-"""Iterations up to which the sign of the determinant carried along is taken for that at the answer."""
+"""Iterations up to which the sign of det J carried along is believed, if it is the expected one."""
 COMPACT = 0.4
 """Share of a chunk that must be finished before it is taken out."""
 RESIDUAL = 1e-9
@@ -276,7 +276,7 @@ def _first_step(problem: InterfaceProblem) -> tuple[Array, Array]:
 
 
 def _accept(c: _Columns, run: _Run, index: NDArray[np.int64], shot: Shot) -> None:
-    """Residual and fractions at the end points of a run; the sign of det J anew where the way there was long."""
+    """Residual and fractions at the end points of a run; the sign of det J anew where there is doubt."""
     n = len(run.N)
     expected = -1.0 if c.problem.ordinary.sum() % 2 == 0 else 1.0
     with np.errstate(all="ignore"):
@@ -285,7 +285,7 @@ def _accept(c: _Columns, run: _Run, index: NDArray[np.int64], shot: Shot) -> Non
         good = run.converged & (worst < RESIDUAL) & (rows.size < LARGEST)
         good &= (rows.y.min(0) >= PHYSICAL) & (rows.x.min(0) >= PHYSICAL)
         sign = run.sign
-        slow = np.flatnonzero(good & (shot.iterations[index] > SURE))
+        slow = np.flatnonzero(good & ((shot.iterations[index] > SURE) | (sign != expected)))
         if len(slow):
             _, J = _rows(_kept(c, slow), run.N[:, slow], run.T[slow], True).system
             sign[slow] = _sign(np.ascontiguousarray(np.moveaxis(J, -1, 0)))

@@ -51,8 +51,8 @@ def constructed(rng, total, sizes, interaction):
               f"{residual:.0e}", flush=True)
     status, iterations = (np.concatenate([e[k] for e in everything]) for k in (0, 1))
     far, solved = sum(e[2] for e in everything), int((status <= InterfaceStatus.OTHER_BRANCH).sum())
-    print(f"  all {len(status)}: solved {solved}; {counts(status)}; iterations median {np.median(iterations):.0f}, 99 % "
-          f"{np.percentile(iterations, 99):.0f}, worst {iterations.max()}; other root than drawn {far} "
+    print(f"  all {len(status)}: solved {solved}; {counts(status)}; iterations median {np.median(iterations):.0f}, "
+          f"99 % {np.percentile(iterations, 99):.0f}, worst {iterations.max()}; other root than drawn {far} "
           f"({100 * far / len(status):.2f} %)", flush=True)
 
 

@@ -1,9 +1,9 @@
 """One vapour condensing from a gas that stays behind.
 
 Sources: A. P. Colburn and O. A. Hougen, Ind. Eng. Chem. 26 (1934) 1178: N = F ln((1 - y_I)/(1 - y)), y_I =
-p_sat(T_I)/P, and the heat balance of the condensing surface, h_V (T_V - T_I) + lambda N = h_L (T_I - T_L); G. Ackermann,
-VDI Forschungsheft 382 (1937): h_V multiplied by a/(1 - e^-a), a = N cp_V/h_V (equations from memory). The scalar
-equation is solved here by bracketing on T_I, without the library.
+p_sat(T_I)/P, and the heat balance of the condensing surface, h_V (T_V - T_I) + lambda N = h_L (T_I - T_L);
+G. Ackermann, VDI Forschungsheft 382 (1937): h_V multiplied by a/(1 - e^-a), a = N cp_V/h_V (equations from memory).
+The scalar equation is solved here by bracketing on T_I, without the library.
 """
 from __future__ import annotations
 
