@@ -54,7 +54,7 @@ def film(n: int, seed: int = 0) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
 def test_every_method_takes_every_bootstrap(method: Callable[..., FilmFlux], closure: Callable[[int], Bootstrap],
                                             n: int) -> None:
     """nu . N = s holds; all but Wilke's rule tend to the exact film as the faces come close."""
-    x0, xd, kappa = film(n)
+    x0, xd, kappa = film(n, 1)
     bootstrap = closure(n)
     found = method(x0, xd, kappa, 2.0, bootstrap)
     nu, s = bootstrap.linear_form(n)

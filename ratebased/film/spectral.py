@@ -145,6 +145,7 @@ def profile_shape(Z: Array, eta: Array, D: Array) -> Array:
         up = (np.exp(safe * (1.0 - e)) - np.exp(safe)) / (-np.expm1(safe))
     # what the straight line leaves: zero at both faces, whatever the rounding of V
     shape = np.where(small, 0.5 * e * w * (e - 1.0), np.where(rising, up, down) - e)
+    shape = np.where((e == 0.0) | (e == 1.0), 0.0, shape)
     values: Array = e * D[..., None, :] + ((shape * y) @ np.swapaxes(V, -1, -2)).real
     for where in np.argwhere(bad):
         i = tuple(where)
