@@ -30,8 +30,13 @@ SHORTEST_SEGMENT = 1e-3
 
 @dataclass(frozen=True)
 class Basis:
-    """Temperatures made ready for any view of a bank: Chebyshev polynomials (m, degree + 1) and segments, flattened."""
+    """A bank at given temperatures, ready for any view of it.
 
+    table (m, columns): every function and its first derivative at the flattened temperatures. polynomials (m, degree +
+    1) and segment (m,) or None: what the table was made from. shape: of the temperatures.
+    """
+
+    table: Array
     polynomials: Array
     segment: NDArray[np.intp] | None
     shape: tuple[int, ...]
@@ -39,29 +44,37 @@ class Basis:
 
 @dataclass(frozen=True)
 class BankView:
-    """Some functions of a bank, some with derivatives: the columns of one matrix product.
+    """Some functions of a bank, some with derivatives.
 
-    `coefficients` (degree + 1, segments x columns), the columns of the first segment first.
+    Columns of the table of a basis for functions and first derivatives; coefficients (degree + 1, segments x n) for a
+    higher derivative, which is seldom asked for.
     """
 
-    coefficients: Array
+    parts: tuple[slice | Array, ...]
     segments: int
-    count: int
 
     def __call__(self, basis: Basis) -> list[Array]:
         """The functions asked for, in that order, each (..., n), at the temperatures of a basis."""
-        values = basis.polynomials @ self.coefficients
-        if basis.segment is not None:
-            every = values.reshape(len(values), self.segments, -1)
-            values = every[np.arange(len(values)), basis.segment]
-        values = values.reshape(*basis.shape, self.count, -1)
-        return [values[..., k, :] for k in range(self.count)]
+        columns = [basis.table[:, part] if isinstance(part, slice) else _product(
+            basis.polynomials, basis.segment, part, self.segments)
+                   for part in self.parts]
+        if len(basis.shape) == 1:
+            return columns
+        return [column.reshape(*basis.shape, -1) for column in columns]
+
+
+def _product(polynomials: Array, segment: NDArray[np.intp] | None, coefficients: Array, segments: int) -> Array:
+    """Series with coefficients (degree + 1, segments x columns), each row with those of its segment, (m, columns)."""
+    values: Array = polynomials @ coefficients
+    if segment is None:
+        return values
+    return values.reshape(len(values), segments, -1)[np.arange(len(values)), segment]
 
 
 def _series(T: Array, low: ArrayLike, high: ArrayLike, degree: int) -> Array:
     """Chebyshev polynomials 0 to degree of T scaled to (low, high), (m, degree + 1)."""
     low, high = np.asarray(low), np.asarray(high)
-    scaled = np.clip((2.0 * T - (high + low)) / (high - low), -1.0, 1.0)
+    scaled = np.minimum(np.maximum((2.0 * T - (high + low)) / (high - low), -1.0), 1.0)
     values: Array = np.cos(np.arccos(scaled)[:, None] * np.arange(degree + 1))
     return values
 
@@ -102,6 +115,8 @@ class TemperatureBank:
         self.fit_error = {name: error[where] for name, where in self._slices.items()}
         self.degree = max(len(fit[0]) for fit in fits) - 1
         self._coefficients = [np.pad(fit[0], ((0, self.degree + 1 - len(fit[0])), (0, 0))) for fit in fits]
+        self._table = np.concatenate([block for pair in zip(self._coefficients, self._derivative(1)) for block in pair],
+                                     axis=1)
 
     def basis(self, T: Array) -> Basis:
         """Temperatures T (...) in K made ready for the views of this bank.
@@ -115,24 +130,31 @@ class TemperatureBank:
             raise PropertyRangeError(f"T{list(where) if where else ''} = {T[where]:.8g} K is outside the range "
                                      f"{low:g} to {high:g} K the properties were built for")
         flat = T.reshape(-1)
-        if len(self._coefficients) == 1:
-            return Basis(_series(flat, low, high, self.degree), None, T.shape)
-        segment = np.clip(np.searchsorted(self.edges, flat, side="right") - 1, 0, len(self._coefficients) - 1)
-        return Basis(_series(flat, self.edges[segment], self.edges[segment + 1], self.degree), segment, T.shape)
+        segments = len(self.edges) - 1
+        segment: NDArray[np.intp] | None = None
+        if segments == 1:
+            polynomials = _series(flat, low, high, self.degree)
+        else:
+            segment = np.clip(np.searchsorted(self.edges, flat, side="right") - 1, 0, segments - 1)
+            polynomials = _series(flat, self.edges[segment], self.edges[segment + 1], self.degree)
+        return Basis(_product(polynomials, segment, self._table, segments), polynomials, segment, T.shape)
 
     def view(self, *wanted: tuple[str, int]) -> BankView:
         """An evaluator of (name, order of the temperature derivative) pairs, for a `basis` of this bank."""
-        matrices = []
-        for coefficients, a, b in zip(self._coefficients, self.edges[:-1], self.edges[1:]):
-            blocks = []
-            for name, order in wanted:
-                block = coefficients[:, self._slices[name]]
-                if order:
-                    derived = chebyshev.chebder(block, m=order, scl=2.0 / (b - a), axis=0)
-                    block = np.concatenate([derived, np.zeros((order, block.shape[1]))])
-                blocks.append(block)
-            matrices.append(np.concatenate(blocks, axis=1))
-        return BankView(np.concatenate(matrices, axis=1), len(matrices), len(wanted))
+        parts: list[slice | Array] = []
+        for name, order in wanted:
+            where = self._slices[name]
+            if order < 2:
+                offset = order * self._coefficients[0].shape[1]
+                parts.append(slice(where.start + offset, where.stop + offset))
+            else:
+                parts.append(np.concatenate([c[:, where] for c in self._derivative(order)], axis=1))
+        return BankView(tuple(parts), len(self.edges) - 1)
+
+    def _derivative(self, order: int) -> list[Array]:
+        """Coefficients of a temperature derivative of every function, by segment."""
+        return [np.pad(chebyshev.chebder(c, m=order, scl=2.0 / (b - a), axis=0), ((0, order), (0, 0)))
+                for c, a, b in zip(self._coefficients, self.edges[:-1], self.edges[1:])]
 
 
 def _sample(functions: Sequence[ScalarFunction], T: Array) -> Array:
@@ -162,7 +184,7 @@ def _fit(functions: Sequence[ScalarFunction], low: float, high: float) -> tuple[
             padded = np.zeros_like(coefficients)
             padded[:len(best[0])] = best[0]
             best = (np.where(pending & better, coefficients, padded), np.where(pending & better, error, best[1]))
-            # A function that gains nothing from twice the nodes has a kink or noise; more degrees will not help.
+            # A function that gains little from more nodes has a kink or noise; more degrees will not help.
             pending &= ~done & better
         if not pending.any():
             break

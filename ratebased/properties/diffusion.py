@@ -1,6 +1,7 @@
 """Pair diffusivities of both phases from the correlations of the package `correlations`."""
 from __future__ import annotations
 
+import inspect
 from typing import Protocol
 
 import numpy as np
@@ -42,14 +43,15 @@ class Fuller:
     def __init__(self, molar_mass: Array, volume: Array) -> None:
         self._pairs = molar_mass[:, None], molar_mass[None, :], volume[:, None], volume[None, :]
         self._reference = fuller.silent(REFERENCE_TEMPERATURE, REFERENCE_PRESSURE, *self._pairs)
-        ranges = fuller.record.validity.ranges
-        self._T_range, self._P_range = ranges["temperature"], ranges["pressure"]
+        self._limits = [(limit.low or 0.0, limit.high or np.inf) for limit in (
+            fuller.record.validity.ranges["temperature"], fuller.record.validity.ranges["pressure"])
+            if limit is not None]
 
     def __call__(self, T: Array, P: Array) -> Array:
         """Pair diffusivities, m2/s, (..., n, n); the correlation's own warning outside its range."""
         T, P = np.asarray(T, float), np.asarray(P, float)
-        if any(interval is not None and interval.outside(value).any()
-               for interval, value in ((self._T_range, T), (self._P_range, P))):
+        if any(value.size and not (low <= value.min() and value.max() <= high)
+               for value, (low, high) in zip((T, P), self._limits)):
             return fuller(T[..., None, None], P[..., None, None], *self._pairs)
         # Inside it the pairs and the state separate, T^1.75/P.
         scale = (T / REFERENCE_TEMPERATURE) ** 1.75 * (REFERENCE_PRESSURE / P)
@@ -109,7 +111,8 @@ class LiquidDiffusivity:
 
     def __init__(self, dilute: DiluteDiffusivity, solvent: Mask, closure: MixingClosure = kooijman_taylor) -> None:
         self.dilute = dilute
-        self.closure = closure
+        # the formula behind its record: the arguments come from this room, checking them again costs as much as it
+        self.closure = inspect.unwrap(closure)
         self._solvent = solvent
         self._all_solvents = bool(solvent.all())
 

@@ -91,8 +91,16 @@ class Jet:
     def __pow__(self, exponent: float) -> Jet:
         return self._compose(*_powers(self.terms[0], exponent, len(self.terms)))
 
-    def log(self) -> Jet:
-        return self._compose(np.log(self.terms[0]), *_inverses(self.terms[0], len(self.terms) - 1))
+    def log(self, inverse: Jet | None = None) -> Jet:
+        """Natural logarithm; `inverse` is the reciprocal of this jet, if it is at hand."""
+        f = self.terms
+        r = (self.reciprocal() if inverse is None else inverse).terms
+        terms = [np.log(f[0])]
+        if len(f) > 1:
+            terms.append(f[1] * r[0])
+        if len(f) > 2:
+            terms.append(f[2] * r[0] + f[1] * r[1])
+        return Jet(terms)
 
     def exp(self) -> Jet:
         value = np.exp(self.terms[0])
@@ -110,8 +118,6 @@ class Jet:
 
 def _inverses(base: Array, count: int) -> list[Array]:
     """1/base and its derivatives, `count` terms: products, because a general power costs ten times as much."""
-    if count < 1:
-        return []
     terms = [1.0 / base]
     for k in range(1, count):
         terms.append(terms[-1] * terms[0] * -k if k > 1 else -terms[0] * terms[0])

@@ -8,7 +8,7 @@ import numpy as np
 from numpy.typing import ArrayLike
 
 from ..errors import InputError
-from .activity import ActivityModel, DissolvedGases
+from .activity import ActivityModel, DissolvedGases, ln_gamma_and_derivatives
 from .bank import Basis
 from .components import PropertyRecord, PureComponents, Role
 from .diffusion import GasDiffusivity, LiquidDiffusivity
@@ -107,8 +107,8 @@ class ThermoProperties(MixtureModel):
     def k_value_derivatives(self, T: ArrayLike, P: ArrayLike, x: ArrayLike, y: ArrayLike) -> KDerivatives:
         """Analytic derivatives of ln K by temperature and mole numbers, see `KDerivatives`."""
         T, P, x = np.asarray(T, float), np.asarray(P, float), self._liquid_composition(x)
-        slope = self._pure.ln_fugacity_slope(self._bank.basis(T), T, P) + self.activity.ln_gamma(T, x, 1).terms[1]
-        by_liquid = self.activity.mole_number_derivatives(T, x)
+        ln_gamma, by_liquid = ln_gamma_and_derivatives(self.activity, T, x, 1)
+        slope = self._pure.ln_fugacity_slope(self._bank.basis(T), T, P) + ln_gamma.terms[1]
         shape = np.broadcast_shapes(slope.shape[:-1], P.shape, np.shape(y)[:-1])
         n = len(self.names)
         by_vapor = np.zeros((*shape, n, n))
@@ -206,8 +206,7 @@ class ThermoProperties(MixtureModel):
         T, P, x = np.asarray(T, float), np.asarray(P, float), self._liquid_composition(x)
         y = self._checked("y", y)
         basis = self._bank.basis(T)
-        ln_gamma = self.activity.ln_gamma(T, x, 2)
-        J = self.activity.mole_number_derivatives(T, x)
+        ln_gamma, J = ln_gamma_and_derivatives(self.activity, T, x, 2)
         ln_fugacity = self._pure.ln_fugacity(basis, T, P) + ln_gamma.value
         gas_enthalpy, gas_cp = self._gas_enthalpy(basis)[0], self._gas_heat_capacity(basis)[0]
         liquid_enthalpy = gas_enthalpy - self._pure.enthalpy_below_gas(basis, T, P) + excess_enthalpy(T, ln_gamma)

@@ -3,7 +3,7 @@ import numpy as np
 import pytest
 
 from ratebased.errors import InputError
-from ratebased.properties.activity import DissolvedGases, Ideal, Nrtl, Unifac, Uniquac, Wilson
+from ratebased.properties.activity import DissolvedGases, Ideal, Nrtl, Unifac, Uniquac, Wilson, ln_gamma_and_derivatives
 from ratebased.properties.henry import HenryConstant, HenryLaw
 from ratebased.properties.protocol import GAS_CONSTANT
 from ratebased.properties.thermo_data import ComponentData, unifac_groups
@@ -156,6 +156,15 @@ def test_temperature_and_composition_broadcast():
             np.testing.assert_allclose(many_x[0].terms[k], table[0].terms[k][1], rtol=1e-12, atol=1e-15)
         np.testing.assert_allclose(many_T[1], table[1][:, 0], rtol=1e-12, atol=1e-14)
         np.testing.assert_allclose(many_x[1], table[1][1], rtol=1e-12, atol=1e-14)
+
+
+def test_shared_evaluation_equals_the_separate_ones():
+    x = compositions(3, 3)
+    for model in all_models(3):
+        jet, J = ln_gamma_and_derivatives(model, TEMPERATURES, x, 2)
+        for one, two in zip(jet.terms, model.ln_gamma(TEMPERATURES, x, 2).terms):
+            np.testing.assert_array_equal(one, two)
+        np.testing.assert_array_equal(J, model.mole_number_derivatives(TEMPERATURES, x))
 
 
 def test_absent_component_has_its_infinite_dilution_value():

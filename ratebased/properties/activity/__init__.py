@@ -2,9 +2,10 @@
 from .dissolved import DissolvedGases
 from .ideal import Ideal
 from .nrtl import Nrtl
-from .protocol import ActivityModel
+from .protocol import ActivityModel, ln_gamma_and_derivatives
 from .unifac import Unifac
 from .uniquac import Uniquac
 from .wilson import Wilson
 
-__all__ = ["ActivityModel", "DissolvedGases", "Ideal", "Nrtl", "Unifac", "Uniquac", "Wilson"]
+__all__ = ["ActivityModel", "DissolvedGases", "Ideal", "Nrtl", "Unifac", "Uniquac", "Wilson",
+           "ln_gamma_and_derivatives"]

@@ -43,17 +43,30 @@ class Nrtl:
         """ln gamma_i = q_i + sum_j x_j F_ij with temperature derivatives, (..., n)."""
         x = np.asarray(x, float)
         _, q, F = self._local(np.asarray(T, float), x, order)
-        return q[..., 0, :] + (F @ x[..., None])[..., 0]
+        return _ln_gamma(q, F, x)
 
     def mole_number_derivatives(self, T: Array, x: Array) -> Array:
         """d ln gamma_i / d n_j at one mole in all, (..., n, n)."""
         x = np.asarray(x, float)
-        per_mole, _, F_jet = self._local(np.asarray(T, float), x, 0)
-        F = F_jet.value
-        shared = (per_mole.value * x[..., None, :]) @ np.swapaxes(F, -1, -2)
-        half = F - shared
-        symmetric: Array = half + np.swapaxes(half, -1, -2)
-        return symmetric
+        per_mole, _, F = self._local(np.asarray(T, float), x, 0)
+        return _mole_numbers(per_mole.value, F.value, x)
+
+    def ln_gamma_and_derivatives(self, T: Array, x: Array, order: int) -> tuple[Jet, Array]:
+        """What `ln_gamma` and `mole_number_derivatives` give."""
+        x = np.asarray(x, float)
+        per_mole, q, F = self._local(np.asarray(T, float), x, order)
+        return _ln_gamma(q, F, x), _mole_numbers(per_mole.value, F.value, x)
 
     def describe(self) -> str:
         return "NRTL, Renon & Prausnitz (1968), parameters given by the user"
+
+
+def _ln_gamma(q: Jet, F: Jet, x: Array) -> Jet:
+    return q[..., 0, :] + (F @ x[..., None])[..., 0]
+
+
+def _mole_numbers(per_mole: Array, F: Array, x: Array) -> Array:
+    """F_ij + F_ji - sum_k x_k (G_ik F_jk + G_jk F_ik)/S_k."""
+    half = F - (per_mole * x[..., None, :]) @ np.swapaxes(F, -1, -2)
+    symmetric: Array = half + np.swapaxes(half, -1, -2)
+    return symmetric

@@ -30,3 +30,19 @@ class ActivityModel(Protocol):
     def describe(self) -> str:
         """The model and its source, one line."""
         ...
+
+
+class SharesInteractions(Protocol):
+    """A model that gives both quantities from one evaluation of its temperature-dependent interactions."""
+
+    def ln_gamma_and_derivatives(self, T: Array, x: Array, order: int) -> tuple[Jet, Array]:
+        """What `ln_gamma` and `mole_number_derivatives` give."""
+        ...
+
+
+def ln_gamma_and_derivatives(model: ActivityModel, T: Array, x: Array, order: int) -> tuple[Jet, Array]:
+    """ln gamma (to a temperature order) and the mole-number derivatives of any model, shared work done once."""
+    shared: SharesInteractions | None = model if hasattr(model, "ln_gamma_and_derivatives") else None  # type: ignore
+    if shared is not None:
+        return shared.ln_gamma_and_derivatives(T, x, order)
+    return model.ln_gamma(T, x, order), model.mole_number_derivatives(T, x)

@@ -46,7 +46,8 @@ def _fractions(x: Array, r: Array, q: Array, r_exponent: float) -> tuple[Array, 
 def segment_activity(theta: Array, psi: Jet) -> Jet:
     """ln Gamma_k / Q_k for area fractions theta (..., m, G) and interactions psi (..., G, G): (..., m, G)."""
     E = theta @ psi
-    return -(E.log() + (E.reciprocal() * theta) @ psi.transpose()) + 1.0
+    inverse = E.reciprocal()
+    return -(E.log(inverse) + (inverse * theta) @ psi.transpose()) + 1.0
 
 
 def residual_mole_derivatives(x: Array, areas: Array, psi: Array) -> Array:

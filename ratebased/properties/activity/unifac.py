@@ -52,6 +52,7 @@ class Unifac:
         self.r_exponent = r_exponent
         self.label = label
         self._areas = groups * area
+        self._ones = np.ones(n_groups)
         self._pure_fractions = self._areas / self.q[:, None]
 
     def _psi(self, T: Array, order: int) -> Jet:
@@ -63,8 +64,9 @@ class Unifac:
 
     def ln_gamma(self, T: Array, x: Array, order: int = 0) -> Jet:
         """ln gamma with temperature derivatives, (..., n)."""
-        x = np.asarray(x, float)
-        psi = self._psi(T, order)
+        return self._ln_gamma(self._psi(T, order), np.asarray(x, float))
+
+    def _ln_gamma(self, psi: Jet, x: Array) -> Jet:
         amount = x @ self._areas
         theta = (amount / amount.sum(-1, keepdims=True))[..., None, :]
         # The mixture and every pure component in one product: many small matrices cost by their number.
@@ -76,13 +78,20 @@ class Unifac:
 
     def _molecule(self, segment: Array) -> Array:
         """Sum over the groups of each molecule, (..., n, G) -> (..., n)."""
-        total: Array = np.einsum("...ik,ik->...i", segment, self._areas)
+        total: Array = (segment * self._areas) @ self._ones
         return total
 
     def mole_number_derivatives(self, T: Array, x: Array) -> Array:
         """d ln gamma_i / d n_j at one mole in all, (..., n, n)."""
-        x = np.asarray(x, float)
-        return (residual_mole_derivatives(x, self._areas, self._psi(T, 0).value)
+        return self._mole_numbers(self._psi(T, 0).value, np.asarray(x, float))
+
+    def ln_gamma_and_derivatives(self, T: Array, x: Array, order: int) -> tuple[Jet, Array]:
+        """What `ln_gamma` and `mole_number_derivatives` give."""
+        psi, x = self._psi(T, order), np.asarray(x, float)
+        return self._ln_gamma(psi, x), self._mole_numbers(psi.value, x)
+
+    def _mole_numbers(self, psi: Array, x: Array) -> Array:
+        return (residual_mole_derivatives(x, self._areas, psi)
                 + combinatorial_mole_derivatives(x, self.r, self.q, self.r_exponent))
 
     def describe(self) -> str:
