@@ -60,8 +60,9 @@ def run_file(path: Path) -> Count:
     content = json.loads(path.read_text())
     read = reader(content["format"])
     count = Count()
-    for number, case in enumerate(content["cases"]):
-        name = case.get("id") or case.get("name") or str(number)
+    cases = content["cases"]
+    for key, case in cases.items() if isinstance(cases, dict) else enumerate(cases):
+        name = case.get("id") or case.get("name") or str(key)
         try:
             missed = [comparison.what for comparison in read(case) if not comparison.right]
         except Exception as error:                        # counted, and shown with its kind

@@ -6,7 +6,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from ..properties.differences import k_value_derivatives
-from ..properties.protocol import Array
+from ..properties.protocol import Array, Mask
 from .problem import Problem
 from .specifications import BoilupRatio, BottomsRate, DistillateRate, ReboilerDuty, RefluxRatio
 from .steps import fractions
@@ -32,9 +32,9 @@ class EquilibriumPart:
     by_l: Array
 
 
-def equilibrium_part(problem: Problem, P: Array, v: Array, T: Array, l: Array,
-                     y: Array | None = None) -> EquilibriumPart:
-    """`y` replaces the vapour's composition in K: a total condenser has no vapour of its own."""
+def equilibrium_part(problem: Problem, P: Array, v: Array, T: Array, l: Array, y: Array | None = None,
+                     held: Mask | None = None) -> EquilibriumPart:
+    """`y` replaces the vapour's composition in K; where `held`, K does not follow v."""
     V, y_out, dy = fractions(v)
     L, x, dx = fractions(l)
     vapor = y_out if y is None else y
@@ -43,6 +43,8 @@ def equilibrium_part(problem: Problem, P: Array, v: Array, T: Array, l: Array,
     Kx = K * x
     by_l = K[..., None] * dx + Kx[..., None] * slope.liquid / L[..., None, None]
     by_v = Kx[..., None] * slope.vapor / V[..., None, None]
+    if held is not None:
+        by_v = np.where(held[:, None, None], 0.0, by_v)
     return EquilibriumPart(V, y_out, dy, L, x, dx, K, Kx, Kx * slope.temperature, by_v, by_l)
 
 
@@ -60,10 +62,10 @@ class EndRows:
     energy: bool
 
 
-def bubble_vapor(problem: Problem, T: Array, l: Array, y: Array) -> Array:
-    """K x of the condensate, normalised, (1, n), with K at the last estimate `y`."""
+def bubble_vapor(problem: Problem, P: Array, T: Array, l: Array, y: Array) -> Array:
+    """K x of liquids, normalised, with K at the last estimate `y` of that vapour."""
     x = l / l.sum(-1, keepdims=True)
-    Kx = np.where(problem.ordinary, problem.properties.k_value(T, problem.P[:1], x, y), 0.0) * x
+    Kx = np.where(problem.ordinary, problem.properties.k_value(T, P, x, y), 0.0) * x
     vapor: Array = Kx / Kx.sum(-1, keepdims=True)
     return vapor
 

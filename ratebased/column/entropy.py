@@ -30,7 +30,7 @@ class EntropyProduction:
 
     vapor_diffusion, liquid_diffusion: R sum N_i ln(a_0/a_d) of the films. vapor_conduction, liquid_conduction: of the
     heat conducted in them. vapor_mixing, liquid_mixing: entering streams against the bulk. inconsistency: what is left
-    of the films, zero when K, enthalpies and heat capacities of the model belong to one Gibbs energy. total: their sum.
+    over, zero when K, enthalpies and heat capacities of the model belong to one Gibbs energy. total: their sum.
     streams: the same from the entropies of the streams of the stage and its duty; closure: |total - streams| over the
     turnover.
     """
@@ -62,37 +62,42 @@ class EntropyProduction:
 
 
 class _Potentials:
-    """mu_i/T and s_i of both phases, relative to g_i(T_0) = 0 at one temperature for all."""
+    """mu_i/T of both phases.
 
-    def __init__(self, model: PropertyModel, T_0: float) -> None:
-        self.model, self.T_0 = model, T_0
+    g_i(T), zero at one temperature, is the same for every stream: its enthalpies are those of one vapour (and, for a
+    component that never boils, one liquid) of mean composition and pressure.
+    """
 
-    def standard(self, T: Array, P: Array, y: Array) -> Array:
-        """g_i(T): minus the integral of H_V,i/T^2 from T_0, Gauss-Legendre."""
-        half = 0.5 * (T - self.T_0)
-        total = np.zeros(y.shape)
+    def __init__(self, model: PropertyModel, profile: Profile) -> None:
+        self.model = model
+        self.T_0, self.P_0 = float(np.mean(profile.T_L)), float(np.mean(profile.P))
+        c = profile.contact_index
+        self.y_0, self.x_0 = profile.y[c].mean(0), profile.x[c].mean(0)
+
+    def standard(self, T: Array) -> Array:
+        """g_i(T): minus the integral of H_i/T^2 from T_0, Gauss-Legendre."""
+        half = 0.5 * (np.asarray(T, float) - self.T_0)
+        P = np.broadcast_to(self.P_0, half.shape)
+        shape = (*half.shape, self.y_0.size)
+        y, x = np.broadcast_to(self.y_0, shape), np.broadcast_to(self.x_0, shape)
+        total = np.zeros(shape)
         for node, weight in zip(NODES, WEIGHTS):
             t = self.T_0 + half * (1.0 + node)
-            total -= weight * (half / t ** 2)[..., None] * self.model.vapor_enthalpy(t, P, y)
+            H = np.asarray(self.model.vapor_enthalpy(t, P, y))
+            if not self.model.volatile.all():
+                H = np.where(self.model.volatile, H, self.model.liquid_enthalpy(t, P, x))
+            total -= weight * (half / t ** 2)[..., None] * H
         return total
 
     def vapor(self, T: Array, P: Array, y: Array) -> Array:
-        return self.standard(T, P, y) + GAS_CONSTANT * _ln(y * P[..., None])
+        return self.standard(T) + GAS_CONSTANT * _ln(y * P[..., None])
 
     def liquid(self, T: Array, P: Array, x: Array, y: Array) -> Array:
         model = self.model
         both = model.condensable & model.volatile
         K = np.where(both, model.k_value(T, P, x, y), 0.0)
-        bound = self.standard(T, P, y) + GAS_CONSTANT * _ln(K * x * P[..., None])
-        if model.volatile.all():
-            return bound
-        # a component that never boils has no vapour to refer to: an ideal solute with the enthalpy of the liquid
-        half = 0.5 * (T - self.T_0)
-        own = np.zeros(x.shape)
-        for node, weight in zip(NODES, WEIGHTS):
-            t = self.T_0 + half * (1.0 + node)
-            own -= weight * (half / t ** 2)[..., None] * model.liquid_enthalpy(t, P, x)
-        return np.where(model.volatile, bound, own + GAS_CONSTANT * _ln(x))
+        bound = _ln(np.where(model.volatile, K * x * P[..., None], x))
+        return self.standard(T) + GAS_CONSTANT * bound
 
 
 def _ln(a: Array) -> Array:
@@ -114,7 +119,7 @@ def entropy_production(profile: Profile, *, properties: PropertyModel | None = N
     r = profile.record()
     c = profile.contact_index
     P, A = profile.P[c], r.area
-    mu = _Potentials(model, float(np.mean(profile.T_L)))
+    mu = _Potentials(model, profile)
     y_b, x_b, T_V, T_L = r.y_bulk, r.x_bulk, r.T_V_bulk, r.T_L_bulk
     vapor_b, liquid_b = mu.vapor(T_V, P, y_b), mu.liquid(T_L, P, x_b, y_b)
     vapor_I, liquid_I = mu.vapor(r.T_I, P, r.y_I), mu.liquid(r.T_I, P, r.x_I, r.y_I)
@@ -134,19 +139,19 @@ def entropy_production(profile: Profile, *, properties: PropertyModel | None = N
     q_L = E - (N * model.liquid_enthalpy(T_L, P, x_b)).sum(-1)
     vapor_conduction = A * _conduction(q_V, (N * cp_V).sum(-1), T_V, r.T_I)
     liquid_conduction = -A * _conduction(q_L, (N * cp_L).sum(-1), T_L, r.T_I)
-    inconsistency = (vapor_film + liquid_film + interface - vapor_diffusion - liquid_diffusion - vapor_conduction
-                     - liquid_conduction)
-    vapor_mixing, vapor_streams, size_V = _phase(profile, model, mu, c, True, y_b, T_V, vapor_b, A[:, None] * N,
-                                                 A * q_V)
-    liquid_mixing, liquid_streams, size_L = _phase(profile, model, mu, c, False, x_b, T_L, liquid_b, -A[:, None] * N,
-                                                   -A * q_L)
+    v = _Phase(profile, mu, True, y_b, T_V)
+    l = _Phase(profile, mu, False, x_b, T_L)
     duty = profile.duty[c] / T_L
-    liquid_mixing = liquid_mixing - duty
-    streams = vapor_streams + liquid_streams - duty
-    total = (vapor_film + liquid_film + interface) + vapor_mixing + liquid_mixing
+    gone = A[:, None] * N
+    bulk = v.against_bulk(vapor_b, gone, A * q_V) + l.against_bulk(liquid_b, -gone, -A * q_L) - duty
+    total = vapor_film + liquid_film + interface + bulk
+    vapor_mixing, liquid_mixing = v.mixing(), l.mixing()
+    inconsistency = total - (vapor_diffusion + liquid_diffusion + vapor_conduction + liquid_conduction + vapor_mixing
+                             + liquid_mixing)
+    streams = v.leaving - v.entering + l.leaving - l.entering - duty
+    turnover = sum(np.abs(part) for part in (v.leaving, v.entering, l.leaving, l.entering))
     return EntropyProduction(r.stage, vapor_diffusion, liquid_diffusion, vapor_conduction, liquid_conduction,
-                             vapor_mixing,
-                             liquid_mixing, inconsistency, streams, np.abs(total - streams) / (size_V + size_L))
+                             vapor_mixing, liquid_mixing, inconsistency, streams, np.abs(total - streams) / turnover)
 
 
 def _mean_cp(enthalpy: object, slope: Array, T_0: Array, T_1: Array, P: Array, z: Array) -> Array:
@@ -162,36 +167,65 @@ def _conduction(q_0: Array, flow_cp: Array, T_0: Array, T_1: Array) -> Array:
     return (q_0 + flow_cp * T_0) * (1.0 / T_1 - 1.0 / T_0) + flow_cp * np.log(T_1 / T_0)
 
 
-def _phase(profile: Profile, model: PropertyModel, mu: _Potentials, c: NDArray[np.intp], vapor: bool, z_b: Array,
-           T_b: Array,
-           mu_b: Array, gone: Array, heat_gone: Array) -> tuple[Array, Array, Array]:
-    """Production of one phase's streams against its bulk, its net stream entropy (out - in) and the turnover."""
-    S = profile.stages
-    shift = 1 if vapor else -1
-    flow = (profile.V + profile.vapor_draw)[:, None] * profile.y if vapor else \
-        (profile.L + profile.liquid_draw)[:, None] * profile.x
-    net = profile.V[:, None] * profile.y if vapor else profile.L[:, None] * profile.x
-    T = profile.T_V if vapor else profile.T_L
-    feed = profile.feeds.vapor if vapor else profile.feeds.liquid
-    T_feed = profile.feeds.vapor_temperature if vapor else profile.feeds.liquid_temperature
-    enthalpy = model.vapor_enthalpy if vapor else model.liquid_enthalpy
-    P = profile.P[c]
+class _Phase:
+    """The streams of one phase at the contact stages: two that enter (neighbour, feed) and one that leaves.
 
-    def entropy(flows: Array, T: Array, P: Array) -> Array:
-        """(...,): of a stream."""
+    Each carries the entropy of its own state at the pressure of the stage.
+    """
+
+    def __init__(self, profile: Profile, mu: _Potentials, vapor: bool, z_b: Array, T_b: Array) -> None:
+        self.mu, self.is_vapor, self.z_b, self.T_b = mu, vapor, z_b, T_b
+        model = mu.model
+        self.enthalpy = model.vapor_enthalpy if vapor else model.liquid_enthalpy
+        c, S = profile.contact_index, profile.stages
+        self.P = profile.P[c]
+        total, draw, z, T = (profile.V, profile.vapor_draw, profile.y, profile.T_V) if vapor else (
+            profile.L, profile.liquid_draw, profile.x, profile.T_L)
+        feed, T_feed = (profile.feeds.vapor, profile.feeds.vapor_temperature) if vapor else (
+            profile.feeds.liquid, profile.feeds.liquid_temperature)
+        place = c + (1 if vapor else -1)
+        near = np.clip(place, 0, S - 1)
+        coming = np.where(((place >= 0) & (place < S))[:, None], (total[:, None] * z)[near], 0.0)
+        self.going = (((total + draw)[:, None] * z)[c], T[c])
+        self.coming = ((coming, T[near]), (feed[c], T_feed[c]))
+        self.entering = sum((self._entropy(*stream) for stream in self.coming), np.zeros(c.size))
+        self.leaving = self._entropy(*self.going)
+
+    def _state(self, flows: Array, T: Array) -> tuple[Array, Array]:
+        """Composition and temperature of a stream; an empty one has those of the bulk."""
         total = flows.sum(-1, keepdims=True)
-        z = flows / np.where(total > 0, total, 1.0)
-        T = np.where(total[..., 0] > 0, T, float(np.mean(profile.T_L)))
-        potential = mu.vapor(T, P, z) if vapor else mu.liquid(T, P, z, z)
-        H = np.asarray(enthalpy(T, P, z))
-        return np.asarray((flows * (H / T[..., None] - potential)).sum(-1))
+        return (np.where(total > 0, flows / np.where(total > 0, total, 1.0), self.z_b),
+                np.where(total[..., 0] > 0, T, self.T_b))
 
-    neighbour = np.clip(c + shift, 0, S - 1)
-    inside = (c + shift >= 0) & (c + shift < S)
-    incoming = np.where(inside[:, None], net[neighbour], 0.0)
-    # each stream carries its entropy at its own state; pressure differences between stages are throttled by the stage
-    s_in = entropy(incoming, T[neighbour], P) + entropy(feed[c], T_feed[c], P)
-    s_out = entropy(flow[c], T[c], P)
-    s_b = np.asarray(enthalpy(T_b, P, z_b)) / T_b[..., None] - mu_b
-    mixing = s_out - s_in + (gone * s_b).sum(-1) + heat_gone / T_b
-    return mixing, s_out - s_in, np.abs(s_out) + np.abs(s_in)
+    def _potential(self, T: Array, z: Array) -> Array:
+        if self.is_vapor:
+            return self.mu.vapor(T, self.P, z)
+        return self.mu.liquid(T, self.P, z, np.broadcast_to(self.mu.y_0, z.shape))
+
+    def _entropy(self, flows: Array, T: Array) -> Array:
+        z, T = self._state(flows, T)
+        H = np.asarray(self.enthalpy(T, self.P, z))
+        return np.asarray((flows * (H / T[..., None] - self._potential(T, z))).sum(-1))
+
+    def against_bulk(self, mu_b: Array, gone: Array, heat_gone: Array) -> Array:
+        """Production between the streams and the bulk that gives `gone` mol/s and heat to the film."""
+        s_b = np.asarray(self.enthalpy(self.T_b, self.P, self.z_b)) / self.T_b[..., None] - mu_b
+        return np.asarray(self.leaving - self.entering + (gone * s_b).sum(-1) + heat_gone / self.T_b)
+
+    def mixing(self) -> Array:
+        """The same by its two causes: heat between unequal temperatures and diffusion at the temperature of the bulk.
+
+        A stream gives sum flow [cp (ln(T_b/T) + T/T_b - 1) + R ln(a/a_b)]: never negative when it enters a mixed bulk.
+        """
+        return sum((self._toward_bulk(*stream) for stream in self.coming), np.zeros(self.T_b.size)
+                   ) - self._toward_bulk(*self.going)
+
+    def _toward_bulk(self, flows: Array, T: Array) -> Array:
+        z, T = self._state(flows, T)
+        heat = np.asarray(self.enthalpy(self.T_b, self.P, z)) - np.asarray(self.enthalpy(T, self.P, z))
+        ratio = self.T_b / T
+        near = np.abs(ratio - 1.0) < 1e-9
+        # cp (ln r - 1 + 1/r) with cp = heat/(T_b - T)
+        factor = np.where(near, 0.0, (np.log(ratio) - 1.0 + 1.0 / ratio) / np.where(near, 1.0, self.T_b - T))
+        activity = (self._potential(self.T_b, z) - self._potential(self.T_b, self.z_b))
+        return np.asarray((flows * (heat * factor[..., None] + activity)).sum(-1))

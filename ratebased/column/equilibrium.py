@@ -14,7 +14,7 @@ import numpy as np
 from ..efficiency_set import EfficiencyBasis, EfficiencyKind, EfficiencySet, uniform_murphree
 from ..errors import InputError, PlausibilityWarning
 from ..properties.differences import liquid_heat_capacity, vapor_heat_capacity
-from ..properties.protocol import Array, PropertyModel
+from ..properties.protocol import Array, Mask, PropertyModel
 from .banded import block_tridiagonal
 from .definition import Column
 from .ends import EquilibriumPart, bubble_vapor, condenser_rows, equilibrium_part, reboiler_rows
@@ -86,8 +86,19 @@ class System:
     upper: Array
 
 
-def equilibrium_system(problem: Problem, rows: StageRows, state: State, y_condenser: Array) -> System:
-    """Rows of a stage: n balances, n equilibrium (or specification) rows, energy."""
+def held_rows(problem: Problem, rows: StageRows) -> Mask:
+    """Stages whose K belongs to the bubble vapour of the liquid and not to the vapour that leaves: a total condenser,
+    Murphree efficiencies at the bubble point. That vapour is held within an iteration."""
+    held = rows.bubble >= 0
+    held[0] |= problem.total_condenser
+    return held
+
+
+def equilibrium_system(problem: Problem, rows: StageRows, state: State, y_held: Array) -> System:
+    """Rows of a stage: n balances, n equilibrium (or specification) rows, energy.
+
+    y_held: bubble vapours of the last iterate, (S, n), for K on the stages of `held_rows`.
+    """
     S, n = problem.S, problem.n
     m, h = 2 * n + 1, 2 * n
     v, T, l = state.v, state.T, state.l
@@ -99,11 +110,12 @@ def equilibrium_system(problem: Problem, rows: StageRows, state: State, y_conden
     v_in, l_in = problem.feeds.vapor.copy(), problem.feeds.liquid.copy()
     v_in[:-1] += rising[1:]
     l_in[1:] += falling[:-1]
-    y_for_k = None
-    if problem.total_condenser:
-        y_for_k = v / v.sum(1, keepdims=True)
-        y_for_k[0] = y_condenser[0]
-    part = equilibrium_part(problem, problem.P, v, T, l, y_for_k)
+    held = held_rows(problem, rows)
+    if held.any():
+        y_for_k = np.where(held[:, None], y_held, v / v.sum(1, keepdims=True))
+        part = equilibrium_part(problem, problem.P, v, T, l, y_for_k, held)
+    else:
+        part = equilibrium_part(problem, problem.P, v, T, l)
     _balance_rows(r, D, lower, upper, n, fe, v + l - v_in - l_in, d_rising, d_falling)
     _equilibrium_rows(problem, rows, part, r, D, upper, v, l, v_in, d_rising)
     # energy
@@ -233,7 +245,7 @@ def newton(problem: Problem, rows: StageRows, state: State, *, damped: bool = Fa
     S, n = problem.S, problem.n
     m = 2 * n + 1
     band = block_tridiagonal(S, m, n, n + 1, 2 * m - 1 - n, m + n)
-    y_condenser = state.v[:1] / state.v[:1].sum()
+    held, y_held = np.flatnonzero(held_rows(problem, rows)), state.v / state.v.sum(1, keepdims=True)
     names = problem.properties.names
     reason, residual, worst = "the iteration limit", np.inf, ""
     floor = 1e2 * np.finfo(float).eps
@@ -242,9 +254,9 @@ def newton(problem: Problem, rows: StageRows, state: State, *, damped: bool = Fa
     low, high = low - offsets.min(0), high - offsets.max(0)
     state = replace(state, T=np.clip(state.T, low, high))
     for iteration in range(1, limit + 1):
-        if problem.total_condenser:
-            y_condenser = bubble_vapor(problem, state.T[:1], state.l[:1], y_condenser)
-        system = equilibrium_system(problem, rows, state, y_condenser)
+        if held.size:
+            y_held[held] = bubble_vapor(problem, problem.P[held], state.T[held], state.l[held], y_held[held])
+        system = equilibrium_system(problem, rows, state, y_held)
         residual, worst = float(np.abs(system.residual).max()), _worst(system.residual, names)
         if progress is not None:
             progress(iteration, residual)
@@ -307,7 +319,7 @@ def solve_equilibrium(column: Column, properties: PropertyModel, efficiency: Eff
     and energy written in mole fractions and solved as a band.
     """
     if column.search is not None:
-        return with_search(column, lambda trial, _: solve_equilibrium(trial, properties, efficiency))
+        return with_search(column, lambda trial, last: solve_equilibrium(trial, properties, efficiency, start=last))
     problem = make_problem(column, properties)
     given = _efficiency_set(problem, efficiency)
     if start is not None:

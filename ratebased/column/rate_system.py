@@ -315,4 +315,4 @@ def updated_condenser_vapor(problem: Problem, state: RateState) -> Array:
     """Bubble vapour of the condensate, with K at its last estimate."""
     if not problem.total_condenser:
         return state.y_condenser
-    return bubble_vapor(problem, state.T_L[:1] + problem.subcooling, state.l[:1], state.y_condenser)
+    return bubble_vapor(problem, problem.P[:1], state.T_L[:1] + problem.subcooling, state.l[:1], state.y_condenser)

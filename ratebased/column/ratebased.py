@@ -99,8 +99,8 @@ def solve_ratebased(column: Column, properties: PropertyModel, contactor: Contac
     are left out of the Jacobian.
     """
     if column.search is not None:
-        return with_search(column, lambda trial, last: solve_ratebased(trial, properties, contactor, vapor=vapor,
-                                                                       liquid=liquid, area_factor=area_factor))
+        return with_search(column, lambda trial, last: solve_ratebased(
+            trial, properties, contactor, vapor=vapor, liquid=liquid, start=last, area_factor=area_factor))
     packed = column.segment_height is not None
     default: FlowPattern = Averaged() if packed else Mixed()
     problem = make_problem(column, properties, None if start is None else start.P)

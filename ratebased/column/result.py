@@ -70,7 +70,7 @@ def make_profile(problem: Problem, v: Array, T_V: Array, l: Array, T_L: Array, m
 def _condensate_vapor(problem: Problem, T: Array, l: Array) -> Array:
     if problem.heavy.any():
         x = l / l.sum()
-        return bubble_vapor(problem, T, l, x)[0]
+        return bubble_vapor(problem, problem.P[:1], T, l, x)[0]
     return bubble_point(problem.properties, problem.P[0], l[0] / l[0].sum(), T[0])[1]
 
 

@@ -162,7 +162,7 @@ def masked(problem: Problem, v: Array, l: Array) -> tuple[Array, Array]:
 
 
 def _boiling(problem: Problem, x: Array, T: Array, y: Array) -> tuple[Array, Array]:
-    """Nearly bubble points of the condensable part, by Newton steps of ln(sum K x) in 1/T, in which it is nearly straight.
+    """Nearly bubble points of the condensable part: Newton steps of ln(sum K x) in 1/T, in which it is nearly straight.
 
     An oil raises the boiling point without limit: here it counts for half of the liquid at most.
     """
@@ -181,7 +181,7 @@ def _boiling(problem: Problem, x: Array, T: Array, y: Array) -> tuple[Array, Arr
         y = Kx / total[:, None]
         near = np.minimum(T + 0.05, high) - np.where(T + 0.05 > high, 0.05, 0.0)
         other = np.where(problem.ordinary, properties.k_value(near, P, shares, y), 0.0) * shares
-        slope = np.log(other.sum(-1) / total) / (1.0 / near - 1.0 / T)              # by 1/T: minus a latent heat over R
+        slope = np.log(other.sum(-1) / total) / (1.0 / near - 1.0 / T)         # minus a latent heat over R
         inverse = 1.0 / T - np.log(total) / np.minimum(slope, -500.0)
         T = np.clip(1.0 / np.maximum(inverse, 1e-6), np.maximum(T - 60.0, low), np.minimum(T + 60.0, high))
     return T, y

@@ -49,7 +49,8 @@ def activity_model():
 def distillation(stages):
     z = np.array([0.22, 0.24, 0.26, 0.16, 0.12])
     return Column(stages, [Feed(stages // 2, 100.0 * z, vapor_fraction=0.2)], 1.2e5 + 700.0 * np.arange(stages),
-                  condenser=TotalCondenser(), reboiler=Reboiler(), specifications=[RefluxRatio(2.5), DistillateRate(38.0)])
+                  condenser=TotalCondenser(), reboiler=Reboiler(),
+                  specifications=[RefluxRatio(2.5), DistillateRate(38.0)])
 
 
 def trays(n=5):

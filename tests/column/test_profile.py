@@ -110,8 +110,9 @@ def test_entropy_balance_closes(pattern: Averaged | Plug | None) -> None:
         expected = out - into - profile.duty[j] / profile.contact.T_L_bulk[k]
         turnover = abs(out) + abs(into)
         assert abs(production.total[k] - expected) < 1e-12 * turnover
-    for part in ("vapor_diffusion", "liquid_diffusion", "vapor_conduction", "liquid_conduction"):
-        assert (getattr(production, part) > -1e-12).all()
+    parts = ["vapor_diffusion", "liquid_diffusion", "vapor_conduction", "liquid_conduction"]
+    for part in parts + (["vapor_mixing", "liquid_mixing"] if pattern is None else []):
+        assert (getattr(production, part) > -1e-12).all(), part
     assert np.abs(production.inconsistency).max() < 1e-9 * production.total.max()
     assert production.closure.max() < 1e-12
     assert len(production.to_frame()) == 10
