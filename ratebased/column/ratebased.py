@@ -251,6 +251,11 @@ def newton(setup: RateSetup, state: RateState, *, tolerance: float = TOLERANCE, 
         except np.linalg.LinAlgError:
             reason = "a singular interface"
             break
+        except InputError as error:                       # an iterate that hardware or properties refuse
+            if iteration == 1:
+                raise
+            reason = f"a state that was refused ({error})"
+            break
         residual, worst = _measure(problem, system)
         if progress is not None:
             progress(iteration, residual)
