@@ -18,7 +18,7 @@ from ..properties.protocol import Array, Mask, PropertyModel
 from .banded import block_tridiagonal
 from .definition import Column
 from .ends import EquilibriumPart, bubble_vapor, condenser_rows, equilibrium_part, reboiler_rows
-from .failure import convergence_error
+from .failure import convergence_error, unstable_liquid
 from .problem import Problem, make_problem
 from .profile import Profile
 from .result import equilibrium_profile
@@ -401,7 +401,8 @@ def solve_state(problem: Problem, efficiency: EfficiencySet | None, progress: Pr
         if outcome.converged:
             return outcome.state, outcome, rows
         tried.append(f"continuation in the reflux ratio: {outcome.reason}")
-    raise convergence_error("equilibrium column", tried, first.worst, first.residual, margin, first.state)
+    raise convergence_error("equilibrium column", tried, first.worst, first.residual, margin, first.state,
+                            unstable_liquid(problem, start.T, start.l))
 
 
 def _efficiency_continuation(problem: Problem, efficiency: EfficiencySet, start: State, progress: Progress | None

@@ -1,10 +1,12 @@
 """From a solved state to a profile: products, duties, closures."""
 from __future__ import annotations
 
+import warnings
 from typing import TYPE_CHECKING
 
 import numpy as np
 
+from ..errors import PlausibilityWarning
 from ..properties.protocol import Array
 from ..properties.saturation import bubble_point, smallest_gamma_eigenvalue
 from .ends import bubble_vapor
@@ -57,10 +59,16 @@ def make_profile(problem: Problem, v: Array, T_V: Array, l: Array, T_L: Array, m
                + problem.duty[problem.contact].sum() + sum(duties.values()))
     heat_out = sum(p.enthalpy for p in products.values())
     flows_leaving = np.concatenate((V, L))
+    eigenvalues = smallest_gamma_eigenvalue(properties, T_L, problem.P, x)
+    least = int(np.argmin(eigenvalues))
+    if eigenvalues[least] <= 0:
+        warnings.warn(f"stage {least + 1}: [Gamma] has an eigenvalue of {eigenvalues[least]:.2g}, this liquid would "
+                      f"split "
+                      "in two", PlausibilityWarning, stacklevel=4)
     report = SolutionReport(
         iterations=iterations, residual=residual, component_closure=float(np.max(np.abs(out - feed) / feed)),
         energy_closure=float(abs(heat_in - heat_out) / problem.energy_scale), path=path,
-        smallest_gamma_eigenvalue=float(np.min(smallest_gamma_eigenvalue(properties, T_L, problem.P, x))),
+        smallest_gamma_eigenvalue=float(eigenvalues[least]),
         smallest_flow=float(flows_leaving.min()), largest_rate_factor=rate_factor)
     return Profile(tuple(properties.names), model, column.kinds, T_L, T_V, problem.P, net_L, net_V, x, y,
                    column.segment_height, problem.feeds, problem.liquid_draw, problem.vapor_draw,
