@@ -19,7 +19,7 @@ from numpy.typing import ArrayLike
 from ..arguments import component_vector
 from ..errors import InputError
 from .activity.parameters import pair_coefficients
-from .jet import Jet, temperature
+from .jet import Jet, common_state, temperature
 from .protocol import GAS_CONSTANT, Array, Mask
 
 
@@ -100,7 +100,7 @@ class CubicEquation:
         cross = root * ((root * z) @ self._attraction)
         a = (cross * z).sum(-1)
         b = z @ self._b
-        RT = temperature(np.broadcast_to(T, a.value.shape), order) * GAS_CONSTANT
+        RT = temperature(T, order) * GAS_CONSTANT
         A = a * P / (RT * RT)
         B = P * b / RT
         return A, B, cross, a, root, b
@@ -147,22 +147,23 @@ class CubicEquation:
         low, high, three = self._real_roots(A.value, B.value)
         real = low if phase is Phase.LIQUID else high
         c2, c1, c0 = self._coefficients(A, B)
-        constant = np.zeros_like(real)
-        Z = Jet([real, *[constant] * (len(A.terms) - 1)])
+        start = np.zeros_like(A.terms)
+        start[0] = real
+        Z = Jet(start)
         for _ in range(len(A.terms) - 1):  # each Newton step in jets makes one more derivative exact
             slope = (Z * 3.0 + c2 * 2.0) * Z + c1
             Z = Z - (((Z + c2) * Z + c1) * Z + c0) / slope
         missing = self._missing(real, A.value, B.value, three, phase)
         if missing.any():
             pair = (Z + c2) * -0.5
-            Z = Jet([np.where(missing, other, own) for own, other in zip(Z.terms, pair.terms)])
+            Z = Jet(np.where(missing, pair.terms, Z.terms))
         return Z, missing
 
     # results ----------------------------------------------------------------------------------------------------
 
     def ln_phi(self, T: Array, P: Array, z: Array, phase: Phase, order: int = 0) -> Jet:
         """ln phi_i with temperature derivatives at constant P and composition, (..., n)."""
-        T, P, z = np.asarray(T, float), np.asarray(P, float), np.asarray(z, float)
+        T, P, z = common_state(T, P, z)
         A, B, cross, a, _, b = self._mixture(T, P, z, order)
         Z, _ = self._root(A, B, phase)
         d1, d2 = self.form.d1, self.form.d2
@@ -173,7 +174,7 @@ class CubicEquation:
 
     def mole_number_derivatives(self, T: Array, P: Array, z: Array, phase: Phase) -> Array:
         """d ln phi_i / d n_j at constant T and P and one mole in all, (..., n, n)."""
-        T, P, z = np.asarray(T, float), np.asarray(P, float), np.asarray(z, float)
+        T, P, z = common_state(T, P, z)
         A_jet, B_jet, cross_jet, a_jet, root_jet, b = self._mixture(T, P, z, 0)
         A, B, cross, a, root = A_jet.value, B_jet.value, cross_jet.value, a_jet.value, root_jet.value
         Z_jet, missing = self._root(A_jet, B_jet, phase)
@@ -211,12 +212,12 @@ class CubicEquation:
 
     def compressibility(self, T: Array, P: Array, z: Array, phase: Phase) -> Array:
         """Z = P v/(R T) of a phase, without the volume shift, (...)."""
-        A, B, *_ = self._mixture(np.asarray(T, float), np.asarray(P, float), np.asarray(z, float), 0)
+        A, B, *_ = self._mixture(*common_state(T, P, z), 0)
         return self._root(A, B, phase)[0].value
 
     def exists(self, T: Array, P: Array, z: Array, phase: Phase) -> Mask:
         """Whether the phase has a root of its own at this state, (...)."""
-        A, B, *_ = self._mixture(np.asarray(T, float), np.asarray(P, float), np.asarray(z, float), 0)
+        A, B, *_ = self._mixture(*common_state(T, P, z), 0)
         return ~self._root(A, B, phase)[1]
 
 

@@ -8,7 +8,7 @@ from numpy.typing import ArrayLike
 
 from .activity.parameters import pair_coefficients
 from .components import PureComponents
-from .jet import Jet, temperature
+from .jet import Jet, common_state, temperature
 from .protocol import GAS_CONSTANT, Array
 
 
@@ -54,7 +54,7 @@ class VirialVapor:
         self._acentric = (omega[:, None] + omega) / 2.0
 
     def _second_virial(self, T: Array, order: int) -> Jet:
-        reduced = temperature(np.asarray(T, float)[..., None, None], order) * (1.0 / self._critical_temperature)
+        reduced = temperature(T[..., None, None], order) * (1.0 / self._critical_temperature)
         simple = reduced ** -1.6 * -0.422 + 0.083
         correction = reduced ** -4.2 * -0.172 + 0.139
         jet: Jet = (simple + correction * self._acentric) * self._size
@@ -62,7 +62,7 @@ class VirialVapor:
 
     def ln_phi(self, T: Array, P: Array, y: Array, order: int = 0) -> Jet:
         """P/(R T) (2 sum_j y_j B_ij - B), with temperature derivatives, (..., n)."""
-        T, P, y = np.asarray(T, float), np.asarray(P, float), np.asarray(y, float)
+        T, P, y = common_state(T, P, y)
         B = self._second_virial(T, order)
         sums = (B @ y[..., None])[..., 0]
         mixture = (sums * y).sum(-1)
@@ -71,7 +71,7 @@ class VirialVapor:
 
     def mole_number_derivatives(self, T: Array, P: Array, y: Array) -> Array:
         """2 P/(R T) (B_ij - sum_k y_k (B_ik + B_jk) + B), (..., n, n)."""
-        T, P, y = np.asarray(T, float), np.asarray(P, float), np.asarray(y, float)
+        T, P, y = common_state(T, P, y)
         B = self._second_virial(T, 0).value
         sums = (B @ y[..., None])[..., 0]
         mixture = (sums * y).sum(-1)[..., None, None]
@@ -81,7 +81,7 @@ class VirialVapor:
 
     def compressibility(self, T: Array, P: Array, y: Array) -> Array:
         """1 + B P/(R T), (...)."""
-        T, P, y = np.asarray(T, float), np.asarray(P, float), np.asarray(y, float)
+        T, P, y = common_state(T, P, y)
         B = self._second_virial(T, 0).value
         mixture = ((B @ y[..., None])[..., 0] * y).sum(-1)
         result: Array = 1.0 + mixture * P / (GAS_CONSTANT * T)

@@ -150,6 +150,26 @@ def test_bubble_and_dew_agree_and_supercritical_is_refused(model):
         small.bubble_point(7e6, [0.5, 0.5])
 
 
+def test_states_broadcast(model):
+    """One temperature at several pressures, several compositions at one state: the same numbers as one by one."""
+    z = np.random.default_rng(2).dirichlet(np.ones(5), 4)
+    P = np.array([4e5, 6e5, 8e5, 1e6])
+    virial = ThermoProperties.from_names(["propane", "n-butane"], "ideal", T_range=(250.0, 350.0), vapor="virial")
+    for one, x in ((model, z), (virial, z[:, :2] / z[:, :2].sum(1, keepdims=True))):
+        n = x.shape[-1]
+        for name, shape in (("k_value", (4, n)), ("vapor_enthalpy", (4, n)), ("liquid_heat_capacity", (4, n)),
+                            ("vapor_thermodynamic_factor", (4, n - 1, n - 1))):
+            call = getattr(one, name)
+            args = (x[0], x[0]) if name == "k_value" else (x[0],)
+            by_pressure = call(320.0, P, *args)
+            single = np.stack([call(320.0, p, *args) for p in P])
+            np.testing.assert_allclose(np.broadcast_to(by_pressure, shape), single, rtol=1e-12)
+            args = (x, x[::-1]) if name == "k_value" else (x,)
+            by_composition = call(320.0, 5e5, *args)
+            single = np.stack([call(320.0, 5e5, *(a[k] for a in args)) for k in range(4)])
+            np.testing.assert_allclose(by_composition, single, rtol=1e-12)
+
+
 def test_two_routes_to_one_mixture():
     """Near-ideal propane/n-butane at 0.6 MPa: the equation of state against vapour pressures with an ideal liquid,
     virial vapour and Poynting's correction. They share critical constants only; y within 0.005, T within 0.5 K."""

@@ -14,7 +14,7 @@ import numpy as np
 from numpy.typing import ArrayLike
 
 from ..henry import HenryLaw
-from ..jet import Jet
+from ..jet import Jet, common_batch
 from ..protocol import Array
 from .protocol import ActivityModel
 
@@ -41,7 +41,7 @@ class DissolvedGases:
 
     def ln_gamma(self, T: Array, x: Array, order: int = 0) -> Jet:
         """ln gamma of solvents, ln H (Pa) of gases, zero for the rest, with temperature derivatives, (..., n)."""
-        T, x = np.asarray(T, float), np.asarray(x, float)
+        T, x = common_batch(T, x)
         fractions, loading, _ = self._split(x)
         own = self.model.ln_gamma(T, fractions, order)
         constants = mixed = None
@@ -50,22 +50,18 @@ class DissolvedGases:
             mixed = (constants @ fractions[..., None])[..., 0]
             difference = constants - mixed[..., None]
             own = own + (loading[..., None, :] @ difference)[..., 0, :]
-        shape = (*np.broadcast_shapes(T.shape, x.shape[:-1]), self.size)
-        terms = []
-        for k in range(order + 1):
-            term = np.zeros(shape)
-            term[..., self._solvents] = own.terms[k]
-            if mixed is not None:
-                term[..., self._gases] = mixed.terms[k]
-            terms.append(term)
+        terms = np.zeros((order + 1, *x.shape))
+        terms[..., self._solvents] = own.terms
+        if mixed is not None:
+            terms[..., self._gases] = mixed.terms
         return Jet(terms)
 
     def mole_number_derivatives(self, T: Array, x: Array) -> Array:
         """d ln gamma_i / d n_j at one mole in all, (..., n, n); zero rows and columns for what is not in the liquid."""
-        T, x = np.asarray(T, float), np.asarray(x, float)
+        T, x = common_batch(T, x)
         fractions, loading, total = self._split(x)
         total = total[..., None]
-        J = np.zeros((*np.broadcast_shapes(T.shape, x.shape[:-1]), self.size, self.size))
+        J = np.zeros((*x.shape, self.size))
         own = self.model.mole_number_derivatives(T, fractions) / total
         if self.henry is not None:
             constants = self.henry.ln_constants(T, 0).value

@@ -4,7 +4,7 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import ArrayLike
 
-from ..jet import Jet
+from ..jet import Jet, common_batch
 from ..protocol import Array
 from .parameters import PairFunction, pair_coefficients
 
@@ -41,20 +41,20 @@ class Nrtl:
 
     def ln_gamma(self, T: Array, x: Array, order: int = 0) -> Jet:
         """ln gamma_i = q_i + sum_j x_j F_ij with temperature derivatives, (..., n)."""
-        x = np.asarray(x, float)
-        _, q, F = self._local(np.asarray(T, float), x, order)
+        T, x = common_batch(T, x)
+        _, q, F = self._local(T, x, order)
         return _ln_gamma(q, F, x)
 
     def mole_number_derivatives(self, T: Array, x: Array) -> Array:
         """d ln gamma_i / d n_j at one mole in all, (..., n, n)."""
-        x = np.asarray(x, float)
-        per_mole, _, F = self._local(np.asarray(T, float), x, 0)
+        T, x = common_batch(T, x)
+        per_mole, _, F = self._local(T, x, 0)
         return _mole_numbers(per_mole.value, F.value, x)
 
     def ln_gamma_and_derivatives(self, T: Array, x: Array, order: int) -> tuple[Jet, Array]:
         """What `ln_gamma` and `mole_number_derivatives` give."""
-        x = np.asarray(x, float)
-        per_mole, q, F = self._local(np.asarray(T, float), x, order)
+        T, x = common_batch(T, x)
+        per_mole, q, F = self._local(T, x, order)
         return _ln_gamma(q, F, x), _mole_numbers(per_mole.value, F.value, x)
 
     def describe(self) -> str:

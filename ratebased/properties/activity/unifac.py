@@ -6,7 +6,7 @@ from numpy.typing import ArrayLike
 
 from ...arguments import finite_array, positive_array
 from ...errors import InputError
-from ..jet import Jet, temperature
+from ..jet import Jet, common_batch, temperature
 from ..protocol import Array
 from .surface import combinatorial, combinatorial_mole_derivatives, residual_mole_derivatives, segment_activity
 
@@ -56,7 +56,7 @@ class Unifac:
         self._pure_fractions = self._areas / self.q[:, None]
 
     def _psi(self, T: Array, order: int) -> Jet:
-        jet = temperature(np.asarray(T, float)[..., None, None], order)
+        jet = temperature(T[..., None, None], order)
         exponent = jet.reciprocal() * self._minus_a
         if self._minus_b.any() or self._minus_c.any():
             exponent = exponent + self._minus_b + jet * self._minus_c
@@ -64,7 +64,8 @@ class Unifac:
 
     def ln_gamma(self, T: Array, x: Array, order: int = 0) -> Jet:
         """ln gamma with temperature derivatives, (..., n)."""
-        return self._ln_gamma(self._psi(T, order), np.asarray(x, float))
+        T, x = common_batch(T, x)
+        return self._ln_gamma(self._psi(T, order), x)
 
     def _ln_gamma(self, psi: Jet, x: Array) -> Jet:
         amount = x @ self._areas
@@ -83,11 +84,13 @@ class Unifac:
 
     def mole_number_derivatives(self, T: Array, x: Array) -> Array:
         """d ln gamma_i / d n_j at one mole in all, (..., n, n)."""
-        return self._mole_numbers(self._psi(T, 0).value, np.asarray(x, float))
+        T, x = common_batch(T, x)
+        return self._mole_numbers(self._psi(T, 0).value, x)
 
     def ln_gamma_and_derivatives(self, T: Array, x: Array, order: int) -> tuple[Jet, Array]:
         """What `ln_gamma` and `mole_number_derivatives` give."""
-        psi, x = self._psi(T, order), np.asarray(x, float)
+        T, x = common_batch(T, x)
+        psi = self._psi(T, order)
         return self._ln_gamma(psi, x), self._mole_numbers(psi.value, x)
 
     def _mole_numbers(self, psi: Array, x: Array) -> Array:

@@ -5,7 +5,7 @@ import numpy as np
 from numpy.typing import ArrayLike
 
 from ...arguments import component_vector
-from ..jet import Jet
+from ..jet import Jet, common_batch
 from ..protocol import Array
 from .parameters import PairFunction
 from .surface import combinatorial, combinatorial_mole_derivatives, residual_mole_derivatives, segment_activity
@@ -30,7 +30,7 @@ class Uniquac:
 
     def ln_gamma(self, T: Array, x: Array, order: int = 0) -> Jet:
         """ln gamma with temperature derivatives, (..., n)."""
-        x = np.asarray(x, float)
+        T, x = common_batch(T, x)
         tau = self._ln_tau(T, order).exp()
         area = x * self.q
         theta = (area / area.sum(-1, keepdims=True))[..., None, :]
@@ -38,7 +38,7 @@ class Uniquac:
 
     def mole_number_derivatives(self, T: Array, x: Array) -> Array:
         """d ln gamma_i / d n_j at one mole in all, (..., n, n)."""
-        x = np.asarray(x, float)
+        T, x = common_batch(T, x)
         tau = self._ln_tau(T, 0).exp().value
         return (residual_mole_derivatives(x, np.diag(self.q), tau)
                 + combinatorial_mole_derivatives(x, self.r, self.q, 1.0))

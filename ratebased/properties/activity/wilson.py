@@ -5,7 +5,7 @@ import numpy as np
 from numpy.typing import ArrayLike
 
 from ...arguments import component_vector
-from ..jet import Jet
+from ..jet import Jet, common_batch
 from ..protocol import GAS_CONSTANT, Array
 from .parameters import PairFunction, pair_coefficients
 
@@ -40,8 +40,8 @@ class Wilson:
 
     def ln_gamma(self, T: Array, x: Array, order: int = 0) -> Jet:
         """ln gamma_i = 1 - ln s_i - sum_k x_k Lambda_ki/s_k with temperature derivatives, (..., n)."""
-        x = np.asarray(x, float)
-        jet, s = self._lambda(np.asarray(T, float), x, order)
+        T, x = common_batch(T, x)
+        jet, s = self._lambda(T, x, order)
         return 1.0 - s.log() - ((x / s)[..., None, :] @ jet)[..., 0, :]
 
     def mole_number_derivatives(self, T: Array, x: Array) -> Array:
@@ -49,8 +49,8 @@ class Wilson:
 
         1 - Lambda_ij/s_i - Lambda_ji/s_j + sum_k x_k Lambda_ki Lambda_kj/s_k2.
         """
-        x = np.asarray(x, float)
-        jet, s = self._lambda(np.asarray(T, float), x, 0)
+        T, x = common_batch(T, x)
+        jet, s = self._lambda(T, x, 0)
         ratio = jet.value / s.value[..., None]
         mirrored = np.swapaxes(ratio, -1, -2)
         derivative: Array = 1.0 - ratio - mirrored + mirrored @ (x[..., None] * ratio)
