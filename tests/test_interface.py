@@ -1,13 +1,16 @@
 """`interface_flux`: constructed answers, closures, derivatives, masks, order of components, errors and warnings."""
 from __future__ import annotations
 
+import json
 import warnings
 from dataclasses import fields, replace
+from pathlib import Path
 
 import numpy as np
 import pytest
 from interface_cases import AT_LEAST_TERNARY, KINDS, construct, merged
 from interface_models import Margules, constant_volatility, margules, random_bulks
+from reference_interface import numbers, problem
 
 from ratebased.bootstrap import Bootstrap
 from ratebased.errors import (
@@ -18,7 +21,15 @@ from ratebased.errors import (
     PropertyRangeError,
     UnstableMixtureError,
 )
-from ratebased.film import FilmFlux, krishna_standart
+from ratebased.film import (
+    FilmFlux,
+    effective,
+    explicit_burghardt_krupiczka,
+    explicit_taylor_smith,
+    krishna_standart,
+    linearized,
+    numerical,
+)
 from ratebased.interface import (
     Bulk,
     InterfaceStatus,
@@ -78,12 +89,12 @@ def test_constructed_nonideal(kind):
     for n in range(2, 6):
         if n == 2 and kind in AT_LEAST_TERNARY:
             continue
-        case = construct(rng, kind, n, 25, interaction=2.5)
+        case = construct(rng, kind, n, 12, interaction=2.5)
         r = solve(case, throw=False)
         assert r.solved.all()
         far += int((off(r, case) > 1e-5).sum())
         total += len(case.P)
-    assert far <= 0.03 * total
+    assert far <= 2
 
 
 def test_fast_path_agrees_with_the_general_one(monkeypatch):
@@ -99,6 +110,24 @@ def test_fast_path_agrees_with_the_general_one(monkeypatch):
     np.testing.assert_allclose(fast.size, general.size, rtol=1e-8)
     np.testing.assert_allclose(fast.energy_flux, general.energy_flux, rtol=1e-8, atol=1e-6)
     assert (fast.status == general.status).all()
+
+
+def test_fast_path_on_the_reference_interfaces():
+    """Every reference case as a batch large enough for the fast path, to the tolerance of the file."""
+    cases = json.loads((Path(__file__).parent / "data" / "interface_reference.json").read_text())["cases"]
+    shot = 0
+    for case in cases:
+        vapor, liquid, model, pressure = problem(case)
+        count = shooting.WORTHWHILE
+        vapor = replace(vapor, temperature=np.full(count, vapor.temperature))
+        with warnings.catch_warnings():
+            warnings.simplefilter("ignore", HighFluxWarning)
+            r = interface_flux(vapor, liquid, model, pressure)
+        N = numbers(case["outputs"]["N"])
+        assert np.abs(r.N - N).max() <= 1e-10 * np.abs(N).max() + 20 * case["rounding_sensitivity"], case["id"]
+        assert np.abs(r.T_I - float(case["outputs"]["T_I"])).max() <= 1e-8, case["id"]
+        shot += bool(r.residual.max() > 0 and r.size.max() < shooting.LARGEST)
+    assert shot > 60
 
 
 def test_warm_start_agrees_and_is_short():
@@ -214,8 +243,8 @@ def test_continuation_reaches_the_same_solution(interaction):
     rng = np.random.default_rng(24)
     case = construct(rng, "condensation", 3, 12, interaction=interaction)
     r = solve(case)
-    problem = prepare(case.vapor, case.liquid, case.model, case.P, krishna_standart)
-    run, reached = branch.continuation(problem, 1e-10)
+    prepared = prepare(case.vapor, case.liquid, case.model, case.P, krishna_standart)
+    run, reached = branch.continuation(prepared, 1e-10)
     assert run.converged.all() and (reached == 1.0).all()
     np.testing.assert_allclose(run.z[:, :3], r.N, atol=1e-9 * np.abs(r.N).max())
     assert (r.status == InterfaceStatus.SOLVED).all()
@@ -253,10 +282,10 @@ def test_sign_at_zero_flux_is_the_one_derived(kind):
     """The fast path knows the sign at zero flux beforehand: the general path, which computes it, agrees."""
     rng = np.random.default_rng(26)
     case = construct(rng, kind, 4, 300, lean=True)
-    problem = prepare(case.vapor, case.liquid, case.model, case.P, krishna_standart)
-    shot = shooting.solve(problem, 1e-10)
+    prepared = prepare(case.vapor, case.liquid, case.model, case.P, krishna_standart)
+    shot = shooting.solve(prepared, 1e-10)
     z, y = shot.z[shot.solved], shot.y_I[shot.solved]
-    rest = problem.take(shot.solved)
+    rest = prepared.take(shot.solved)
     at_zero = branch.zero_flux_sign(rest)
     assert (at_zero == at_zero[0]).all() and at_zero[0] != 0
     general = branch.determinant_sign(evaluate(rest, z, y, False).dz) == at_zero
@@ -324,6 +353,39 @@ def test_another_film_method_through_differences():
     two = interface_flux(vapor, liquid, model, P, film=plain, derivatives=True)
     np.testing.assert_allclose(two.N, one.N, atol=1e-8 * np.abs(one.N).max())
     np.testing.assert_allclose(two.derivatives.dN, one.derivatives.dN, atol=1e-6 * np.abs(one.derivatives.dN).max())
+
+
+def test_films_integrated_numerically_give_the_same_interface(mixture):
+    """The film equations themselves, by collocation: an answer that owes nothing to matrix functions."""
+    model, vapor, liquid = mixture
+    exact = interface_flux(vapor, liquid, model, P)
+    r = interface_flux(vapor, liquid, model, P, film=numerical)
+    np.testing.assert_allclose(r.N, exact.N, atol=1e-8 * np.abs(exact.N).max())
+    np.testing.assert_allclose(r.T_I, exact.T_I, atol=1e-6)
+
+
+def test_linearized_films_have_rows_of_their_own():
+    """The same as through differences of its N; near the exact films where the fluxes are small."""
+    def plain(x0, xd, kappa, c_t, bootstrap: Bootstrap, *, gamma=None, throw=True) -> FilmFlux:
+        return linearized(x0, xd, kappa, c_t, bootstrap, gamma=gamma, throw=throw)
+
+    rng = np.random.default_rng(27)
+    model = margules(rng, 3, heat=100.0)
+    vapor, liquid = random_bulks(rng, (4,), model)
+    own, differences = (interface_flux(vapor, liquid, model, P, film=f) for f in (linearized, plain))
+    exact = interface_flux(vapor, liquid, model, P)
+    np.testing.assert_allclose(differences.N, own.N, atol=1e-8 * np.abs(own.N).max())
+    assert np.abs(own.N - exact.N).max() > 1e-5 * np.abs(exact.N).max()
+    np.testing.assert_allclose(own.N, exact.N, atol=0.05 * np.abs(exact.N).max())
+
+
+@pytest.mark.parametrize("film", [effective, explicit_burghardt_krupiczka, explicit_taylor_smith])
+def test_approximate_films_are_exact_for_binaries(film):
+    rng = np.random.default_rng(28)
+    model = constant_volatility(rng, 2)
+    vapor, liquid = random_bulks(rng, (4,), model)
+    exact, r = interface_flux(vapor, liquid, model, P), interface_flux(vapor, liquid, model, P, film=film)
+    np.testing.assert_allclose(r.N, exact.N, atol=1e-7 * np.abs(exact.N).max())
 
 
 # ------------------------------------------------------------------------------------------------------- limiting cases

@@ -1,11 +1,12 @@
 """The ways to a solution in their order, and the test of the branch it lies on."""
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
 
+from ..film.blocks import coth_blocks
 from ..maxwell_stefan import film_matrix, reduced
 from . import shooting
 from .blocks import at_rest, evaluate
@@ -57,27 +58,49 @@ def nothing_yet(problem: InterfaceProblem) -> Found:
 
 
 def physical(problem: InterfaceProblem, run: Iterate) -> NDArray[np.bool_]:
-    """Converged with no negative fraction at the interface and no profile that turns out of the simplex.
-
-    The second by the imaginary parts of the eigenvalues of [Phi] (pi at most), for films large enough to have them.
-    """
+    """Converged with no negative fraction, at the interface or inside a film."""
     n = problem.n
     good = run.converged & (run.z[:, n:2 * n].min(-1) >= PHYSICAL) & (run.y.min(-1) >= PHYSICAL)
+    return good & inside(problem, run.z, good)
+
+
+def inside(problem: InterfaceProblem, z: Array, candidates: NDArray[np.bool_]) -> NDArray[np.bool_]:
+    """False where a profile turns out of the simplex between its ends.
+
+    Told by an imaginary part beyond pi among the eigenvalues of [Phi]; only films of such a size can have it.
+    """
+    n = problem.n
+    good = candidates.copy()
     if n > 2 and problem.exact_films:
         for K in (problem.K_V, problem.K_L):
             index = np.flatnonzero(good)
-            A = film_matrix(run.z[index, :n], K[index])
-            index, A = (v[np.abs(A).sum(-2).max(-1) > np.pi] for v in (index, A))
+            A = film_matrix(z[index, :n], K[index])
+            large = np.abs(A).sum(-2).max(-1) > np.pi
+            index, A = index[large], A[large]
             good[index] = np.abs(np.linalg.eigvals(reduced(A)).imag).max(-1, initial=0.0) <= np.pi
-    return np.asarray(good)
+    return good
 
 
 def find(problem: InterfaceProblem, restart: Iterate | None, tolerance: float) -> Found:
-    """From the earlier answer where there is one; the fast path; from zero flux; from T_L; by continuation."""
+    """From the earlier answer where there is one; the fast path; from zero flux; from T_L; by continuation.
+
+    Other film methods start from the answer of the exact one, and keep to its branch.
+    """
+    if not problem.exact_films and restart is None:
+        exact = find(replace(problem, rows=coth_blocks), None, tolerance)
+        found = find(problem, Iterate(exact.z, exact.y, exact.status <= InterfaceStatus.OTHER_BRANCH, exact.iterations),
+                     tolerance)
+        other = (exact.status == InterfaceStatus.OTHER_BRANCH) & (found.status == InterfaceStatus.SOLVED)
+        found.status[other] = int(InterfaceStatus.OTHER_BRANCH)
+        return found
     found = nothing_yet(problem)
     warm = np.zeros(len(problem.y), bool) if restart is None else restart.converged
     if len(problem.y) >= shooting.WORTHWHILE and shooting.applicable(problem):
         shot = shooting.solve(problem, tolerance, restart.z if restart is not None and warm.all() else None)
+        large = shot.solved & (shot.size > np.pi)
+        if large.any():
+            index = np.flatnonzero(large)
+            shot.solved[index] = inside(problem.take(index), shot.z[index], np.ones(len(index), bool))
         found.status[shot.solved] = int(InterfaceStatus.SOLVED)
         found.z, found.y, found.iterations = shot.z, np.where(shot.solved[:, None], shot.y_I, found.y), shot.iterations
         found.shot, found.residual, found.size = shot.solved, shot.residual, shot.size

@@ -9,6 +9,7 @@ from __future__ import annotations
 
 import sys
 import warnings
+from dataclasses import replace
 from pathlib import Path
 
 import numpy as np
@@ -57,13 +58,22 @@ def constructed(rng, total, sizes, interaction):
 
 
 def random_pairs(rng, total):
+    """Compositions anywhere in the simplex, bulk temperatures anywhere from 290 to 430 K, with and without a gas."""
     everything = []
     for n in (2, 3, 4, 5):
         for model in (constant_volatility(rng, n), margules(rng, n, heat=100.0),
                       constant_volatility(rng, n, condensable=np.arange(n) > 0)):
-            vapor, liquid = random_bulks(rng, (-(-total // 12),), model)
+            shape = (-(-total // 12),)
+            vapor, liquid = random_bulks(rng, shape, model)
+            vapor, liquid = (replace(b, temperature=rng.uniform(290, 430, shape), composition=spread(rng, b.composition))
+                             for b in (vapor, liquid))
             everything.append(interface_flux(vapor, liquid, model, 1e5, throw=False).status)
     print(f"random pairs of bulks, {sum(map(len, everything))}: {counts(np.concatenate(everything))}")
+
+
+def spread(rng, x):
+    wide = rng.gamma(0.4, 1.0, x.shape) * (x > 0) + 1e-12 * (x > 0)
+    return wide / wide.sum(-1, keepdims=True)
 
 
 def main(ideal=20_000, nonideal=6_000, pairs=10_000):
