@@ -63,8 +63,7 @@ def make_profile(problem: Problem, v: Array, T_V: Array, l: Array, T_L: Array, m
     least = int(np.argmin(eigenvalues))
     if eigenvalues[least] <= 0:
         warnings.warn(f"stage {least + 1}: [Gamma] has an eigenvalue of {eigenvalues[least]:.2g}, this liquid would "
-                      f"split "
-                      "in two", PlausibilityWarning, stacklevel=4)
+                      "split in two", PlausibilityWarning, stacklevel=4)
     report = SolutionReport(
         iterations=iterations, residual=residual, component_closure=float(np.max(np.abs(out - feed) / feed)),
         energy_closure=float(abs(heat_in - heat_out) / problem.energy_scale), path=path,

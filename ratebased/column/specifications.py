@@ -147,8 +147,7 @@ def check_specifications(given: Sequence[Specification], condenser: bool, reboil
             raise InputError(f"specifications: {s.name} is surplus, the column has {ends}")
     if condenser and reboiler and {"DistillateRate", "BottomsRate"} <= set(names):
         raise InputError("specifications: DistillateRate and BottomsRate say the same thing through the overall "
-                         "balance;"
-                         " replace one of them")
+                         "balance; replace one of them")
     if len(given) < need:
         options = [t.__name__ for t in allowed[1:]] + [t.__name__ for t in (ProductPurity, ComponentRecovery)]
         options += ["CondenserDuty"] if condenser else []
