@@ -11,7 +11,7 @@ from .equilibrium import normalized
 from .newton import solve_linear
 from .paths import Found
 from .problem import InterfaceProblem
-from .records import FilmCoefficients, InterfaceDerivatives, InterfaceFlux, InterfaceStatus
+from .records import FilmState, InterfaceDerivatives, InterfaceFlux, InterfaceStatus
 
 Array = NDArray[np.float64]
 
@@ -29,7 +29,7 @@ def answer(problem: InterfaceProblem, found: Found, derivatives: bool, batch: tu
     y_I, residual, size = found.y.copy(), found.residual.copy(), found.size.copy()
     blocks = None
     index = np.arange(B) if derivatives else np.flatnonzero(~found.shot)
-    if len(index):
+    if derivatives or len(index):
         part = problem if len(index) == B else problem.take(index)
         blocks = evaluate(part, z[index], y_I[index], derivatives)
         y_I[index], residual[index] = blocks.y_I, np.abs(blocks.residual).max(-1) / blocks.terms
@@ -86,7 +86,7 @@ def _smallest_eigenvalue(problem: InterfaceProblem, x_I: Array, T_I: Array) -> A
 
 
 def _films(problem: InterfaceProblem, blocks: InterfaceBlocks | None, solved: NDArray[np.bool_],
-           batch: tuple[int, ...]) -> FilmCoefficients:
+           batch: tuple[int, ...]) -> FilmState:
     n = problem.n
 
     def gamma(value: Array | None) -> Array | None:
@@ -94,7 +94,7 @@ def _films(problem: InterfaceProblem, blocks: InterfaceBlocks | None, solved: ND
             return None
         return np.where(solved[:, None, None], value, np.eye(n - 1)).reshape(*batch, n - 1, n - 1)
 
-    return FilmCoefficients(problem.y.reshape(*batch, n), problem.x.reshape(*batch, n),
+    return FilmState(problem.y.reshape(*batch, n), problem.x.reshape(*batch, n),
                             problem.K_V.reshape(*batch, n, n), problem.K_L.reshape(*batch, n, n),
                             gamma(None if blocks is None else blocks.gamma_vapor),
                             gamma(None if blocks is None else blocks.gamma_liquid))

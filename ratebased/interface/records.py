@@ -71,7 +71,7 @@ class InterfaceDerivatives:
 
 
 @dataclass(frozen=True)
-class FilmCoefficients:
+class FilmState:
     """What the two films were computed with: bulk compositions (..., n), resistances K = 1/(c kappa), m2 s/mol, (...,
     n, n), [Gamma] (..., n-1, n-1) or None for the identity.
     """
@@ -114,7 +114,7 @@ class InterfaceFlux:
     size: Array
     u: Array
     names: tuple[str, ...]
-    films: FilmCoefficients
+    films: FilmState
     derivatives: InterfaceDerivatives | None = None
 
     @property
