@@ -11,7 +11,7 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import NDArray
 
-from .exact import mean_weight, other_branch, physical, stagnant_component
+from .exact import WIDE_RATIO, mean_weight, other_branch, physical, stagnant_component
 from .problem import Array, FilmProblem, FilmStatus, Mask, Solved
 
 LARGEST_NORM = 12.0
@@ -33,12 +33,6 @@ MAX_STEPS = 14
 
 SCARCE = 1e-3
 """A stagnant component below this mole fraction at a face is left to the robust path."""
-
-WIDE_RATIO = 50.0
-"""Ratio of pair coefficients above which a film is tested for other branches and for profiles outside the simplex.
-
-Below it, a million random films and 54,000 multi-started ones showed neither.
-"""
 
 
 def chunk_size(n: int) -> int:
