@@ -184,3 +184,17 @@ def random_bulks(rng, shape, properties):
                  np.full(shape, 35.0)),
             Bulk(x, rng.uniform(335, 355, shape), pairs(rng, shape, n, 1e-4), rng.uniform(500, 5000, shape),
                  np.full(shape, 1.2e4)))
+
+
+MIXTURES = ("constant volatility", "margules", "gas and salt", "real vapor by differences")
+
+
+def mixture_and_bulks(name):
+    """One of `MIXTURES` and six pairs of bulks of it."""
+    rng = np.random.default_rng(11)
+    model = {"constant volatility": constant_volatility(rng, 4),
+             "margules": margules(rng, 4, heat=150.0, cp_slope=4e-3),
+             "gas and salt": margules(rng, 4, condensable=[True, True, True, False],
+                                      volatile=[False, True, True, True]),
+             "real vapor by differences": margules(rng, 3, heat=100.0, virial=1e-3, model=Margules)}[name]
+    return model, *random_bulks(rng, (6,), model)
