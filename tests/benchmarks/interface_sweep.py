@@ -64,9 +64,9 @@ def random_pairs(rng, total):
         for model in (constant_volatility(rng, n), margules(rng, n, heat=100.0),
                       constant_volatility(rng, n, condensable=np.arange(n) > 0)):
             shape = (-(-total // 12),)
-            vapor, liquid = random_bulks(rng, shape, model)
-            vapor, liquid = (replace(b, temperature=rng.uniform(290, 430, shape), composition=spread(rng, b.composition))
-                             for b in (vapor, liquid))
+            vapor, liquid = (replace(b, temperature=rng.uniform(290, 430, shape),
+                                     composition=spread(rng, b.composition))
+                             for b in random_bulks(rng, shape, model))
             everything.append(interface_flux(vapor, liquid, model, 1e5, throw=False).status)
     print(f"random pairs of bulks, {sum(map(len, everything))}: {counts(np.concatenate(everything))}")
 
