@@ -31,6 +31,7 @@ from ..stage import (
     tray_from_leaving_liquid,
     vapor_temperature,
 )
+from ..stage.tray import STRETCHES
 from ..stage_profile import StageProfile
 from .definitions import (
     NEAR_EQUILIBRIUM,
@@ -299,11 +300,12 @@ class RowGroup:
         if change is not None:
             self.coefficients = change.coefficients(self.coefficients)
 
-    def trays(self, options: RatingOptions) -> tuple[TrayResult, Array]:
-        """Leaving vapour of each tray and the number of pools."""
+    def trays(self, options: RatingOptions, *, start: InterfaceFlux | None = None, tolerance: float = 1e-10,
+              stretches: int = STRETCHES) -> tuple[TrayResult, Array]:
+        """Leaving vapour of each tray and the number of pools; `start`, `tolerance` as in `FrothPoint`."""
         e, b, state = self.entering, self.bulk, self.state
         point = FrothPoint(e.V, e.y, e.T_V, b.x, b.T_L, self.P, self.coefficients, state.vapor.molar_density,
-                           state.liquid.molar_density)
+                           state.liquid.molar_density, start, tolerance)
         mixing, pools = options.mixing, np.ones(e.V.shape)
         peclet: Callable[[ContactState], Array] | None = getattr(self.contactor, "peclet", None)
         if mixing is None and peclet is not None:
@@ -313,7 +315,7 @@ class RowGroup:
             pools = np.broadcast_to(mixing.count, pools.shape)
         local = self.local if options.local_coefficients else None
         return tray_from_leaving_liquid(point, b.L, self.properties, mixing or WellMixed(), method=options.point,
-                                        local=local), pools
+                                        local=local, stretches=stretches), pools
 
     def local(self, V: Array, y: Array, T_V: Array) -> TransferCoefficients:
         """Coefficients at a local state of the vapour."""

@@ -6,7 +6,7 @@ b_j^2 var(z_j)/var from one linear regression on the scores.
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, fields, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -18,6 +18,7 @@ from correlations.liquid_diffusivity import wilke_chang
 
 from ..equipment import Contactor, ContactState, Hardware, TransferCoefficients, by_contactor
 from ..errors import InputError
+from ..interface import FilmState, InterfaceFlux
 from ..properties.protocol import Array, LiquidTransport, Mask, PropertyModel, VaporTransport
 from ..stage_profile import StageProfile
 from .definitions import equilibrium_vapor, murphree_vapor, small_driving_force
@@ -26,8 +27,11 @@ from .rating import RatingOptions, RowGroup, bulk_states, entering_streams, pack
 GOOD_REGRESSION = 0.8
 """Share of the variance a linear regression must explain before its shares are reported."""
 
-CHUNK = 16384
-"""Stages solved in one batch: bounds the memory."""
+SAMPLE_TOLERANCE = 1e-7
+"""Of the interfaces of the samples: far below any spread, two iterations fewer."""
+
+CHUNK = 4096
+"""Stages solved in one batch: bounds the memory, and fits the caches."""
 
 
 @dataclass(frozen=True)
@@ -221,6 +225,16 @@ def sample_rows(profile: StageProfile, hardware: Hardware, properties: PropertyM
         assumed |= set(guessed)
         factors = np.exp(np.log1p([spreads[name] for name in FACTORS]) * scores[:, :len(FACTORS)])
         active |= np.array([spreads[name] > 0 for name in FACTORS])
+        plain = RowGroup(profile, rows, entering, bulk, index, contactor, properties)
+        near, shift = None, np.zeros((R, n))
+        if not packed[index].any():
+            # Samples take the liquid's path in one stretch, a third of the work; what that does to the rated row itself
+            # is taken off every sample.
+            rough = plain.trays(options, stretches=1)[0]
+            shift[index] = plain.trays(options)[0].y - rough.y
+            near = rough.point.middle
+        place = np.zeros(R, np.int64)
+        place[index] = np.arange(index.size)
         for s, j in _chunks(S, index):
             model = ScaledVolatility(properties, K[s])
             group = RowGroup(profile, rows, entering, bulk, j, contactor, model, _Change(*factors[s].T))
@@ -233,7 +247,9 @@ def sample_rows(profile: StageProfile, hardware: Hardware, properties: PropertyM
                 y_out[s, j] = segment.y
                 HETP[s, j] = packed_rows(j, group, x, T, segment).HETP
             else:
-                y_out[s, j] = group.trays(options)[0].y
+                start = None if near is None else repeated(near, place[j])
+                y_out[s, j] = shift[j] + group.trays(options, start=start, tolerance=SAMPLE_TOLERANCE,
+                                                     stretches=1)[0].y
             star = equilibrium_vapor(model, P, x, T, entering.y[j],
                                      at_liquid_temperature=options.at_liquid_temperature).composition
             driving[s, j] = star - entering.y[j]
@@ -259,6 +275,16 @@ def _chunks(samples: int, index: NDArray[np.int64]) -> Iterator[tuple[NDArray[np
     for start in range(0, samples, step):
         s = np.arange(start, min(samples, start + step))
         yield np.repeat(s, index.size), np.tile(index, s.size)
+
+
+def repeated(interface: InterfaceFlux, index: NDArray[np.int64]) -> InterfaceFlux:
+    """Entries of a batch of interfaces with one axis, an entry as often as `index` names it."""
+    f = interface.films
+    gammas = (None if g is None else g[index] for g in (f.gamma_vapor, f.gamma_liquid))
+    films = FilmState(f.y[index], f.x[index], f.K_vapor[index], f.K_liquid[index], *gammas)
+    arrays = {field.name: getattr(interface, field.name)[index] for field in fields(interface)
+              if isinstance(getattr(interface, field.name), np.ndarray)}
+    return replace(interface, **arrays, films=films, derivatives=None)
 
 
 def _interval(values: Array) -> Interval:

@@ -28,7 +28,8 @@ class FrothPoint:
     """What a point of the froth is given, batched over stages.
 
     V_in mol/s, y_in (..., n), T_V_in K: the vapour that enters. x (..., n), T_L: the liquid. P: Pa. coefficients: pair
-    coefficients, heat-transfer coefficients and area; c_vapor, c_liquid: molar densities they go with, mol/m3.
+    coefficients, heat-transfer coefficients and area; c_vapor, c_liquid: molar densities they go with, mol/m3. start:
+    an interface of the same batch in a state close by, to start from. tolerance: of the interfaces.
     """
 
     V_in: Array
@@ -40,6 +41,8 @@ class FrothPoint:
     coefficients: TransferCoefficients
     c_vapor: Array
     c_liquid: Array
+    start: InterfaceFlux | None = None
+    tolerance: float = 1e-10
 
 
 LocalCoefficients = Callable[[Array, Array, Array], TransferCoefficients]
@@ -185,7 +188,8 @@ class _Froth:
             c_vapor = self.properties.vapor_transport(T_V, p.P, y).molar_density
             liquid = replace(liquid, kappa=coefficients.kappa_liquid, heat_transfer=coefficients.h_liquid)
         vapor = Bulk(y, T_V, coefficients.kappa_vapor, coefficients.h_vapor, c_vapor)
-        answer = interface_flux(vapor, liquid, self.properties, p.P, start=last, derivatives=derivatives)
+        answer = interface_flux(vapor, liquid, self.properties, p.P, start=p.start if last is None else last,
+                                derivatives=derivatives, tolerance=p.tolerance)
         self.worst[0] = np.maximum(self.worst[0], answer.residual)
         self.worst[1] = np.maximum(self.worst[1], answer.energy_residual)
         return answer, coefficients.area

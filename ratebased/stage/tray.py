@@ -40,11 +40,11 @@ class TrayResult:
 
 
 def tray_from_leaving_liquid(point: FrothPoint, liquid_flow: Array, properties: PropertyModel, mixing: LiquidMixing, *,
-                             method: PointMethod = exponential_midpoint,
-                             local: LocalCoefficients | None = None) -> TrayResult:
+                             method: PointMethod = exponential_midpoint, local: LocalCoefficients | None = None,
+                             stretches: int = STRETCHES) -> TrayResult:
     """What leaves a tray whose leaving liquid (point.x, point.T_L, `liquid_flow` mol/s before draws) is known.
 
-    One batch axis. The froth over the leaving liquid by `method`; then upstream in `STRETCHES` stretches, each by the
+    One batch axis. The froth over the leaving liquid by `method`; then upstream in at most `stretches` stretches, each by the
     linearised response of the froth at its outlet (`mixing.mixed_tray`), the liquid on its bubble line; the few trays
     this carries out of bounds are marched pool by pool (`march_upstream`). A well-mixed tray is its point.
     """
@@ -52,10 +52,10 @@ def tray_from_leaving_liquid(point: FrothPoint, liquid_flow: Array, properties: 
     transferred, energy = np.zeros_like(froth.transferred), np.zeros_like(froth.energy)
     lost = np.zeros(froth.energy.shape, bool)
     here, l, at = froth, liquid_flow[:, None] * point.x, point
-    shares = _shares(mixing, lost.shape)
+    shares = _shares(mixing, lost.shape, stretches)
     for k, share in enumerate(shares):
         if k:
-            at = _upstream(point, at, l, properties)
+            at = replace(_upstream(point, at, l, properties), start=here.middle)
             here = exponential_midpoint(at, properties, local=local)
         way = mixing.stretch(share) or mixing
         given, heat = _stretch(here, at, l.sum(-1), properties, way, share)
@@ -80,13 +80,13 @@ def tray_from_leaving_liquid(point: FrothPoint, liquid_flow: Array, properties: 
                       froth, unmixed)
 
 
-def _shares(mixing: LiquidMixing, batch: tuple[int, ...]) -> list[Array]:
+def _shares(mixing: LiquidMixing, batch: tuple[int, ...], stretches: int) -> list[Array]:
     """Shares of the path that are linearised one after the other, each at least a pool long; zero where a tray has
     fewer of them than the others."""
     whole = np.ones(batch)
     if mixing.stretch(whole) is None:
         return [whole]
-    parts = np.clip(np.floor(np.broadcast_to(mixing.pools, batch)), 1, STRETCHES)
+    parts = np.clip(np.floor(np.broadcast_to(mixing.pools, batch)), 1, stretches)
     return [np.where(k < parts, 1.0 / parts, 0.0) for k in range(int(parts.max(initial=1)))]
 
 
