@@ -34,6 +34,10 @@ class TomlTable:
             raise InputError(f"{path}: a folder, expected a TOML file") from error
         except (tomllib.TOMLDecodeError, UnicodeDecodeError) as error:
             raise InputError(f"{path}: not a TOML file: {error}") from error
+        except RecursionError as error:
+            raise InputError(f"{path}: not a TOML file: nested too deeply") from error
+        except (OSError, ValueError) as error:
+            raise InputError(f"{path}: cannot be read: {error}") from error
 
     def fail(self, key: str, why: str) -> InputError:
         """The error to raise for a key."""
@@ -83,7 +87,7 @@ class TomlTable:
                most: float | None = None) -> float:
         """A finite number, above `above` and at most `most`."""
         value = self.take(key, default)
-        if isinstance(value, bool) or not isinstance(value, int | float) or not math.isfinite(value):
+        if not _finite(value):
             raise self.fail(key, "expected a finite number")
         if above is not None and not value > above:
             raise self.fail(key, f"expected a number above {above:g}")
@@ -102,6 +106,58 @@ class TomlTable:
         if isinstance(value, bool) or not isinstance(value, int):
             raise self.fail(key, "expected a whole number")
         return value
+
+    def numbers(self, key: str, default: Any = _REQUIRED) -> list[float]:
+        """A list of finite numbers."""
+        value = self.take(key, default)
+        if not isinstance(value, list) or not all(_finite(item) for item in value):
+            raise self.fail(key, "expected a list of finite numbers")
+        return [float(item) for item in value]
+
+    def span(self, key: str) -> tuple[float, float]:
+        """[low, high], two positive numbers in rising order."""
+        value = self.take(key)
+        if not (isinstance(value, list) and len(value) == 2 and all(_finite(v) for v in value)
+                and 0 < value[0] < value[1]):
+            raise self.fail(key, "expected [low, high], two positive numbers in rising order")
+        return float(value[0]), float(value[1])
+
+    def by_component(self, key: str, names: Sequence[str], default: Any = _REQUIRED) -> NDArray[np.float64]:
+        """One number for each component, (n,): a number for all, or a table with every name."""
+        value = self.take(key, default)
+        if _finite(value):
+            return np.full(len(names), float(value))
+        if not isinstance(value, dict):
+            raise self.fail(key, "expected one number, or one for each component as {water = 0.9, ethanol = 0.1}")
+        table = TomlTable(value, f"{self.where}: {key}")
+        numbers = np.array([table.number(name) for name in names])
+        table.finish()
+        return numbers
+
+    def by_pair(self, key: str, names: Sequence[str], default: Any = _REQUIRED) -> NDArray[np.float64]:
+        """Positive numbers for pairs, (n, n): a number for all, or a table with every pair as "water / ethanol".
+
+        The diagonal is one: it means nothing.
+        """
+        value = self.take(key, default)
+        n = len(names)
+        matrix = np.ones((n, n))
+        if _finite(value):
+            matrix[:] = self.number(key, default, above=0.0)
+            np.fill_diagonal(matrix, 1.0)
+            return matrix
+        if not isinstance(value, dict):
+            raise self.fail(key, 'expected one number, or one for each pair as {"water / ethanol" = 1.2e-5}')
+        table = TomlTable(value, f"{self.where}: {key}")
+        for i in range(n):
+            for j in range(i):
+                words = (f"{names[j]} / {names[i]}", f"{names[i]} / {names[j]}")
+                given = [word for word in words if table.has(word)]
+                if len(given) > 1:
+                    raise table.fail(words[1], f"the pair is given twice, also as {words[0]!r}")
+                matrix[i, j] = matrix[j, i] = table.number(given[0] if given else words[0], above=0.0)
+        table.finish()
+        return matrix
 
     def texts(self, key: str, default: Any = _REQUIRED) -> list[str]:
         """A list of strings."""
@@ -125,7 +181,7 @@ class TomlTable:
         if not isinstance(value, dict):
             raise self.fail(key, "expected mole fractions by name, as {water = 0.9, ethanol = 0.1}")
         table = TomlTable(value, f"{self.where}: {key}")
-        fractions = np.array([table.number(name, 0.0) for name in names])
+        fractions = np.array([table.number(name, 0.0, most=1.0) for name in names])
         table.finish()
         if (fractions < 0).any() or abs(fractions.sum() - 1.0) > 1e-6:
             raise self.fail(key, f"mole fractions must not be negative and must sum to one (sum {fractions.sum():.8g})")
@@ -152,3 +208,13 @@ class TomlTable:
                 near = difflib.get_close_matches(key, self.asked, 1)
                 hint = f"; did you mean {near[0]!r}?" if near else f"; known keys: {', '.join(sorted(self.asked))}"
                 raise InputError(f"{self.where}: unknown key {key!r}{hint}")
+
+
+def _finite(value: object) -> bool:
+    """True for a number that is finite as a float."""
+    if isinstance(value, bool) or not isinstance(value, int | float):
+        return False
+    try:
+        return math.isfinite(float(value))
+    except OverflowError:
+        return False

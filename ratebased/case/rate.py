@@ -13,23 +13,24 @@
 """
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from ..efficiency import RatingOptions, Uncertainty
+from ..efficiency import EfficiencyTable, RatingOptions, Uncertainty, efficiency_table
 from ..equipment import Section
 from ..errors import InputError
-from ..stage import PlugFlow, WellMixed, exponential_midpoint, integral
+from ..stage import PlugFlow, PointResult, WellMixed, exponential_midpoint, integral
 from ..stage_profile import ProfileDraw, ProfileFeed, StageProfile
 from ..toml_table import TomlTable
 from .hardware import hardware_from
-from .mixture import properties_from
+from .mixture import component_names, properties_from
 
 if TYPE_CHECKING:
     from ..properties.protocol import PropertyModel
 
-POINT_METHODS = {"midpoint": exponential_midpoint, "integral": integral}
+POINT_METHODS: dict[str, Callable[..., PointResult]] = {"midpoint": exponential_midpoint, "integral": integral}
 MIXING = {"pools": None, "mixed": WellMixed(), "plug": PlugFlow()}
 
 
@@ -45,13 +46,22 @@ class RateCase:
     uncertainty: Uncertainty | None
     files: tuple[Path, ...]
 
+    def rate(self) -> EfficiencyTable:
+        """The efficiency table; errors as for `efficiency_table`."""
+        return efficiency_table(self.profile, self.hardware, self.properties, options=self.options,
+                                uncertainty=self.uncertainty)
+
 
 def read_rate_case(path: Path) -> RateCase:
     """The case in a TOML file; paths inside it are relative to its folder. Raises `InputError`."""
-    top = TomlTable.load(path)
+    return rate_case(TomlTable.load(path), path)
+
+
+def rate_case(top: TomlTable, path: Path) -> RateCase:
+    """The case in an open table, as read from (or meant for) `path`; finishes it."""
     title = top.text("title", path.stem)
     mixture = top.table("mixture")
-    names = mixture.texts("components")
+    names = component_names(mixture)
     profile_table = top.table("profile")
     file = path.parent / profile_table.text("file")
     tolerances = {key: profile_table.number(key, default, above=0.0)
@@ -59,11 +69,14 @@ def read_rate_case(path: Path) -> RateCase:
     profile_table.finish()
     profile = StageProfile.read_csv(file, names, feeds=[_feed(t, names) for t in top.tables("feed")],
                                     draws=[_draw(t) for t in top.tables("draw")], **tolerances)
-    sections = hardware_from(top.tables("hardware"), profile)
+    sections = hardware_from(top.tables("hardware"), (int(profile.number[0]), int(profile.number[-1])), names,
+                             str(path))
     options = _options(top.table("rate", required=False))
     uncertainty = _uncertainty(top.table("uncertainty")) if top.has("uncertainty") else None
     top.finish()
-    properties = properties_from(mixture, profile)
+    properties = properties_from(mixture, [
+        *map(float, (profile.T_L.min(), profile.T_L.max(), profile.T_V.min(), profile.T_V.max())),
+        *(feed.temperature for feed in profile.feeds)])
     return RateCase(title, properties, profile, sections, options, uncertainty, (path, file))
 
 

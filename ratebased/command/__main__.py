@@ -1,0 +1,6 @@
+"""`python -m ratebased.command`."""
+import sys
+
+from . import main
+
+sys.exit(main())

@@ -1,0 +1,70 @@
+"""A report as one HTML page that needs nothing else, and as Markdown."""
+from __future__ import annotations
+
+from pathlib import Path
+
+from ..errors import InputError
+from ..files import write_whole
+from .blocks import Bullets, Mark, Paragraph, Picture, Report, Table
+
+SIGNS = {Mark.PLAIN: "", Mark.NEGATIVE: "\u25bc ", Mark.ABOVE: "\u25b2 ", Mark.BLANK: "", Mark.LIMIT: "! "}
+"""Written before a figure that stands out, so that no colour is needed to see it."""
+
+
+def to_html(report: Report) -> str:
+    """One self-contained page: style and figures inside, no script, nothing from a network.
+
+    Raises `InputError` where jinja2 is not installed.
+    """
+    try:
+        import jinja2
+    except ImportError as error:
+        raise InputError("report: HTML needs the package jinja2, pip install 'ratebased[report]'") from error
+    folder = Path(__file__).parent
+    environment = jinja2.Environment(loader=jinja2.FileSystemLoader(folder), autoescape=True, trim_blocks=True,
+                                     lstrip_blocks=True, undefined=jinja2.StrictUndefined, keep_trailing_newline=True)
+    environment.filters["kind"] = lambda block: type(block).__name__.lower()
+    return environment.get_template("page.html").render(
+        report=report, signs={mark.value: sign for mark, sign in SIGNS.items()})
+
+
+def to_markdown(report: Report) -> str:
+    """The same report as Markdown; a figure leaves its words behind."""
+    lines = [f"# {report.title}", "", report.lead, "", f"**{report.caution}**", ""]
+    for section in report.sections:
+        lines += [f"## {section.title}", ""]
+        for block in section.blocks:
+            if isinstance(block, Paragraph):
+                lines += [f"**{block.text}**" if block.strong else block.text, ""]
+            elif isinstance(block, Bullets):
+                lines += [*(f"- {item}" for item in block.items), ""]
+            elif isinstance(block, Table):
+                lines += [*markdown_table(block), ""]
+            elif isinstance(block, Picture):
+                lines += [f"(Figure in the HTML report: {block.shows})", ""]
+    return "\n".join(lines)
+
+
+def markdown_table(table: Table) -> list[str]:
+    """The lines of a table, columns padded so that it can be read as it stands."""
+    texts = [[_escaped(title) for title in table.head]]
+    texts += [[_escaped(SIGNS[cell.mark] + cell.text) for cell in row] for row in table.rows]
+    right = [all(row[k].figure for row in table.rows) for k in range(len(table.head))]
+    width = [max(3, *(len(row[k]) for row in texts)) for k in range(len(table.head))]
+    lines = ["| " + " | ".join(cell.rjust(w) if r else cell.ljust(w) for cell, w, r in zip(row, width, right)) + " |"
+             for row in texts]
+    lines.insert(1, "|" + "|".join("-" * (w + 1) + (":" if r else "-") for w, r in zip(width, right)) + "|")
+    return [*lines, "", f"*{table.caption}*"] if table.caption else lines
+
+
+def _escaped(text: str) -> str:
+    return text.replace("|", "\\|").replace("\n", " ")
+
+
+def write_report(report: Report, folder: Path) -> tuple[Path, Path]:
+    """report.html and report.md in `folder`, each written whole; returns both paths. Raises `InputError`."""
+    html, markdown = folder / "report.html", folder / "report.md"
+    text = to_html(report)
+    write_whole(html, text)
+    write_whole(markdown, to_markdown(report))
+    return html, markdown
