@@ -15,8 +15,8 @@ from .style import (
     SMALL,
     WIDTH,
     breaks,
+    finish,
     folded,
-    legend_above,
     new_figure,
     stage_axis,
     stage_height,
@@ -66,11 +66,11 @@ def efficiency_figure(table: EfficiencyTable) -> Figure:
         low, high = _interval(None if u is None else u.murphree, r.murphree, int(i))
         series.append(_Series(r.names[i], r.murphree[:, i], sound, ~sound, low, high, spread))
     masked = [r.names[i] for i in np.flatnonzero(~r.ordinary)]
-    notes = [f"y* at the {r.star_basis} of the leaving liquid."]
+    note = f"E = (y_out − y_in)/(y* − y_in), y* at the {r.star_basis} of the leaving liquid."
     if masked:
-        notes.append(f"{', '.join(masked)}: in one phase only, no efficiency.")
+        note += f" {', '.join(masked)}: in one phase only, no efficiency."
     return _panels(r.number, series, (LOWEST, HIGHEST), "Murphree vapour efficiency E (–)", (0.0, 1.0), u is not None,
-                   "driving force too small for E", notes)
+                   "driving force too small for E", [note])
 
 
 @styled
@@ -115,32 +115,35 @@ def _interval(interval: Interval | None, value: Array, i: int) -> tuple[Array, A
 
 def _panels(number: NDArray[np.int64], series: list[_Series], window: tuple[float, float], label: str,
             lines: tuple[float, ...], intervals: bool, void: str, notes: list[str]) -> Figure:
+    from matplotlib.ticker import MaxNLocator
+
     if not series:
         raise InputError("table: no component is in both phases")
     columns = len(series) if len(series) <= 4 else -(-len(series) // 2) if len(series) <= 8 else 4
     rows = -(-len(series) // columns)
-    figure = new_figure(min(9.0, rows * (stage_height(number.size, rest=0.75)) + 0.55))
+    figure = new_figure()
     axes = figure.subplots(rows, columns, squeeze=False, sharex=True, sharey=True)
     low, high = _limits(series, window, lines)
     band = 0.10 * (high - low)
-    beyond = False
+    titles = [folded(s.name, (WIDTH - 0.8) / columns) for s in series]
+    tall = 0.08 + 0.15 * max(title.count("\n") + 1 for title in titles)
     for k, ax in enumerate(axes.flat):
         if k >= len(series):
             ax.set_visible(False)
             continue
-        beyond |= _panel(ax, number, series[k], low, high, band)
+        _panel(ax, number, series[k], low, high, band)
+        ax.xaxis.set_major_locator(MaxNLocator(nbins=6 if columns < 4 else 4, steps=[1, 2, 5, 10]))
         for line in lines:
             ax.axvline(line, color=GREY, linewidth=0.8, zorder=0.6)
-        ax.set_title(folded(series[k].name, (WIDTH - 0.5) / columns), loc="left")
-        ax.label_outer()
-        if k + columns >= len(series):
-            ax.tick_params(labelbottom=True)
+        ax.set_title(titles[k], loc="left")
+        ax.tick_params(labelbottom=k + columns >= len(series), left=k % columns == 0)
         if k % columns:
             ax.set_ylabel("")
-            ax.tick_params(left=False)
-    figure.supxlabel(label, fontsize=8.5)
+    height = min(stage_height(number.size), 6.5 / rows)
+    bottom, _ = finish(figure, rows * height + (rows - 1) * (tall + 0.1), hspace=(tall + 0.1) / height, top=tall,
+                       handles=_signs(series, intervals, void, low, high), notes=notes)
+    figure.text(0.5, (bottom - 0.24) / figure.get_figheight(), label, fontsize=8.5, ha="center", va="top")
     figure.set_label(f"{label} by stage")
-    _explain(figure, series, intervals, void, beyond, notes, label)
     return figure
 
 
@@ -160,13 +163,10 @@ def _limits(series: list[_Series], window: tuple[float, float], lines: tuple[flo
     return float(low - pad), float(high + pad)
 
 
-def _panel(ax: Axes, number: NDArray[np.int64], s: _Series, low: float, high: float, band: float) -> bool:
-    """Draw one component; true if something lies beyond the axis."""
-    from matplotlib.ticker import MaxNLocator
-
+def _panel(ax: Axes, number: NDArray[np.int64], s: _Series, low: float, high: float, band: float) -> None:
+    """Draw one component."""
     stage_axis(ax, number)
     ax.set_xlim(low - band, high)
-    ax.xaxis.set_major_locator(MaxNLocator(nbins=4, steps=[1, 2, 2.5, 5, 10]))
     ax.axvspan(low - band, low, color=PALE, linewidth=0, zorder=0.4)
     inside = s.sound & (s.value >= low) & (s.value <= high)
     for run in breaks(number, inside):
@@ -188,12 +188,9 @@ def _panel(ax: Axes, number: NDArray[np.int64], s: _Series, low: float, high: fl
         right = s.value[j] > high
         ax.annotate(f"{s.value[j]:.3g} →" if right else f"← {s.value[j]:.3g}", (high if right else low, number[j]),
                     fontsize=SMALL, ha="right" if right else "left", va="center", zorder=3.0)
-    cut_bars = s.spread & ((s.low < low) | (s.high > high))
-    return bool(cut_bars.any())
 
 
-def _explain(figure: Figure, series: list[_Series], intervals: bool, void: str, beyond: bool, notes: list[str],
-             label: str) -> None:
+def _signs(series: list[_Series], intervals: bool, void: str, low: float, high: float) -> list[Any]:
     from matplotlib.lines import Line2D
 
     def sign(marker: str, face: str, words: str, line: Any = "none") -> Any:
@@ -207,9 +204,6 @@ def _explain(figure: Figure, series: list[_Series], intervals: bool, void: str, 
         handles.append(sign("o", "white", "value, interval undefined" if intervals else "value"))
     if any(s.void.any() for s in series):
         handles.append(sign("x", "black", void))
-    if beyond:
+    if any((s.spread & ((s.low < low) | (s.high > high))).any() for s in series):
         handles.append(sign(">", "black", "interval goes on"))
-    if handles:
-        legend_above(figure, handles, 3)
-    if notes:
-        figure.supxlabel(label + "\n" + " ".join(notes), fontsize=SMALL)
+    return handles

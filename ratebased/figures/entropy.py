@@ -7,7 +7,7 @@ import numpy as np
 
 from ..column import EntropyProduction
 from ..errors import InputError
-from .style import legend_above, new_figure, notes_below, stage_axis, stage_height, styled
+from .style import finish, new_figure, stage_axis, stage_height, styled
 
 if TYPE_CHECKING:
     from matplotlib.figure import Figure
@@ -40,7 +40,7 @@ def entropy_figure(production: EntropyProduction) -> Figure:
         raise InputError("production: no stages")
     size = sum(np.abs(getattr(production, name)) for name, *_ in CAUSES)
     scale = np.where(size > 0, size, 1.0)
-    figure = new_figure(stage_height(number.size, rest=1.45))
+    figure = new_figure()
     left, right = figure.subplots(1, 2, sharey=True)
     handles, small = [], []
     for ax, per, label in ((left, np.ones(number.size), "Entropy production (W/K)"),
@@ -62,13 +62,15 @@ def entropy_figure(production: EntropyProduction) -> Figure:
                     ends[sign] = ends[sign] + part
             if ax is left:
                 handles.append(Patch(facecolor=color, edgecolor="black", linewidth=0.5, hatch=hatch, label=words))
+        span = max(ends[1].max() - ends[-1].min(), 1e-300)
+        ax.set_xlim(ends[-1].min() - 0.03 * span * bool(ends[-1].any()), ends[1].max() + 0.03 * span)
         ax.axvline(0.0, color="black", linewidth=0.7)
     right.set_ylabel("")
     notes = [f"Whole column: {total.sum():.4g} W/K on {number.size} contact stage{'s' * (number.size > 1)}."]
+    if any((getattr(production, name) < -NEGLIGIBLE * scale).any() for name, *_ in CAUSES):
+        notes.append("Shares: of the sum of the sizes of the parts.")
     if small:
         notes.append(f"Below {100 * NEGLIGIBLE:.1g} % of every stage, not drawn: {'; '.join(small)}.")
-    if handles:
-        legend_above(figure, handles, 3)
-    notes_below(figure, [" ".join(notes)])
+    finish(figure, stage_height(number.size), handles=handles, notes=[" ".join(notes)])
     figure.set_label("Entropy production of each contact stage by cause")
     return figure

@@ -7,7 +7,7 @@ import numpy as np
 
 from ..errors import InputError
 from ..explanation import FilmExplanation, FluxExplanation
-from .style import GREY, new_figure, notes_below, styled
+from .style import GREY, SMALL, finish, new_figure, renderer_of, styled
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -28,14 +28,20 @@ def flux_split_figure(explanation: FluxExplanation, name: str) -> Figure:
         raise InputError(f"name = {name!r}: expected one of {', '.join(explanation.names)}")
     i = explanation.names.index(name)
     parts = _parts(explanation.vapor, explanation.names, i), _parts(explanation.liquid, explanation.names, i)
-    figure = new_figure(2.0 + 2 * 0.2 * (len(parts[0]) + 1), 5.2)
+    figure = new_figure(5.2)
     axes = figure.subplots(2, 1)
     share = explanation.vapor_share
     for ax, film, values, s in zip(axes, (explanation.vapor, explanation.liquid), parts, (share, 1.0 - share)):
-        _waterfall(ax, values, float(explanation.N[i]))
-        ax.set_title(f"{film.phase.capitalize()} film: {100 * s:.0f} % of the diffusive entropy production, "
-                     f"{film.regime[i]} diffusion of {name}", loc="left", fontweight="normal")
-    notes_below(figure, ["Positive towards the liquid. Each bar starts where the one above ends; they add up to N."])
+        unit = _waterfall(ax, values, float(explanation.N[i]))
+        ax.set_xlabel(f"Flux of {name} ({unit})")
+        ax.set_title(f"{film.phase.capitalize()} film: {film.regime[i]} diffusion, {100 * s:.0f} % of the dissipation",
+                     loc="left")
+    renderer = renderer_of(figure)
+    left = max(text.get_window_extent(renderer).width for ax in axes for text in ax.get_yticklabels()) / figure.dpi
+    height = 0.19 * (len(parts[0]) + 1)
+    finish(figure, 2 * height + 0.75, left=left + 0.2, right=0.6, top=0.3, hspace=0.75 / height, notes=[
+        "Positive towards the liquid. Each bar starts where the one above ends; they add up to N. Dissipation: entropy "
+        "production by diffusion in both films."])
     figure.set_label(f"Parts of the flux of {name} in both films")
     return figure
 
@@ -47,7 +53,8 @@ def _parts(film: FilmExplanation, names: tuple[str, ...], i: int) -> list[tuple[
             ("bulk flow", float(s.bulk_flow[i])), ("high-flux correction", float(s.high_flux[i]))]
 
 
-def _waterfall(ax: Axes, parts: list[tuple[str, float]], flux: float) -> None:
+def _waterfall(ax: Axes, parts: list[tuple[str, float]], flux: float) -> str:
+    """Draw the parts and the flux; returns the unit."""
     values = np.array([value for _, value in parts])
     ends = np.cumsum(values)
     starts = ends - values
@@ -64,8 +71,13 @@ def _waterfall(ax: Axes, parts: list[tuple[str, float]], flux: float) -> None:
     ax.set_ylim(len(parts) + 0.6, -0.6)
     ax.set_yticks([*rows, len(parts)], [*(word for word, _ in parts), "flux N"])
     ax.tick_params(axis="y", length=0)
-    ax.set_xlabel(f"Flux ({words})")
-    ax.margins(x=0.04)
+    low, high = min(0.0, ends.min(), flux) / unit, max(0.0, ends.max(), flux) / unit
+    pad = 0.04 * (high - low) or 1.0
+    ax.set_xlim(low - pad, high + pad)
+    decimals = max(0, 2 - int(np.floor(np.log10(max(largest / unit, 1e-3)))))
     for row, value in zip([*rows, len(parts)], [*values, flux]):
-        ax.text(1.02, row, f"{value / unit:+.3g}", transform=ax.get_yaxis_transform(), fontsize=7.5, ha="left",
+        told = f"{value / unit:+.{decimals}f}"
+        told = told.replace("-", "−") if float(told) else "0"
+        ax.text(1.02, row, told, transform=ax.get_yaxis_transform(), fontsize=SMALL, ha="left",
                 va="center")
+    return words

@@ -3,12 +3,12 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from typing import TYPE_CHECKING, Any, cast
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 from numpy.typing import NDArray
 
-from .style import SMALL
+from .style import SMALL, renderer_of
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -17,9 +17,15 @@ Array = NDArray[np.float64]
 
 STEP = 2.0
 """Spacing of the points that stand for a curve, pixels of the layout."""
-FAR = 14.0
+SIGN = 6.5
+"""Room for the sign on a curve, pixels."""
+APART = 4.0
+"""Room between two names, pixels."""
+NEARER = 1.3
+"""How many times further than its own curve any other must be from a name."""
+FAR = 16.0
 """Clearance from other curves beyond which more is no better, pixels."""
-GAPS = (6.0, 10.0, 16.0)
+GAPS = (7.5, 10.0, 14.0)
 """Distances tried between a curve and its name, pixels."""
 
 
@@ -35,9 +41,9 @@ class Curve:
 def label_curves(ax: Axes, curves: Sequence[Curve], size: float = SMALL) -> list[str]:
     """Write each name beside its curve, in a place that covers nothing; returns the names no place was found for.
 
-    The layout of the figure must be frozen. Curves of one name share one label.
+    The figure must be finished. Curves of one name share one label.
     """
-    renderer = cast("Any", ax.figure.canvas).get_renderer()
+    renderer = renderer_of(ax.figure)
     dense = [_dense(ax.transData.transform(curve.points)) for curve in curves]
     frame = ax.get_window_extent(renderer)
     taken = [_box(text, renderer) for text in ax.texts if text.get_text()]
@@ -54,19 +60,18 @@ def label_curves(ax: Axes, curves: Sequence[Curve], size: float = SMALL) -> list
         extent = text.get_window_extent(renderer)
         half = np.array([extent.width, extent.height]) / 2.0
         middle = _candidates(mine, half)
-        inside = ((middle - half >= [frame.x0, frame.y0]) & (middle + half <= [frame.x1, frame.y1])).all(-1)
+        inside = ((middle - half >= [frame.x0 + 2.0, frame.y0 + 2.0]) & (middle + half <= [frame.x1, frame.y1])).all(-1)
         for low, high in taken:
-            inside &= ~((middle + half + 1.0 > low) & (middle - half - 1.0 < high)).all(-1)
-        inside &= _clearance(middle, half, mine) > 1.5
+            inside &= ~((middle + half + APART > low) & (middle - half - APART < high)).all(-1)
+        near, clearance = _clearance(middle, half, mine), _clearance(middle, half, rest)
+        inside &= (near > SIGN) & (clearance > SIGN) & (clearance > NEARER * near)
         if inside.any():
-            middle = middle[inside]
-            clearance = np.minimum(_clearance(middle, half, rest), FAR)
-            near = np.minimum(_clearance(middle, half, mine), FAR)
-            best = int(np.argmax(np.round(clearance - 0.35 * near, 6)))
-            if clearance[best] > 1.5:
-                text.set_position(tuple(ax.transData.inverted().transform(middle[best])))
-                taken.append((middle[best] - half, middle[best] + half))
-                continue
+            score = np.where(inside, np.minimum(clearance, FAR) - near, -np.inf)
+            best = middle[int(np.argmax(np.round(score, 6)))]
+            x, y = ax.transData.inverted().transform(best)
+            text.set_position((float(x), float(y)))
+            taken.append((best - half, best + half))
+            continue
         text.remove()
         left_out.append(name)
     return left_out

@@ -9,7 +9,7 @@ from ..efficiency import EfficiencyTable
 from ..errors import InputError
 from .efficiencies import _table
 from .labels import Curve, label_curves
-from .style import GREY, SMALL, breaks, freeze_layout, mark, new_figure, notes_below, stage_axis, stage_height, styled
+from .style import GREY, SMALL, breaks, finish, mark, new_figure, stage_axis, stage_height, styled
 
 if TYPE_CHECKING:
     from matplotlib.figure import Figure
@@ -35,7 +35,7 @@ def operating_figure(table: EfficiencyTable) -> Figure:
             found[name] = (words, np.broadcast_to(np.asarray(value, float), r.number.shape))
     if not found:
         raise InputError("table: its hardware has no method for flooding, weeping or downcomers")
-    figure = new_figure(stage_height(r.number.size), 4.4)
+    figure = new_figure(4.4)
     ax = figure.subplots()
     stage_axis(ax, r.number)
     ax.set_xlabel("Operating point over its limit (–)")
@@ -52,8 +52,7 @@ def operating_figure(table: EfficiencyTable) -> Figure:
             curves.append(Curve(words, np.stack((value[run], r.number[run]), -1), m.color))
     ax.text(1.0, 1.0, "limit", transform=ax.get_xaxis_transform(), fontsize=SMALL, ha="center", va="bottom",
             color=GREY)
-    notes_below(figure, [MEANING[name] for name in found])
+    finish(figure, stage_height(r.number.size), top=0.22, notes=[MEANING[name] for name in found])
     figure.set_label("Operating point of each stage against flooding, weeping and downcomer limits")
-    freeze_layout(figure)
     label_curves(ax, curves)
     return figure

@@ -9,7 +9,7 @@ from numpy.typing import NDArray
 from ..column import Profile
 from ..errors import InputError
 from .labels import Curve, label_curves
-from .style import GREY, SMALL, freeze_layout, legend_above, mark, new_figure, stage_axis, stage_height, styled
+from .style import GREY, SMALL, finish, mark, new_figure, stage_axis, stage_height, styled
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -18,6 +18,8 @@ if TYPE_CHECKING:
 Array = NDArray[np.float64]
 
 EQUILIBRIUM_DASH: Any = (0, (4, 2))
+ABSENT = 1e-9
+"""Mole fraction below which a component is not in a phase: one that never boils, or never condenses."""
 SEPARATE = 0.02
 """K. Vapour and liquid of a stage this close share one curve."""
 
@@ -41,7 +43,7 @@ def profile_figure(equilibrium: Profile, ratebased: Profile) -> Figure:
         raise InputError(f"equilibrium: {equilibrium.stages} stages, but ratebased has {ratebased.stages}, or their "
                          "kinds differ")
     number = np.arange(1, ratebased.stages + 1)
-    figure = new_figure(stage_height(number.size, 0.13, 1.6), 6.2)
+    figure = new_figure(6.2)
     axes = figure.subplots(1, 3, sharey=True)
     curves = [_temperatures(axes[0], number, equilibrium, ratebased)]
     for ax, phase in zip(axes[1:], ("liquid", "vapour")):
@@ -49,19 +51,14 @@ def profile_figure(equilibrium: Profile, ratebased: Profile) -> Figure:
     for ax in axes[1:]:
         ax.set_ylabel("")
     _feeds(axes, number, ratebased)
-    names = [curve.name for curve in curves[1]]
     handles = [_sign("black", "o", "-", "black", "rate-based"),
                _sign("black", "o", EQUILIBRIUM_DASH, "white", "equilibrium stages")]
-    legend_above(figure, handles, 4)
+    handles += [_sign(mark(i).color, mark(i).marker, "none", mark(i).color, name)
+                for i, name in enumerate(ratebased.names)]
+    finish(figure, stage_height(number.size, 0.15), right=0.4, handles=handles)
     figure.set_label("Temperatures and compositions by stage, equilibrium-stage and rate-based")
-    freeze_layout(figure)
-    left_out = {name for ax, drawn in zip(axes, curves) for name in label_curves(ax, drawn)} & set(names)
-    if left_out:
-        for legend in list(figure.legends):
-            legend.remove()
-        handles += [_sign(mark(i).color, mark(i).marker, "-", mark(i).color, name)
-                    for i, name in enumerate(ratebased.names) if name in left_out]
-        legend_above(figure, handles, 4)
+    for ax, drawn in zip(axes, curves):
+        label_curves(ax, drawn)
     return figure
 
 
@@ -73,7 +70,7 @@ def _sign(color: str, marker: str, dash: Any, face: str, words: str) -> Any:
 
 def _draw(ax: Axes, value: Array, number: NDArray[np.int64], color: str, marker: str, rate: bool, phase: int) -> None:
     """One curve; signs of neighbours sit on different stages, those of the two models half a step apart."""
-    every = max(1, number.size // 7)
+    every = min(max(2, number.size // 7), number.size)
     first = (phase + (0 if rate else every // 2)) % every
     ax.plot(value, number, color=color, marker=marker, markersize=4.2 if rate else 4.8, markevery=(first, every),
             linestyle="-" if rate else EQUILIBRIUM_DASH, linewidth=1.3 if rate else 1.1,
@@ -101,12 +98,13 @@ def _compositions(ax: Axes, number: NDArray[np.int64], phase: str, equilibrium: 
                   ratebased: Profile) -> list[Curve]:
     stage_axis(ax, number)
     ax.set_xlim(-0.03, 1.03)
+    ax.set_xticks([0.0, 0.5, 1.0], ["0", "0.5", "1"])
     ax.set_xlabel(f"Mole fraction, {phase} (–)")
     curves = []
     for i, name in enumerate(ratebased.names):
         for profile, rate in ((ratebased, True), (equilibrium, False)):
             z = profile.x[:, i] if phase == "liquid" else np.where(profile.V > 0, profile.y[:, i], np.nan)
-            if not np.nanmax(z, initial=0.0) > 0:
+            if not np.nanmax(z, initial=0.0) > ABSENT:
                 continue
             m = mark(i)
             _draw(ax, z, number, m.color, m.marker, rate, i)

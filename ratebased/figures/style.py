@@ -87,25 +87,60 @@ def styled(make: Callable[Arguments, Figure]) -> Callable[Arguments, Figure]:
     return inside
 
 
-def new_figure(height: float, width: float = WIDTH) -> Figure:
-    """An empty figure, inch, known to no window system."""
+def new_figure(width: float = WIDTH) -> Figure:
+    """An empty figure, known to no window system; `finish` gives it its height."""
     from matplotlib.backends.backend_agg import FigureCanvasAgg
     from matplotlib.figure import Figure
 
-    figure = Figure(figsize=(width, height), layout="constrained")
+    figure = Figure(figsize=(width, 3.0))
     FigureCanvasAgg(figure)
     return figure
 
 
-def freeze_layout(figure: Figure) -> None:
-    """Lay the axes out and keep them there, so that labels can be placed between the curves."""
-    figure.draw_without_rendering()
-    figure.set_layout_engine("none")
+def renderer_of(figure: Any) -> Any:
+    """What measures texts."""
+    return figure.canvas.get_renderer()
 
 
-def stage_height(stages: int, per_stage: float = 0.17, rest: float = 1.1) -> float:
-    """Height of a figure with the stages on the vertical axis, inch."""
-    return float(np.clip(rest + per_stage * stages, 2.3, 7.5))
+def finish(figure: Figure, body: float, *, left: float = 0.62, right: float = 0.12, top: float = 0.08,
+           bottom: float = 0.44, wspace: float = 0.12, hspace: float = 0.2, handles: Sequence[Any] = (),
+           notes: Sequence[str] = ()) -> tuple[float, float]:
+    """Room in inches for axes (`body` high), labels around them, a block of signs above and notes below.
+
+    Returns the place of the axes from bottom to top, inch. wspace, hspace: in mean widths and heights of the axes.
+    """
+    width = figure.get_figwidth()
+    lines = [line for note in notes for line in textwrap.wrap(note, int((width - 0.2) * 72.0 / (0.535 * SMALL)))]
+    above = top + _signs(figure, handles, width)
+    below = bottom + 0.14 * len(lines) + 0.06 * bool(lines)
+    height = body + above + below
+    figure.set_size_inches(width, height)
+    figure.subplots_adjust(left=left / width, right=1.0 - right / width, bottom=below / height,
+                           top=1.0 - above / height, wspace=wspace, hspace=hspace)
+    for legend in figure.legends:
+        legend.set_bbox_to_anchor((0.5, 1.0 - 0.04 / height))
+    if lines:
+        figure.text(0.1 / width, 0.06 / height, "\n".join(lines), fontsize=SMALL, ha="left", va="bottom",
+                    linespacing=1.2)
+    return below, below + body
+
+
+def _signs(figure: Figure, handles: Sequence[Any], width: float) -> float:
+    """What the signs mean, in as few rows as the width allows; returns their height, inch."""
+    if not handles:
+        return 0.0
+    for columns in range(len(handles), 0, -1):
+        legend = figure.legend(handles=list(handles), loc="upper center", ncols=columns)
+        extent = legend.get_window_extent(renderer_of(figure))
+        if extent.width / figure.dpi < width - 0.3 or columns == 1:
+            break
+        legend.remove()
+    return float(extent.height / figure.dpi) + 0.08
+
+
+def stage_height(stages: int, per_stage: float = 0.17) -> float:
+    """Height of axes with the stages on the vertical axis, inch."""
+    return float(np.clip(per_stage * (stages + 0.4), 1.9, 6.5))
 
 
 def stage_axis(ax: Axes, number: NDArray[np.int64], label: str = "Stage, number from the top") -> None:
@@ -116,19 +151,6 @@ def stage_axis(ax: Axes, number: NDArray[np.int64], label: str = "Stage, number 
     ax.yaxis.set_major_locator(MaxNLocator(nbins=12, integer=True, steps=[1, 2, 5, 10], min_n_ticks=1))
     ax.grid(axis="y")
     ax.set_ylabel(label)
-
-
-def legend_above(figure: Figure, handles: Sequence[Any], columns: int) -> None:
-    """What the signs mean, in one block above the axes."""
-    figure.legend(handles=list(handles), loc="outside upper center", ncols=columns)
-
-
-def notes_below(figure: Figure, notes: Sequence[str]) -> None:
-    """Remarks in small print below the axes."""
-    if notes:
-        width = int(figure.get_figwidth() * 72.0 / (0.52 * SMALL))
-        lines = [line for note in notes for line in textwrap.wrap(note, width)]
-        figure.supxlabel("\n".join(lines), x=0.01, ha="left", fontsize=SMALL, color="black", linespacing=1.25)
 
 
 def folded(name: str, width: float) -> str:

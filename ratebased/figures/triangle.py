@@ -13,8 +13,8 @@ from ..efficiency import EfficiencyTable, equilibrium_vapor
 from ..errors import InputError
 from .efficiencies import _table
 from .labels import Curve, label_curves
-from .style import GREY, SMALL, freeze_layout, legend_above, mark, new_figure, notes_below, styled
-from .triangle_axes import Triangle
+from .style import GREY, SMALL, finish, mark, new_figure, styled
+from .triangle_axes import HEIGHT, Triangle
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -22,6 +22,8 @@ if TYPE_CHECKING:
 
 Array = NDArray[np.float64]
 
+WIDE, SIDE, SMALL_SIDE = 5.4, 3.9, 1.55
+"""Width of the figure, sides of the large triangle and of the films' triangles, inch."""
 ETA = np.linspace(0.0, 1.0, 41)
 FAINT = 1e-12
 """Sum of the three fractions shown below which a point has no place in the triangle."""
@@ -58,26 +60,48 @@ def triangle_figure(source: EfficiencyTable | Profile, *, stage: int | None = No
     path = _table_path(source, stage) if isinstance(source, EfficiencyTable) else _profile_path(source, stage)
     pick = _choose(path, components)
     names = [path.names[i] for i in pick]
-    figure = new_figure(4.9 if stage is None else 7.3, 5.4)
-    grid = figure.add_gridspec(1 if stage is None else 2, 2, height_ratios=None if stage is None else [1.75, 1.0])
-    ax = figure.add_subplot(grid[0, :])
+    figure = new_figure(WIDE)
+    ax = figure.add_axes((0.0, 0.0, 1.0, 1.0))
     whole = Triangle.whole()
-    obstacles = whole.draw(ax, names, SMALL + 0.5, corners=True)
+    obstacles = whole.draw(ax, names, SMALL + 0.5, 1.0 / SIDE, corners=True)
     handles, labels = _stages(ax, whole, path, pick, obstacles)
     zooms: list[tuple[Axes, list[Curve]]] = []
     if stage is not None and path.vapor_film is not None and path.liquid_film is not None:
         handles += _films_in_whole(ax, whole, path, pick, stage)
-        for column, (phase, film) in enumerate((("Vapour", path.vapor_film), ("Liquid", path.liquid_film))):
-            zoom = figure.add_subplot(grid[1, column])
+        for phase, film in (("Vapour", path.vapor_film), ("Liquid", path.liquid_film)):
+            zoom = figure.add_axes((0.0, 0.0, 1.0, 1.0))
             zooms.append((zoom, _film(zoom, phase, _part(film, pick), names, stage, path.straight)))
-    legend_above(figure, handles, 3)
-    notes_below(figure, _notes(path, pick))
+    large, small = SIDE * HEIGHT + 0.75, (SMALL_SIDE * HEIGHT + 0.95) if zooms else 0.0
+    bottom, top = finish(figure, large + small, bottom=0.0, handles=handles, notes=_notes(path, pick))
+    _settle(figure, ax, (0.0, top - large, WIDE, top - 0.02), SIDE, 0.5)
+    for k, (zoom, _) in enumerate(zooms):
+        _settle(figure, zoom, (0.5 * WIDE * k, bottom, 0.5 * WIDE * (k + 1), bottom + small), SMALL_SIDE, 0.45)
     figure.set_label("Composition triangle: stage path and tie lines" + (f", films of stage {stage}" if stage else ""))
-    freeze_layout(figure)
-    label_curves(ax, labels)
+    label_curves(ax, _apart(ax, labels))
     for zoom, curves in zooms:
         label_curves(zoom, curves)
     return figure
+
+
+def _settle(figure: Figure, ax: Axes, box: tuple[float, float, float, float], side: float, below: float) -> None:
+    """Put axes into a box of the figure, inch, with a triangle of the side given, `below` above the lower edge."""
+    x0, y0, x1, y1 = box
+    width, height = figure.get_size_inches()
+    ax.set_position((x0 / width, y0 / height, (x1 - x0) / width, (y1 - y0) / height))
+    beside = 0.5 * ((x1 - x0) / side - 1.0)
+    ax.set_xlim(-beside, 1.0 + beside)
+    ax.set_ylim(-below / side, (y1 - y0 - below) / side)
+
+
+def _apart(ax: Axes, curves: list[Curve]) -> list[Curve]:
+    """The curves without the names of points that nearly coincide with a named one."""
+    kept: list[Curve] = []
+    for curve in curves:
+        here = ax.transData.transform(curve.points)
+        if not (curve.name and any(k.name and np.hypot(*(ax.transData.transform(k.points) - here)[0]) < 14.0
+                                   for k in kept)):
+            kept.append(curve)
+    return kept
 
 
 def _table_path(table: EfficiencyTable, stage: int | None) -> _Path:
@@ -163,8 +187,8 @@ def _films_in_whole(ax: Axes, whole: Triangle, path: _Path, pick: NDArray[np.int
     vapor, liquid = (whole.place(_part(film, pick)) for film in (path.vapor_film, path.liquid_film))
     jump = np.stack((vapor[-1], liquid[0]))
     kwargs: dict[str, Any] = {"color": mark(2).color, "zorder": 2.8}
+    ax.plot(*liquid.T, linewidth=2.4, **kwargs)
     return [*ax.plot(*vapor.T, linewidth=2.4, label=f"films of stage {stage}", **kwargs),
-            *ax.plot(*liquid.T, linewidth=2.4, **kwargs)[:0],
             *ax.plot(*jump.T, linewidth=1.2, linestyle=(0, (1, 1)), label=f"interface of stage {stage}", **kwargs)]
 
 
@@ -176,7 +200,7 @@ def _film(ax: Axes, phase: str, film: Array, names: Sequence[str], stage: int, s
                 va="center", transform=ax.transAxes)
         return []
     part = Triangle.around(film)
-    obstacles = part.draw(ax, names, SMALL, corners=False)
+    obstacles = part.draw(ax, names, SMALL, 1.0 / SMALL_SIDE, corners=False)
     line = part.place(film)
     bulk, face = (line[0], line[-1]) if phase == "Vapour" else (line[-1], line[0])
     ax.plot(*line.T, color=mark(2).color, linewidth=1.8, zorder=2.2)
@@ -186,14 +210,15 @@ def _film(ax: Axes, phase: str, film: Array, names: Sequence[str], stage: int, s
     sign = "s" if phase == "Vapour" else "o"
     ax.plot(*bulk, marker=sign, color=mark(2).color, markersize=5.5, zorder=2.5)
     ax.plot(*face, marker="D", color=mark(2).color, markerfacecolor="white", markersize=5.0, zorder=2.5)
-    ax.set_title(f"{phase} film of stage {stage}, magnified {_times(part.side)}", fontsize=SMALL, fontweight="bold")
+    ax.text(0.5, HEIGHT + 0.14 / SMALL_SIDE, f"{phase} film of stage {stage} (× {_times(part.side)})",
+            fontsize=SMALL, fontweight="bold", ha="center", va="bottom")
     return [*(Curve("", a) for a in (line, chord, *obstacles)), Curve("bulk", bulk[None]), Curve("interface",
                                                                                                 face[None])]
 
 
 def _times(side: float) -> str:
     ratio = 1.0 / side
-    return f"{ratio:.2g} times" if ratio < 100 else f"{float(f'{ratio:.2g}'):.0f} times"
+    return f"{ratio:.2g}" if ratio < 100 else f"{float(f'{ratio:.2g}'):.0f}"
 
 
 def _notes(path: _Path, pick: NDArray[np.intp]) -> list[str]:
@@ -205,6 +230,6 @@ def _notes(path: _Path, pick: NDArray[np.intp]) -> list[str]:
                  f"{', '.join(path.names[i] for i in rest)} (together up to {most:.2g} of a phase). Numbers at the "
                  "path: stages from the top."]
     if path.vapor_film is not None:
-        notes.append("Films: straight lines between their known faces." if path.straight else
-                     "Films: composition across the film; dotted, the straight line between its faces.")
+        notes.append("Films: filled, the bulk; hollow, the interface; "
+                     + ("a straight line joins them." if path.straight else "dotted, the straight line between them."))
     return [" ".join(notes)]

@@ -9,8 +9,6 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
-from .style import SMALL
-
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
 
@@ -48,42 +46,42 @@ class Triangle:
         part = (np.asarray(z) - self.low) / self.side
         return np.stack((part[..., 2] + 0.5 * part[..., 0], HEIGHT * part[..., 0]), -1)
 
-    def draw(self, ax: Axes, names: Sequence[str], size: float, *, corners: bool) -> list[Array]:
-        """Frame, grid, ticks and titles of the sides; returns what a label must not cover, as lines (2, 2)."""
+    def draw(self, ax: Axes, names: Sequence[str], size: float, inch: float, *, corners: bool) -> list[Array]:
+        """Frame, grid, ticks and titles of the sides; returns what a label must not cover, as lines (2, 2).
+
+        size: of the letters, points. inch: one inch in sides of the triangle.
+        """
         ax.set_axis_off()
-        ax.set_aspect("equal")
         frame = np.array([[0.5, HEIGHT], [0.0, 0.0], [1.0, 0.0], [0.5, HEIGHT]])
         step, decimals = _step(self.side)
         # lines of constant fraction k end on the side where `zero` vanishes; there they carry their numbers
         for k, zero, other in ((0, 2, 1), (1, 0, 2), (2, 1, 0)):
-            start = ceil(self.low[k] / step - 1e-9)
-            for tick in range(start, floor((self.low[k] + self.side) / step + 1e-9) + 1):
-                value = tick * step
-                part = (value - self.low[k]) / self.side
+            way = _way(k, zero)
+            for tick in range(ceil(self.low[k] / step), floor((self.low[k] + self.side) / step) + 1):
+                part = (tick * step - self.low[k]) / self.side
+                if not 0.02 < part < 0.98:
+                    continue
                 ends = np.zeros((2, 3))
                 ends[:, k] = part
                 ends[0, other], ends[1, zero] = 1.0 - part, 1.0 - part
-                at, far = (Triangle.whole().place(e) for e in ends)
-                if 1e-6 < part < 1.0 - 1e-6:
-                    ax.plot(*np.stack((at, far), -1), color="#d0d0d0", linewidth=0.5, zorder=0.5)
-                way = _way(k, zero)
-                out = at + 0.02 * way
-                ax.plot(*np.stack((at, out), -1), color="black", linewidth=0.6, zorder=0.6)
-                ax.text(at[0] + 0.03 * way[0], at[1] + 0.03 * way[1], f"{value:.{decimals}f}", fontsize=size - 0.5,
-                        ha=_side(way[0]), va="center" if abs(way[1]) < 0.1 else ("top" if way[1] < 0 else "bottom"))
+                at, opposite = Triangle.whole().place(ends)
+                ax.plot(*np.stack((at, opposite), -1), color="#d0d0d0", linewidth=0.5, zorder=0.5)
+                ax.plot(*np.stack((at, at + 0.05 * inch * way), -1), color="black", linewidth=0.6, zorder=0.6)
+                x, y = at + 0.08 * inch * way
+                ax.text(x, y, f"{tick * step:.{decimals}f}", fontsize=size - 0.5, ha=_side(way[0]),
+                        va="center" if abs(way[1]) < 0.1 else ("center_baseline" if way[1] > 0 else "top"))
         ax.plot(*frame.T, color="black", linewidth=0.9, zorder=0.8)
-        beyond = 0.125 + 0.016 * decimals * size / SMALL
-        for (x, y), turn, text in (((0.25 - beyond * HEIGHT, 0.5 * HEIGHT + beyond / 2), 60.0, f"{names[0]} (–) →"),
-                                   ((0.5, -beyond), 0.0, f"← {names[1]} (–)"),
-                                   ((0.75 + beyond * HEIGHT, 0.5 * HEIGHT + beyond / 2), -60.0, f"{names[2]} (–) →")):
+        wide = (0.25 + (1.5 + decimals) * 0.6 * size / 72.0) * inch
+        deep = 0.36 * inch
+        for x, y, turn, text in ((0.25 - wide * HEIGHT, 0.5 * (HEIGHT + wide), 60.0, f"{names[0]} (–) →"),
+                                 (0.5, -deep, 0.0, f"← {names[1]} (–)"),
+                                 (0.75 + wide * HEIGHT, 0.5 * (HEIGHT + wide), -60.0, f"{names[2]} (–) →")):
             ax.text(x, y, text, fontsize=size, rotation=turn, ha="center", va="center", rotation_mode="anchor")
         if corners:
-            for (x, y), name, ha, va in (((0.5, HEIGHT + 0.045), names[0], "center", "bottom"),
-                                         ((-0.05, -0.03), names[1], "right", "top"),
-                                         ((1.05, -0.03), names[2], "left", "top")):
+            for x, y, name, ha, va in ((0.5, HEIGHT + 0.06 * inch, names[0], "center", "bottom"),
+                                       (0.0, -0.1 * inch, names[1], "center", "top"),
+                                       (1.0, -0.1 * inch, names[2], "center", "top")):
                 ax.text(x, y, name, fontsize=size + 0.5, fontweight="bold", ha=ha, va=va)
-        ax.set_xlim(-0.2, 1.2)
-        ax.set_ylim(-0.24, HEIGHT + 0.12)
         return [frame[m:m + 2] for m in range(3)]
 
 
