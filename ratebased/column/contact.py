@@ -2,7 +2,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, fields
+from dataclasses import dataclass, fields, replace
 from typing import Protocol
 
 import numpy as np
@@ -93,8 +93,7 @@ class Layout:
     count: int
 
     def states(self, properties: PropertyModel, V: Array, L: Array, T_V: Array, T_L: Array, P: Array, y: Array,
-               x: Array,
-               height: Array | None) -> list[tuple[Contactor, NDArray[np.intp], ContactState]]:
+               x: Array, height: Array | None) -> list[tuple[Contactor, NDArray[np.intp], ContactState]]:
         """One state a contactor."""
         return [(c, i, contact_state(properties, V[i], L[i], T_V[i], T_L[i], P[i], y[i], x[i],
                                      None if height is None else height[i])) for c, i in self.contactors]
@@ -133,9 +132,7 @@ def transfer(states: list[tuple[Contactor, NDArray[np.intp], ContactState]], cou
     if len(parts) == 1:
         _, k, state = parts[0]
         if area_factor != 1.0:
-            k = TransferCoefficients(k.kappa_vapor, k.kappa_liquid, k.h_vapor, k.h_liquid, k.area * area_factor,
-                                     k.basis,
-                                     k.notes)
+            k = replace(k, area=k.area * area_factor)
         return Transfer(k, state.vapor.molar_density, state.liquid.molar_density)
     notes: dict[str, NDArray[np.bool_]] = {}
     arrays: dict[str, Array] = {}

@@ -156,8 +156,7 @@ def _balance_rows(r: Array, D: Array, lower: Array, upper: Array, n: int, fe: fl
 
 
 def _equilibrium_rows(problem: Problem, rows: StageRows, part: EquilibriumPart, r: Array, D: Array, upper: Array,
-                      v: Array,
-                      l: Array, v_in: Array, d_rising: Array) -> None:
+                      v: Array, l: Array, v_in: Array, d_rising: Array) -> None:
     n, fe = problem.n, 1.0 / problem.F
     e = slice(n, 2 * n)
     b = rows.factor
@@ -413,9 +412,8 @@ def _efficiency_continuation(problem: Problem, efficiency: EfficiencySet, start:
     share, step = 0.0, 0.25
     while step > 0.01:
         target = min(1.0, share + step)
-        trial = newton(problem, stage_rows(problem, efficiency.toward_equilibrium(target)), positive(problem,
-                                                                                                     outcome.state),
-                       limit=40, progress=progress)
+        trial = newton(problem, stage_rows(problem, efficiency.toward_equilibrium(target)),
+                       positive(problem, outcome.state), limit=40, progress=progress)
         if not trial.converged:
             step *= 0.5
             continue

@@ -48,7 +48,6 @@ from .steps import TINY, after_draw, limited
 PRESSURE_TOLERANCE = 1e-7
 """Relative change of the pressures at which the hydraulics and the column agree."""
 MAX_PRESSURE_ROUNDS = 30
-INTERFACE_TEMPERATURE_STEP = 10.0
 MAX_SHARE_ROUNDS = 4
 SHARE_TOLERANCE = 1e-3
 LARGEST_SEGMENT = 2.0
@@ -285,9 +284,8 @@ def newton(setup: RateSetup, state: RateState, *, tolerance: float = TOLERANCE, 
         f = min(1.0, LARGEST_TEMPERATURE_STEP / largest) if largest > 0 else 1.0
         z = state.z + f * dz
         z[:, n:2 * n] = limited(state.z[:, n:2 * n], f * dz[:, n:2 * n])
-        z[:, 2 * n] = state.z[:, 2 * n] + np.clip(f * dz[:, 2 * n], -INTERFACE_TEMPERATURE_STEP,
-                                                  INTERFACE_TEMPERATURE_STEP)
-        z[:, 2 * n] = np.clip(z[:, 2 * n], low, high)
+        dT_I = np.clip(f * dz[:, 2 * n], -LARGEST_TEMPERATURE_STEP, LARGEST_TEMPERATURE_STEP)
+        z[:, 2 * n] = np.clip(state.z[:, 2 * n] + dT_I, low, high)
         state = RateState(limited(state.v, f * dv), np.clip(state.T_V + f * dT_V, low, high), limited(state.l, f * dl),
                           np.clip(state.T_L + f * dT_L, low, high), z, system.blocks.films.y_I, state.y_condenser)
         state = replace(state, y_condenser=updated_condenser_vapor(problem, state))

@@ -262,8 +262,7 @@ def stage_residuals(state: StageUnknowns, vapor_in: Entering, liquid_in: Enterin
         by_liquid[..., qhl, :] -= es[..., None] * _by_entering(E_L, x_part, dx_in, m - 1, heat_L)[..., 0, :]
         by_liquid[..., qhv, :] += es[..., None] * _by_entering(E_V, x_part, dx_in, m - 1, heat_L)[..., 0, :]
     return StageBlocks(bulk, films.residual, ww, wz, zw, films.dz, by_vapor, by_liquid, z_by_vapor, z_by_liquid, films,
-                       y_b,
-                       T_Vb, x_b, T_Lb)
+                       y_b, T_Vb, x_b, T_Lb)
 
 
 def _bulk(z: Array, T: Array, dz: Array, entering: Entering, theta: Array, heat: Array

@@ -55,8 +55,15 @@ def sweep(title, make, wanted):
             try:
                 again = solve_equilibrium(outcome.case.column, outcome.case.properties, efficiency)
                 fed[kind].append(feed_back_error(again, outcome.rate))
+                right = fed[kind][-1] < 1e-8
             except ConvergenceError:
                 counts[f"{kind} fed back, not solved"] += 1
+                right = False
+            if not right:                                 # odd sets have several solutions
+                again = solve_equilibrium(outcome.case.column, outcome.case.properties, efficiency,
+                                          start=outcome.rate)
+                print(f"  seed {seed}, {kind} fed back from cold ends elsewhere; from the rate-based profile: "
+                      f"{feed_back_error(again, outcome.rate):.1e}")
     print(f"{title}: {seed + 1} seeds, {counts['passed']} passed the estimate, {time.perf_counter() - start:.0f} s")
     print(f"  solved, equilibrium / rate-based: {counts['passed equilibrium']} / {counts['passed rate']} of "
           f"{counts['passed']}; of {counts['flagged']} flagged {counts['flagged equilibrium']} / "
