@@ -48,6 +48,11 @@ def equilibrium_part(problem: Problem, P: Array, v: Array, T: Array, l: Array, y
     return EquilibriumPart(V, y_out, dy, L, x, dx, K, Kx, Kx * slope.temperature, by_v, by_l)
 
 
+def one_stage(part: EquilibriumPart, j: int) -> EquilibriumPart:
+    """The part of one stage, arrays (1, ...)."""
+    return EquilibriumPart(*(getattr(part, name)[j:j + 1] for name in part.__dataclass_fields__))
+
+
 @dataclass(frozen=True)
 class EndRows:
     """n equilibrium rows and one specification row of an end stage, scaled, with derivatives by v, T, l.

@@ -17,7 +17,7 @@ from ..properties.differences import liquid_heat_capacity, vapor_heat_capacity
 from ..properties.protocol import Array, Mask, PropertyModel
 from .banded import block_tridiagonal
 from .definition import Column
-from .ends import EquilibriumPart, bubble_vapor, condenser_rows, equilibrium_part, reboiler_rows
+from .ends import EquilibriumPart, bubble_vapor, condenser_rows, equilibrium_part, one_stage, reboiler_rows
 from .failure import convergence_error, unstable_liquid
 from .problem import Problem, make_problem
 from .profile import Profile
@@ -195,7 +195,7 @@ def _end_rows(problem: Problem, part: EquilibriumPart, r: Array, D: Array, lower
                              (problem.S - 1, problem.bottom is not None, reboiler_rows)):
         if not present:
             continue
-        one = _single(part, j)
+        one = one_stage(part, j)
         end = make(problem, one, v[j:j + 1], l[j:j + 1])
         r[j, e], D[j, e, :n], D[j, e, n], D[j, e, n + 1:] = (end.residual[:n], end.by_v[:n], end.by_T[:n],
                                                              end.by_l[:n])
@@ -203,10 +203,6 @@ def _end_rows(problem: Problem, part: EquilibriumPart, r: Array, D: Array, lower
             r[j, h], D[j, h, :n], D[j, h, n], D[j, h, n + 1:] = (end.residual[n], end.by_v[n], end.by_T[n],
                                                                  end.by_l[n])
             lower[j, h], upper[j, h] = 0.0, 0.0
-
-
-def _single(part: EquilibriumPart, j: int) -> EquilibriumPart:
-    return EquilibriumPart(*(getattr(part, name)[j:j + 1] for name in part.__dataclass_fields__))
 
 
 @dataclass(frozen=True)

@@ -10,10 +10,11 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from ..interface import InterfaceBlocks
 from ..properties.differences import liquid_heat_capacity, vapor_heat_capacity
 from ..properties.protocol import Array
 from .contact import FlowPattern, Layout, Transfer, film_transfer_units, transfer
-from .ends import bubble_vapor, condenser_rows, equilibrium_part, reboiler_rows
+from .ends import bubble_vapor, condenser_rows, equilibrium_part, one_stage, reboiler_rows
 from .problem import Problem
 from .stage_system import Caloric, Entering, StageBlocks, StageUnknowns, stage_residuals
 from .steps import after_draw
@@ -137,8 +138,8 @@ def _mixing(feed: Array, T_feed: Array, flow: Array, cp: Array, T: Array, shift:
     return mixed, brought / total, slope
 
 
-def rate_system(setup: RateSetup, state: RateState) -> RateSystem:
-    """Residual and condensed blocks at a state."""
+def rate_system(setup: RateSetup, state: RateState, held: InterfaceBlocks | None = None) -> RateSystem:
+    """Residual and condensed blocks at a state; `held` as for `stage_residuals`."""
     problem = setup.problem
     S, n = problem.S, problem.n
     m = 2 * n + 2
@@ -153,7 +154,8 @@ def rate_system(setup: RateSetup, state: RateState) -> RateSystem:
         coefficients.coefficients, coefficients.c_vapor, coefficients.c_liquid, duty=problem.duty[c],
         vapor_weight=shares.y, liquid_weight=shares.x, vapor_temperature_weight=shares.T_V,
         liquid_temperature_weight=shares.T_L, flow_scale=problem.F, energy_scale=problem.energy_scale,
-        y_interface=state.y_I, leaving=Caloric(vapor.H[c], vapor.cp[c], liquid.H[c], liquid.cp[c]))
+        y_interface=state.y_I, leaving=Caloric(vapor.H[c], vapor.cp[c], liquid.H[c], liquid.cp[c]),
+        held=held)
     bulk = np.zeros((S, m))
     D, lower, upper = np.zeros((S, m, m)), np.zeros((S, m, m)), np.zeros((S, m, m))
     bulk[c], D[c] = blocks.bulk, blocks.bulk_by_bulk
@@ -278,17 +280,22 @@ def _end_rows(problem: Problem, state: RateState, vapor_in: Entering, liquid_in:
     iv, iTV, il, iTL = slice(0, n), n, slice(n + 1, m - 1), m - 1
     liquid, vapor = (slice(0, n), n), (slice(n + 1, m - 1), m - 1)
     one = np.eye(n) * fe
-    for j, present in ((0, problem.top is not None), (problem.S - 1, problem.reboiler)):
-        if not present:
-            continue
+    ends = [j for j, present in ((0, problem.top is not None), (problem.S - 1, problem.reboiler)) if present]
+    if not ends:
+        return
+    v_ends, l_ends, T_ends = state.v[ends], state.l[ends], state.T_L[ends]
+    y_ends = v_ends / v_ends.sum(1, keepdims=True)
+    if problem.total_condenser:
+        T_ends = T_ends + np.array([problem.subcooling, 0.0])[:len(ends)]
+        y_ends[0] = state.y_condenser[0]
+    parts = equilibrium_part(problem, problem.P[ends], v_ends, T_ends, l_ends, y_ends)
+    for k, j in enumerate(ends):
         (balance, closing), (rows, spec) = (vapor, liquid) if j == 0 else (liquid, vapor)
         if j > 0:
             spec, closing = closing, spec
         only = slice(j, j + 1)
         v, l = state.v[only], state.l[only]
-        T = state.T_L[only] + (problem.subcooling if j == 0 else 0.0)
-        y = state.y_condenser if j == 0 and problem.total_condenser else None
-        part = equilibrium_part(problem, problem.P[only], v, T, l, y)
+        part = one_stage(parts, k)
         end = condenser_rows(problem, part, v, l) if j == 0 else reboiler_rows(problem, part, v, l)
         r[j, balance] = (v + l - vapor_in.flows[only] - liquid_in.flows[only])[0] * fe
         D[j, balance, iv], D[j, balance, il] = one, one

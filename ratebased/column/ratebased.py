@@ -14,6 +14,7 @@ import numpy as np
 from ..arguments import positive_scalar
 from ..equipment.protocol import Hydraulics
 from ..errors import ApproximationWarning, ConvergenceError, InputError
+from ..interface import InterfaceBlocks
 from ..properties.protocol import Array, PropertyModel
 from .banded import block_tridiagonal
 from .contact import Averaged, ContactorLayout, FlowPattern, Mixed, film_transfer_units, layout, transfer
@@ -48,6 +49,8 @@ from .steps import TINY, after_draw, limited
 PRESSURE_TOLERANCE = 1e-7
 """Relative change of the pressures at which the hydraulics and the column agree."""
 MAX_PRESSURE_ROUNDS = 30
+HOLD_SLOPES = 1e-3
+"""Scaled residual below which derivatives of the films by the bulk states are not computed anew."""
 MAX_SHARE_ROUNDS = 4
 SHARE_TOLERANCE = 1e-3
 LARGEST_SEGMENT = 2.0
@@ -65,6 +68,7 @@ class RateOutcome:
     worst: str
     reason: str = ""
     shares: Shares | None = None
+    films: InterfaceBlocks | None = None
 
 
 def solve_ratebased(column: Column, properties: PropertyModel, contactor: ContactorLayout, *,
@@ -112,7 +116,7 @@ def solve_ratebased(column: Column, properties: PropertyModel, contactor: Contac
         setup, outcome = _with_pressure_drop(setup, outcome, progress)
         problem = setup.problem
     positive = _lifted(problem, outcome.state)
-    system = rate_system(setup, positive)
+    system = rate_system(setup, positive, outcome.films)
     _warn_coarse(setup, positive, system)
     record = _record(setup, positive, system)
     s = outcome.state
@@ -244,9 +248,10 @@ def newton(setup: RateSetup, state: RateState, *, tolerance: float = TOLERANCE, 
     reason, residual, worst, iteration = "the iteration limit", np.inf, "", 0
     floor = 1e2 * np.finfo(float).eps
     low, high = problem.temperature_limits
+    films: InterfaceBlocks | None = None
     for iteration in range(1, limit + 1):
         try:
-            system = rate_system(setup, state)
+            system = rate_system(setup, state, films if residual < HOLD_SLOPES else None)
         except np.linalg.LinAlgError:
             reason = "a singular interface"
             break
@@ -256,6 +261,7 @@ def newton(setup: RateSetup, state: RateState, *, tolerance: float = TOLERANCE, 
             reason = f"a state that was refused ({error})"
             break
         residual, worst = _measure(problem, system)
+        films = system.blocks.films
         if progress is not None:
             progress(iteration, residual)
         if not np.isfinite(residual):
@@ -279,7 +285,7 @@ def newton(setup: RateSetup, state: RateState, *, tolerance: float = TOLERANCE, 
                             z=state.z + dz, y_I=system.blocks.films.y_I)
             least = min(final.v.min(), final.l.min()) / problem.F
             if least > -1e-10 and final.z[:, n:2 * n].min() > -1e-9:
-                return RateOutcome(final, True, iteration, residual, worst, shares=setup.shares)
+                return RateOutcome(final, True, iteration, residual, worst, shares=setup.shares, films=films)
         largest = max(float(np.abs(dT_V).max()), float(np.abs(dT_L).max()))
         f = min(1.0, LARGEST_TEMPERATURE_STEP / largest) if largest > 0 else 1.0
         z = state.z + f * dz

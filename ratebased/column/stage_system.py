@@ -6,7 +6,7 @@ of `ratebased.interface`. Neighbours enter through the streams that come in, so 
 """
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import ArrayLike
@@ -155,7 +155,7 @@ def stage_residuals(state: StageUnknowns, vapor_in: Entering, liquid_in: Enterin
                     vapor_temperature_weight: ArrayLike | None = None,
                     liquid_temperature_weight: ArrayLike | None = None,
                     flow_scale: float = 1.0, energy_scale: float = 1.0, y_interface: Array | None = None,
-                    leaving: Caloric | None = None) -> StageBlocks:
+                    leaving: Caloric | None = None, held: InterfaceBlocks | None = None) -> StageBlocks:
     """Residuals of rate-based stages and their derivatives, for a column script of one's own.
 
     Parameters
@@ -173,6 +173,8 @@ def stage_residuals(state: StageUnknowns, vapor_in: Entering, liquid_in: Enterin
     flow_scale, energy_scale : divide the balances (mol/s) and energy rows (W).
     y_interface : interface vapour at which K is first evaluated; None: the bulk vapour.
     leaving : enthalpies of what leaves, where they are known already.
+    held : interface blocks of a state near by whose derivatives by the bulk states serve again (residuals are always
+        those of `state`): near a solution they hardly change, and with a non-ideal liquid they are dear.
 
     Returns
     -------
@@ -199,8 +201,9 @@ def stage_residuals(state: StageUnknowns, vapor_in: Entering, liquid_in: Enterin
     films = interface_blocks(
         Bulk(y_b, T_Vb, coefficients.kappa_vapor, coefficients.h_vapor, np.asarray(c_vapor, float)),
         Bulk(x_b, T_Lb, coefficients.kappa_liquid, coefficients.h_liquid, np.asarray(c_liquid, float)),
-        properties, P, state.z, y_guess=y_interface)
-    assert films.dw is not None and films.dE_V_dw is not None and films.dE_L_dw is not None
+        properties, P, state.z, y_guess=y_interface, bulk_derivatives=held is None)
+    slopes = films if held is None else held
+    assert slopes.dw is not None and slopes.dE_V_dw is not None and slopes.dE_L_dw is not None
     if leaving is None:
         leaving = Caloric(np.broadcast_to(properties.vapor_enthalpy(T_V, P, y), v.shape),
                           vapor_heat_capacity(properties, T_V, P, y),
@@ -223,7 +226,7 @@ def stage_residuals(state: StageUnknowns, vapor_in: Entering, liquid_in: Enterin
 
     # bulk rows by bulk unknowns; E depends on them through the states at the films
     es = area * ee
-    E_V, E_L = films.dE_V_dw[..., None, :], films.dE_L_dw[..., None, :]
+    E_V, E_L = slopes.dE_V_dw[..., None, :], slopes.dE_L_dw[..., None, :]
     one = np.eye(n) * fe
     ww = np.zeros((*batch, m, m))
     ww[..., ql, il], ww[..., qv, iv] = one, one
@@ -246,22 +249,23 @@ def stage_residuals(state: StageUnknowns, vapor_in: Entering, liquid_in: Enterin
     wz[..., qhl, :], wz[..., qhv, :] = -es[..., None] * films.dE_L_dz, es[..., None] * films.dE_V_dz
     # interface rows by bulk unknowns
     zw = np.empty((*batch, k, m))
-    zw[..., iv], zw[..., iTV] = chain(films.dw[..., y_part], dy_b), films.dw[..., n] * (1.0 - heat_V)[..., None]
-    zw[..., il], zw[..., iTL] = chain(films.dw[..., x_part], dx_b), films.dw[..., m - 1] * (1.0 - heat_L)[..., None]
+    zw[..., iv], zw[..., iTV] = chain(slopes.dw[..., y_part], dy_b), slopes.dw[..., n] * (1.0 - heat_V)[..., None]
+    zw[..., il], zw[..., iTL] = chain(slopes.dw[..., x_part], dx_b), slopes.dw[..., m - 1] * (1.0 - heat_L)[..., None]
     # what enters
     by_vapor, by_liquid = np.zeros((*batch, m, n + 2)), np.zeros((*batch, m, n + 2))
     by_vapor[..., qv, :n], by_vapor[..., qhv, n + 1] = -one, -ee
     by_liquid[..., ql, :n], by_liquid[..., qhl, n + 1] = -one, -ee
     z_by_vapor = z_by_liquid = None
     if dy_in is not None:
-        z_by_vapor = _by_entering(films.dw, y_part, dy_in, n, heat_V)
+        z_by_vapor = _by_entering(slopes.dw, y_part, dy_in, n, heat_V)
         by_vapor[..., qhl, :] -= es[..., None] * _by_entering(E_L, y_part, dy_in, n, heat_V)[..., 0, :]
         by_vapor[..., qhv, :] += es[..., None] * _by_entering(E_V, y_part, dy_in, n, heat_V)[..., 0, :]
     if dx_in is not None:
-        z_by_liquid = _by_entering(films.dw, x_part, dx_in, m - 1, heat_L)
+        z_by_liquid = _by_entering(slopes.dw, x_part, dx_in, m - 1, heat_L)
         by_liquid[..., qhl, :] -= es[..., None] * _by_entering(E_L, x_part, dx_in, m - 1, heat_L)[..., 0, :]
         by_liquid[..., qhv, :] += es[..., None] * _by_entering(E_V, x_part, dx_in, m - 1, heat_L)[..., 0, :]
-    return StageBlocks(bulk, films.residual, ww, wz, zw, films.dz, by_vapor, by_liquid, z_by_vapor, z_by_liquid, films,
+    result = films if held is None else replace(films, dw=held.dw, dE_V_dw=held.dE_V_dw, dE_L_dw=held.dE_L_dw)
+    return StageBlocks(bulk, films.residual, ww, wz, zw, films.dz, by_vapor, by_liquid, z_by_vapor, z_by_liquid, result,
                        y_b, T_Vb, x_b, T_Lb)
 
 
