@@ -24,7 +24,11 @@ QUADRATIC = 1e-14
 STAGNATION = 1e-8
 """The largest step at which a Newton iteration that no longer shrinks it may stop."""
 
-MAX_STEPS = 40
+COARSE_STAGNATION = 1e-4
+"""The same for films with a constant [Gamma] and for linearised theory, which have no integrated equation for a
+stagnant trace: rounding of its mole fractions moves the flux, by far less than the approximation made."""
+
+MAX_STEPS = 60
 
 UNPHYSICAL_ROTATION = np.pi
 """A root whose rate factor has an eigenvalue with a larger imaginary part has a profile that leaves the simplex.
@@ -156,6 +160,7 @@ def newton(problem: FilmProblem, N: Array, form: BlockForm = coth_blocks) -> tup
     active = np.arange(len(problem))
     last = np.full(len(problem), 1e-150)                  # no estimate from the first step
     rest = problem
+    coarse = problem.gamma is not None or form is not coth_blocks
     for count in range(1, MAX_STEPS + 1):
         if not len(active):
             break
@@ -170,7 +175,8 @@ def newton(problem: FilmProblem, N: Array, form: BlockForm = coth_blocks) -> tup
         sound = np.isfinite(error) & (size < 1e100)
         N[active] = np.where(sound[:, None], moved, 0.0)
         steps[active] += 1
-        stalled = (count > 3) & (error <= STAGNATION) & (error > 0.25 * previous)
+        limit = COARSE_STAGNATION if coarse and count > 12 else STAGNATION
+        stalled = (count > 3) & (error <= limit) & (error > 0.25 * previous)
         finished = sound & ((error <= STEP_TOLERANCE) | quadratic | stalled)
         last[active] = error
         done[active[finished]] = True
@@ -189,8 +195,10 @@ def rate_factors(problem: FilmProblem, N: Array) -> NDArray[Any]:
     return np.asarray(np.linalg.eigvals(Z))
 
 
-def physical(problem: FilmProblem, N: Array) -> Mask:
-    """Where the profile does not rotate out of the simplex."""
+def physical(problem: FilmProblem, N: Array, form: BlockForm = coth_blocks) -> Mask:
+    """Where the profile does not rotate out of the simplex (linearised theory knows no such roots)."""
+    if form is not coth_blocks:
+        return np.ones(len(problem), dtype=bool)
     return np.asarray(np.abs(rate_factors(problem, N).imag).max(-1, initial=0.0) <= UNPHYSICAL_ROTATION)
 
 
@@ -226,7 +234,7 @@ def continuation(problem: FilmProblem, form: BlockForm = coth_blocks) -> tuple[A
                            part.kappa, part.c_t, part.nu, part.s, part.gamma, part.shape)
         found, ok, used = newton(part, N[active], form)
         steps[active] += used
-        ok &= physical(part, found)
+        ok &= physical(part, found, form)
         ok &= ~other_branch(part, found, form)
         N[active[ok]] = found[ok]
         t[active[ok]] = ahead[ok]
@@ -251,14 +259,14 @@ def solve_exact(problem: FilmProblem, start: Array | None = None, form: BlockFor
     N, ok, steps = newton(inner, np.take_along_axis(first, order, axis=1), form)
     steps += 1
     wide = np.flatnonzero(wide_films(inner))
-    ok[wide] &= physical(inner.take(wide), N[wide])
+    ok[wide] &= physical(inner.take(wide), N[wide], form)
     for widen in (False, True):
         left = np.flatnonzero(~ok)
         if not len(left):
             break
         part = inner.take(left)
         N[left], found, used = continuation(part, form) if widen else newton(part, np.zeros_like(part.x0), form)
-        ok[left] = found & physical(part, N[left])
+        ok[left] = found & physical(part, N[left], form)
         steps[left] += used
     status = np.where(ok, FilmStatus.CONVERGED, FilmStatus.NOT_CONVERGED).astype(np.int8)
     suspect = wide[ok[wide]]
