@@ -94,5 +94,5 @@ def figures(values: Sequence[float | None], form: str) -> tuple[Cell, ...]:
     cells = []
     for value in values:
         known = value is not None and abs(value) < float("inf")
-        cells.append(Cell(format(value, form)) if known else Cell("", Mark.BLANK))
+        cells.append(Cell("0" if value == 0 else format(value, form)) if known else Cell("", Mark.BLANK))
     return tuple(cells)

@@ -7,7 +7,7 @@ from pathlib import Path
 import numpy as np
 
 from ..column import Comparison, Profile
-from ..column.compare import FED_BACK, ONE_EFFICIENCY, RATE_BASED
+from ..column.compare import FED_BACK, NEGLIGIBLE, ONE_EFFICIENCY, RATE_BASED, feed_back_error
 from ..efficiency.table import CAUTION
 from ..equipment import Section as HardwareSection
 from .blocks import Block, Bullets, Cell, Mark, Paragraph, Report, Section, Table, figures, words
@@ -65,12 +65,16 @@ def _comparison(comparison: Comparison) -> Section:
     drawn = pictures([("profile_figure", "Temperatures and compositions by stage: equilibrium stages with one "
                                          "efficiency beside mass-transfer rates.", (one, rate))])
     return Section("comparison", "How far apart the predictions are", (
-        products_table(comparison), Bullets(comparison.differences), *drawn))
+        products_table(comparison), Bullets(tuple(
+            text[:1].upper() + text[1:] for text in comparison.differences)), *drawn))
 
 
 def _profiles(comparison: Comparison) -> Section:
     rate = comparison.profiles[RATE_BASED]
-    models = [(SHORT[model], profile) for model, profile in comparison.profiles.items()]
+    same = feed_back_error(comparison.profiles[FED_BACK], rate) < NEGLIGIBLE
+    models = [(SHORT[model], profile) for model, profile in comparison.profiles.items()
+              if not (same and model == FED_BACK)]
+    remark = " The column fed with component efficiencies is the same as the rate-based one." if same else ""
     rows = [(Cell(str(j + 1)), *words(rate.kinds[j]), *figures([p.T_L[j] for _, p in models], ".2f"),
              *figures([rate.T_V[j] if rate.V[j] > 0 else None], ".2f"),
              *figures([rate.L[j], rate.V[j]], ".4g")) for j in range(rate.stages)]
@@ -80,7 +84,7 @@ def _profiles(comparison: Comparison) -> Section:
     head = ("stage", *(f"x {name}, {word}" for name in rate.names for word, _ in models))
     rows_x = [(Cell(str(j + 1)), *figures([p.x[j, i] for i in range(len(rate.names)) for _, p in models], ".4f"))
               for j in range(rate.stages)]
-    blocks.append(Table(head, tuple(rows_x), "Mole fractions in the liquid leaving each stage."))
+    blocks.append(Table(head, tuple(rows_x), "Mole fractions in the liquid leaving each stage." + remark))
     if len(rate.names) == 3:
         blocks += pictures([("triangle_figure", "Path of the stages through the triangle of compositions.", (rate,))])
     return Section("profiles", "Profiles", tuple(blocks))

@@ -10,6 +10,7 @@ from importlib.util import find_spec
 from pathlib import Path
 from typing import Any
 
+from ..case.hardware import RANDOM_METHODS, STRUCTURED_METHODS, TRAY_METHODS
 from ..efficiency.package import correlation_rows
 from ..equipment import Section as HardwareSection
 from ..files import checksum
@@ -57,6 +58,10 @@ UNITS = {"diameter": "m", "spacing": "m", "weir_height": "m", "hole_diameter": "
          "area": "m2"}
 
 
+METHOD_WORDS = {type(method): word for methods in (TRAY_METHODS, RANDOM_METHODS, STRUCTURED_METHODS)
+                for word, method in methods.items()}
+
+
 def contactor_words(contactor: object) -> str:
     """A contactor with its dimensions, as a person would write them down."""
     kind = _spaced(type(contactor).__name__)
@@ -71,18 +76,17 @@ def contactor_words(contactor: object) -> str:
         if field.name == "angle":
             parts.append(f"angle {math.degrees(value):g} degrees")
         elif isinstance(value, bool | int | float):
-            parts.append(f"{name} {value:g} {unit}".rstrip())
+            parts.append(f"{name} {value:.4g} {unit}".rstrip())
         elif isinstance(value, str):
             parts.append(f"{name} {value}")
-        elif field.name == "method":
-            parts.append(f"method {_spaced(type(value).__name__)}")
+        elif type(value) in METHOD_WORDS:
+            parts.append(f"method {METHOD_WORDS[type(value)]}")
     return f"{kind}: {', '.join(parts)}" if parts else kind
 
 
 def _spaced(name: str) -> str:
-    """SieveTray -> sieve tray; names of authors keep their capitals."""
-    text = "".join(f" {c}" if c.isupper() and i and not name[i - 1].isupper() else c for i, c in enumerate(name))
-    return text.lower() if text.endswith((" Tray", " Packing", " Coefficients")) else text
+    """SieveTray -> Sieve tray."""
+    return "".join(f" {c.lower()}" if c.isupper() and i else c for i, c in enumerate(name))
 
 
 def pictures(draw: Sequence[tuple[str, str, Sequence[Any]]]) -> tuple[Picture, ...]:

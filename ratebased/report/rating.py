@@ -137,7 +137,7 @@ def flux_parts(explanation: FluxExplanation, caption: str) -> Table:
     nil = ROUNDING * float(np.abs(s.total).max())
     for i, name in enumerate(explanation.names):
         parts = [s.own[i], s.nonideality[i], *s.pull[i], s.bulk_flow[i], s.high_flux[i], s.total[i]]
-        cells = figures([1e3 * value if abs(value) > nil else 0.0 for value in parts], "+.3g")
+        cells = figures([1e3 * value if abs(value) > nil else 0.0 for value in parts], "+.4g")
         own = 2 + i
         rows.append((*words(name, film.regime[i]), *cells[:own], Cell("", Mark.BLANK), *cells[own + 1:]))
     return Table(("component", f"diffusion ({film.phase} film)", "own gradient", "non-ideality",

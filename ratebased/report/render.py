@@ -5,10 +5,18 @@ from pathlib import Path
 
 from ..errors import InputError
 from ..files import write_whole
-from .blocks import Bullets, Mark, Paragraph, Picture, Report, Table
+from .blocks import Bullets, Cell, Mark, Paragraph, Picture, Report, Table
 
 SIGNS = {Mark.PLAIN: "", Mark.NEGATIVE: "\u25bc ", Mark.ABOVE: "\u25b2 ", Mark.BLANK: "", Mark.LIMIT: "! "}
 """Written before a figure that stands out, so that no colour is needed to see it."""
+
+
+LONG, LONG_WORD = 28, 48
+"""Letters from which a cell of words gets a wide column, and a single word (a checksum) letters of one width."""
+
+
+LONG_NAME = 18
+BREAK = "\u200b"
 
 
 def to_html(report: Report) -> str:
@@ -18,14 +26,31 @@ def to_html(report: Report) -> str:
     """
     try:
         import jinja2
+        import markupsafe
     except ImportError as error:
         raise InputError("report: HTML needs the package jinja2, pip install 'ratebased[report]'") from error
     folder = Path(__file__).parent
     environment = jinja2.Environment(loader=jinja2.FileSystemLoader(folder), autoescape=True, trim_blocks=True,
                                      lstrip_blocks=True, undefined=jinja2.StrictUndefined, keep_trailing_newline=True)
     environment.filters["kind"] = lambda block: type(block).__name__.lower()
+    environment.filters["look"] = _look
+    environment.filters["breakable"] = lambda text: markupsafe.escape(_tied(text)).replace(
+        BREAK, markupsafe.Markup("<wbr>"))
     return environment.get_template("page.html").render(
         report=report, signs={mark.value: sign for mark, sign in SIGNS.items()})
+
+
+def _tied(text: str) -> str:
+    """Units kept in one piece, long names with places to break after their underscores."""
+    words = text.replace("(m2 s)", "(m2\u00a0s)").replace(" / ", " /\u00a0").split(" ")
+    return " ".join(word.replace("_", "_" + BREAK) if len(word) > LONG_NAME else word for word in words)
+
+
+def _look(cell: Cell) -> str:
+    """The classes of a cell."""
+    one_word = not cell.figure and len(cell.text) >= LONG_WORD and " " not in cell.text
+    given = {"figure": cell.figure, "code": one_word, "long": not one_word and len(cell.text) >= LONG}
+    return " ".join([*(name for name, true in given.items() if true), *([cell.mark.value] if cell.mark.value else [])])
 
 
 def to_markdown(report: Report) -> str:
