@@ -15,9 +15,7 @@ from numpy.typing import ArrayLike, NDArray
 from ..arguments import finite_array, positive_array, positive_scalar
 from ..errors import InputError
 from .specifications import (
-    BoilupRatio,
     BottomsRate,
-    CondenserDuty,
     DistillateRate,
     RefluxRatio,
     Searched,
@@ -353,9 +351,3 @@ def _per_stage(name: str, array: Array, stages: int) -> Array:
         raise InputError(f"{name}: expected one number or {stages}, got shape {array.shape}")
     return np.broadcast_to(array, (stages,)).copy()
 
-
-__all__ = [
-    "AnyFeed", "BoilupRatio", "BottomsRate", "Column", "CondenserDuty", "ContactorPressure", "DistillateRate", "Feed",
-    "LiquidDraw", "LiquidFeed", "PartialCondenser", "Reboiler", "RefluxRatio", "TotalCondenser", "VaporDraw",
-    "VaporFeed",
-]

@@ -82,7 +82,7 @@ def condenser_rows(problem: Problem, part: EquilibriumPart, v: Array, l: Array) 
     r, by_v, by_T, by_l = np.zeros(n + 1), np.zeros((n + 1, n)), np.zeros(n + 1), np.zeros((n + 1, n))
     spec = problem.top
     if not problem.total_condenser:
-        _equilibrium_rows(problem, part, v, l, 0, r, by_v, by_T, by_l)
+        _equilibrium_rows(problem, part, v, l, r, by_v, by_T, by_l)
         if isinstance(spec, RefluxRatio):
             r[n] = (l[0].sum() - spec.value * v[0].sum()) * fe
             by_v[n], by_l[n] = -spec.value * fe, fe
@@ -108,7 +108,7 @@ def reboiler_rows(problem: Problem, part: EquilibriumPart, v: Array, l: Array) -
     """Rows of the last stage; arrays of one stage, (1, n)."""
     n, fe = problem.n, 1.0 / problem.F
     r, by_v, by_T, by_l = np.zeros(n + 1), np.zeros((n + 1, n)), np.zeros(n + 1), np.zeros((n + 1, n))
-    _equilibrium_rows(problem, part, v, l, 0, r, by_v, by_T, by_l)
+    _equilibrium_rows(problem, part, v, l, r, by_v, by_T, by_l)
     spec = problem.bottom
     if isinstance(spec, BoilupRatio):
         r[n] = (v[0].sum() - spec.value * l[0].sum()) * fe
@@ -118,14 +118,13 @@ def reboiler_rows(problem: Problem, part: EquilibriumPart, v: Array, l: Array) -
     return EndRows(r, by_v, by_T, by_l, isinstance(spec, ReboilerDuty))
 
 
-def _equilibrium_rows(problem: Problem, part: EquilibriumPart, v: Array, l: Array, j: int, r: Array, by_v: Array,
+def _equilibrium_rows(problem: Problem, part: EquilibriumPart, v: Array, l: Array, r: Array, by_v: Array,
                       by_T: Array, by_l: Array) -> None:
     """y = K x; a non-condensing component has no liquid, a non-volatile one no vapour."""
-    n, fe = problem.n, 1.0 / problem.F
+    fe = 1.0 / problem.F
     o = np.flatnonzero(problem.ordinary)
-    r[o] = (part.y - part.Kx)[j, o]
-    by_v[o], by_T[o], by_l[o] = (part.dy - part.by_v)[j, o], -part.by_T[j, o], -part.by_l[j, o]
+    r[o] = (part.y - part.Kx)[0, o]
+    by_v[o], by_T[o], by_l[o] = (part.dy - part.by_v)[0, o], -part.by_T[0, o], -part.by_l[0, o]
     for mask, flow, slope in ((problem.gas, l, by_l), (problem.heavy, v, by_v)):
         for k in np.flatnonzero(mask):
-            r[k], slope[k, k] = flow[j, k] * fe, fe
-    assert r.shape == (n + 1,)
+            r[k], slope[k, k] = flow[0, k] * fe, fe

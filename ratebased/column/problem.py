@@ -8,7 +8,7 @@ from numpy.typing import NDArray
 
 from ..errors import InputError
 from ..properties.protocol import Array, Mask, PropertyModel
-from .definition import Column, PartialCondenser, TotalCondenser
+from .definition import Column, TotalCondenser
 from .feeds import StageFeeds, stage_feeds
 from .specifications import (
     BoilupRatio,
@@ -58,10 +58,6 @@ class Problem:
     @property
     def total_condenser(self) -> bool:
         return isinstance(self.column.condenser, TotalCondenser)
-
-    @property
-    def partial_condenser(self) -> bool:
-        return isinstance(self.column.condenser, PartialCondenser)
 
     @property
     def reboiler(self) -> bool:

@@ -14,10 +14,11 @@ from ..equipment.sections import Section
 from ..errors import InputError
 from ..properties.protocol import Array, PropertyModel
 from .contact import ContactorLayout, FlowPattern
-from .definition import AnyFeed, Column, ContactorPressure, LiquidDraw, LiquidFeed, VaporDraw, VaporFeed
+from .definition import AnyFeed, Column, ContactorPressure, LiquidFeed, VaporDraw, VaporFeed
 from .problem import make_problem
 from .profile import Profile
 from .ratebased import solve_ratebased
+from .search import search_handle
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -57,15 +58,10 @@ def resized(column: Column, contact_stages: int) -> Column:
     else:
         pressure = np.interp(new, old, column.pressure)
     height = None if column.segment_height is None else np.interp(new, old, column.segment_height)
-    return Column(stages, [replace_stage(f, int(numbers[f.stage - 1])) for f in column.feeds], pressure,
+    return Column(stages, [replace(f, stage=int(numbers[f.stage - 1])) for f in column.feeds], pressure,
                   condenser=column.condenser, reboiler=column.reboiler, specifications=column.specifications,
                   draws=[replace(d, stage=int(numbers[d.stage - 1])) for d in column.draws], duties=duties,
                   heat_loss=np.interp(new, old, column.heat_loss), segment_height=height)
-
-
-def replace_stage(feed: AnyFeed, stage: int) -> AnyFeed:
-    """The feed to another stage."""
-    return replace(feed, stage=stage)
 
 
 def resized_efficiency(efficiency: EfficiencySet, column: Column, contact_stages: int) -> EfficiencySet:
@@ -104,7 +100,7 @@ def halved_segments(column: Column, properties: PropertyModel) -> Column:
     """
     if column.segment_height is None:
         raise InputError("column: trays cannot be cut; a grid is refined in a packed bed")
-    problem = make_problem(column.with_(specifications=column.specifications), properties)
+    problem = make_problem(_without_search(column), properties)
     upper, lower = halves(column)
     feeds: list[AnyFeed] = []
     for feed, split in zip(column.feeds, problem.feeds.streams):
@@ -122,6 +118,15 @@ def halved_segments(column: Column, properties: PropertyModel) -> Column:
     return Column(rows.size, feeds, pressure, condenser=column.condenser, reboiler=column.reboiler,
                   specifications=column.specifications, draws=draws, duties=duties,
                   heat_loss=column.heat_loss[rows] * cut, segment_height=column.segment_height[rows] * cut)
+
+
+def _without_search(column: Column) -> Column:
+    """The column with any value in place of a searched specification: for its feeds only."""
+    rest = tuple(s for s in column.specifications if s is not column.search)
+    if column.search is None:
+        return column
+    vary, bounds = search_handle(column, column.search, rest)
+    return column.with_(specifications=(*rest, vary(bounds[0])))
 
 
 def halves(column: Column) -> tuple[NDArray[np.int64], NDArray[np.int64]]:
@@ -192,6 +197,3 @@ def refine_grid(column: Column, properties: PropertyModel, contactor: ContactorL
     return GridRefinement(np.array(counts), tuple(profiles), products, difference, order, products[-1] + correction,
                           float(np.abs(correction).max() / feed))
 
-
-__all__ = ["GridRefinement", "LiquidDraw", "halved_segments", "refine_grid", "resized", "resized_efficiency",
-           "resized_layout", "stage_map"]

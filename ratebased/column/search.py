@@ -48,7 +48,7 @@ def with_search(column: Column, solve: Solver) -> Profile:
     wanted = column.search
     assert wanted is not None
     rest = tuple(s for s in column.specifications if s is not wanted)
-    vary, bounds = _handle(column, wanted, rest)
+    vary, bounds = search_handle(column, wanted, rest)
     found: dict[float, Profile] = {}
     problems: list[str] = []
 
@@ -117,7 +117,7 @@ def _refine(gap: Callable[[float], float], low: float, high: float, found: dict[
     return found[root]
 
 
-def _handle(column: Column, wanted: Searched, rest: tuple[Specification, ...]
+def search_handle(column: Column, wanted: Searched, rest: tuple[Specification, ...]
             ) -> tuple[type[RefluxRatio] | type[DistillateRate] | type[BoilupRatio] | type[BottomsRate],
                        tuple[float, float]]:
     """What the search varies: the reflux ratio, or the distillate where that ratio is given; the boil-up ratio of a
