@@ -235,7 +235,8 @@ def flow_shares(setup: RateSetup, state: RateState) -> Shares:
     area = np.broadcast_to(k.area, (c.size,))
 
     def heat(h: Array, flows: Array, cp: Array) -> Array:
-        return np.asarray(h * area / np.maximum((flows * cp).sum(1), 1e-300))
+        conductance = h * area
+        return np.asarray(conductance / np.maximum((flows * cp).sum(1), 1e-9 * conductance))
 
     return Shares(setup.vapor.weight(units_V), setup.liquid.weight(units_L),
                   setup.vapor.temperature_weight(heat(k.h_vapor, state.v[c], vapor.cp[c])),

@@ -207,3 +207,11 @@ def test_progress_is_reported() -> None:
     seen: list[tuple[int, float]] = []
     solve_equilibrium(distillation(), ternary(), progress=lambda i, r: seen.append((i, r)))
     assert [i for i, _ in seen] == list(range(1, len(seen) + 1)) and seen[-1][1] < 1e-9
+
+
+def test_a_gas_that_condenses_needs_another_start() -> None:
+    """A vapour below its dew point on top of a cold liquid: the sum-rates start has no vapour left, boiling liquids do."""
+    column = Column(10, [LiquidFeed(1, [1.0, 10.0, 60.0], 330.0), VaporFeed(10, [60.0, 25.0, 5.0], 340.0)], 2.5e5)
+    profile = solve_equilibrium(column, ternary())
+    closed(profile)
+    assert profile.V[0] > 1.0
