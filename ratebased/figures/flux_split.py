@@ -34,8 +34,9 @@ def flux_split_figure(explanation: FluxExplanation, name: str) -> Figure:
     for ax, film, values, s in zip(axes, (explanation.vapor, explanation.liquid), parts, (share, 1.0 - share)):
         unit = _waterfall(ax, values, float(explanation.N[i]))
         ax.set_xlabel(f"Flux of {name} ({unit})")
-        ax.set_title(f"{film.phase.capitalize()} film: {film.regime[i]} diffusion, {100 * s:.0f} % of the dissipation",
-                     loc="left")
+        ax.annotate(f"{film.phase.capitalize()} film: {film.regime[i]} diffusion, {100 * s:.0f} % of the dissipation",
+                    (0.02, 1.0), (0.0, 4.0), xycoords=("figure fraction", "axes fraction"), textcoords="offset points",
+                    fontweight="bold", annotation_clip=False)
     renderer = renderer_of(figure)
     left = max(text.get_window_extent(renderer).width for ax in axes for text in ax.get_yticklabels()) / figure.dpi
     height = 0.19 * (len(parts[0]) + 1)

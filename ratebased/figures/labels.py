@@ -15,14 +15,16 @@ if TYPE_CHECKING:
 
 Array = NDArray[np.float64]
 
-STEP = 2.0
+STEP = 4.0
 """Spacing of the points that stand for a curve, pixels of the layout."""
 SIGN = 6.5
 """Room for the sign on a curve, pixels."""
+FREE = 3.0
+"""Least room between a name and any other line, pixels."""
 APART = 4.0
 """Room between two names, pixels."""
 NEARER = 1.3
-"""How many times further than its own curve any other must be from a name."""
+"""How many times further than its own curve any other named curve must be from a name."""
 FAR = 16.0
 """Clearance from other curves beyond which more is no better, pixels."""
 GAPS = (7.5, 10.0, 14.0)
@@ -54,8 +56,9 @@ def label_curves(ax: Axes, curves: Sequence[Curve], size: float = SMALL) -> list
         mine = np.concatenate([dense[k] for k in own])
         if not mine.size:
             continue
-        others = [dense[k] for k, curve in enumerate(curves) if curve.name != name]
-        rest = np.concatenate(others) if others else np.empty((0, 2))
+        others = [k for k, curve in enumerate(curves) if curve.name != name]
+        rest = _joined([dense[k] for k in others])
+        rivals = _joined([dense[k] for k in others if curves[k].name])
         text = ax.text(0.0, 0.0, name, fontsize=size, color=curves[own[0]].color, ha="center", va="center")
         extent = text.get_window_extent(renderer)
         half = np.array([extent.width, extent.height]) / 2.0
@@ -64,7 +67,7 @@ def label_curves(ax: Axes, curves: Sequence[Curve], size: float = SMALL) -> list
         for low, high in taken:
             inside &= ~((middle + half + APART > low) & (middle - half - APART < high)).all(-1)
         near, clearance = _clearance(middle, half, mine), _clearance(middle, half, rest)
-        inside &= (near > SIGN) & (clearance > SIGN) & (clearance > NEARER * near)
+        inside &= (near > SIGN) & (clearance > FREE) & (_clearance(middle, half, rivals) > NEARER * near)
         if inside.any():
             score = np.where(inside, np.minimum(clearance, FAR) - near, -np.inf)
             best = middle[int(np.argmax(np.round(score, 6)))]
@@ -75,6 +78,10 @@ def label_curves(ax: Axes, curves: Sequence[Curve], size: float = SMALL) -> list
         text.remove()
         left_out.append(name)
     return left_out
+
+
+def _joined(parts: list[Array]) -> Array:
+    return np.concatenate(parts) if parts else np.empty((0, 2))
 
 
 def _box(text: Any, renderer: Any) -> tuple[Array, Array]:
@@ -95,7 +102,7 @@ def _dense(points: Array) -> Array:
 
 def _candidates(points: Array, half: Array) -> Array:
     """Middles of boxes around points of a curve, (m, 2)."""
-    pick = points[np.unique(np.linspace(0, len(points) - 1, 60).astype(int))]
+    pick = points[np.unique(np.linspace(0, len(points) - 1, 32).astype(int))]
     angle = np.linspace(0.0, 2.0 * np.pi, 8, endpoint=False)
     way = np.round(np.stack((np.cos(angle), np.sin(angle)), -1), 12)
     offsets = np.concatenate([np.sign(way) * half + gap * way for gap in GAPS])

@@ -50,7 +50,7 @@ def profile_figure(equilibrium: Profile, ratebased: Profile) -> Figure:
         curves.append(_compositions(ax, number, phase, equilibrium, ratebased))
     for ax in axes[1:]:
         ax.set_ylabel("")
-    _feeds(axes, number, ratebased)
+    joins = _feeds(axes, number, ratebased)
     handles = [_sign("black", "o", "-", "black", "rate-based"),
                _sign("black", "o", EQUILIBRIUM_DASH, "white", "equilibrium stages")]
     handles += [_sign(mark(i).color, mark(i).marker, "none", mark(i).color, name)
@@ -58,7 +58,8 @@ def profile_figure(equilibrium: Profile, ratebased: Profile) -> Figure:
     finish(figure, stage_height(number.size, 0.15), right=0.4, handles=handles)
     figure.set_label("Temperatures and compositions by stage, equilibrium-stage and rate-based")
     for ax, drawn in zip(axes, curves):
-        label_curves(ax, drawn)
+        low, high = ax.get_xlim()
+        label_curves(ax, [*drawn, *(Curve("", np.array([[low, j], [high, j]])) for j in joins)])
     return figure
 
 
@@ -112,8 +113,8 @@ def _compositions(ax: Axes, number: NDArray[np.int64], phase: str, equilibrium: 
     return curves
 
 
-def _feeds(axes: Any, number: NDArray[np.int64], profile: Profile) -> None:
-    """A thin line where a feed joins."""
+def _feeds(axes: Any, number: NDArray[np.int64], profile: Profile) -> list[int]:
+    """A thin line where a feed joins; returns the stages."""
     joins = np.flatnonzero((profile.feeds.vapor + profile.feeds.liquid).sum(-1) > 0)
     for ax in axes:
         for j in joins:
@@ -121,3 +122,4 @@ def _feeds(axes: Any, number: NDArray[np.int64], profile: Profile) -> None:
     for j in joins:
         axes[-1].text(1.01, number[j], "feed", transform=axes[-1].get_yaxis_transform(), fontsize=SMALL, ha="left",
                       va="center", color=GREY)
+    return [int(number[j]) for j in joins]

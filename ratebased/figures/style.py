@@ -31,7 +31,7 @@ PALE = "#e4e4e4"
 
 STYLE: dict[str, Any] = {
     "font.family": "sans-serif", "font.sans-serif": ["DejaVu Sans"], "font.size": 8.5,
-    "mathtext.fontset": "dejavusans", "text.usetex": False, "axes.unicode_minus": True,
+    "text.hinting": "no_hinting", "mathtext.fontset": "dejavusans", "text.usetex": False, "axes.unicode_minus": True,
     "axes.titlesize": 8.5, "axes.titleweight": "bold", "axes.labelsize": 8.5, "axes.linewidth": 0.7,
     "axes.spines.top": False, "axes.spines.right": False, "axes.axisbelow": True, "axes.grid": False,
     "axes.edgecolor": "black", "axes.labelcolor": "black", "axes.facecolor": "white", "axes.titlepad": 4.0,

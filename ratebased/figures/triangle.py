@@ -71,9 +71,9 @@ def triangle_figure(source: EfficiencyTable | Profile, *, stage: int | None = No
         for phase, film in (("Vapour", path.vapor_film), ("Liquid", path.liquid_film)):
             zoom = figure.add_axes((0.0, 0.0, 1.0, 1.0))
             zooms.append((zoom, _film(zoom, phase, _part(film, pick), names, stage, path.straight)))
-    large, small = SIDE * HEIGHT + 0.75, (SMALL_SIDE * HEIGHT + 0.95) if zooms else 0.0
+    large, small = SIDE * HEIGHT + 0.95, (SMALL_SIDE * HEIGHT + 0.95) if zooms else 0.0
     bottom, top = finish(figure, large + small, bottom=0.0, handles=handles, notes=_notes(path, pick))
-    _settle(figure, ax, (0.0, top - large, WIDE, top - 0.02), SIDE, 0.5)
+    _settle(figure, ax, (0.0, top - large, WIDE, top - 0.02), SIDE, 0.55)
     for k, (zoom, _) in enumerate(zooms):
         _settle(figure, zoom, (0.5 * WIDE * k, bottom, 0.5 * WIDE * (k + 1), bottom + small), SMALL_SIDE, 0.45)
     figure.set_label("Composition triangle: stage path and tie lines" + (f", films of stage {stage}" if stage else ""))

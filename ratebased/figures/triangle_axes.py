@@ -9,6 +9,8 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
+from .style import folded
+
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
 
@@ -79,9 +81,9 @@ class Triangle:
             ax.text(x, y, text, fontsize=size, rotation=turn, ha="center", va="center", rotation_mode="anchor")
         if corners:
             for x, y, name, ha, va in ((0.5, HEIGHT + 0.06 * inch, names[0], "center", "bottom"),
-                                       (0.0, -0.1 * inch, names[1], "center", "top"),
-                                       (1.0, -0.1 * inch, names[2], "center", "top")):
-                ax.text(x, y, name, fontsize=size + 0.5, fontweight="bold", ha=ha, va=va)
+                                       (-0.08 * inch, -0.21 * inch, names[1], "center", "top"),
+                                       (1.0 + 0.08 * inch, -0.21 * inch, names[2], "center", "top")):
+                ax.text(x, y, folded(name, 1.3), fontsize=size + 0.5, fontweight="bold", ha=ha, va=va)
         return [frame[m:m + 2] for m in range(3)]
 
 
