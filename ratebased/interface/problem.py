@@ -14,6 +14,8 @@ from .records import Bulk
 
 Array = NDArray[np.float64]
 
+ABUNDANT = 1e-3
+"""Mole fraction a component must have in both phases of every interface of a batch to be left out of both films."""
 MARGIN = 0.05
 """K, how far iterates of T_I keep from the ends of a property model's range."""
 
@@ -24,8 +26,9 @@ class InterfaceProblem:
 
     flux_scale : a typical c kappa of the two films in series, mol/(m2 s). energy_scale : of the energy row, W/m2: the
     largest latent heat times that flux, plus what both films conduct at one kelvin (so that neither a tiny nor a huge
-    h spoils the row). rows: the film equations. `ideal_*`: [Gamma] is the identity for every composition probed, so it
-    is not asked for again.
+    h spoils the row). rows : the film equations. pivot_* : the component left out of those of each film, the one that
+    is nowhere a trace (a trace would lose its digits). ideal_* : [Gamma] is the identity for every composition probed,
+    so it is not asked for again.
     """
 
     properties: PropertyModel
@@ -43,6 +46,8 @@ class InterfaceProblem:
     flux_scale: Array
     energy_scale: Array
     rows: FilmRows
+    pivot_vapor: int
+    pivot_liquid: int
     ideal_vapor: bool
     ideal_liquid: bool
 
@@ -101,10 +106,19 @@ def prepare(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: Array, film
     h_V, h_L = np.asarray(vapor.heat_transfer, float), np.asarray(liquid.heat_transfer, float)
     latent = np.abs(H_V - H_L).max(-1)
     return InterfaceProblem(properties, P, y, x, T_V, T_L, h_V, h_L, K_V, K_L, H_V, H_L, flux_scale,
-                            latent * flux_scale + h_V + h_L, rows_of(film),
+                            latent * flux_scale + h_V + h_L, rows_of(film), *_pivots(y, x),
                             _always_ideal(getattr(properties, "vapor_thermodynamic_factor", None), T_V, P, y,
                                           properties.volatile),
                             _always_ideal(properties.thermodynamic_factor, T_L, P, x, properties.condensable))
+
+
+def _pivots(y: Array, x: Array) -> tuple[int, int]:
+    """The component left out of the rows of each film: one abundant in both phases, else in its own."""
+    smallest = [c.reshape(-1, c.shape[-1]).min(0, initial=1.0) for c in (y, x)]
+    common = np.minimum(*smallest)
+    if common.max() > ABUNDANT:
+        return int(common.argmax()), int(common.argmax())
+    return int(smallest[0].argmax()), int(smallest[1].argmax())
 
 
 def _always_ideal(factor: Any, T: Array, P: Array, composition: Array, mask: Mask) -> bool:
