@@ -210,7 +210,9 @@ def test_progress_is_reported() -> None:
 
 
 def test_a_gas_that_condenses_needs_another_start() -> None:
-    """A vapour below its dew point on top of a cold liquid: the sum-rates start has no vapour left, boiling liquids do."""
+    """A vapour below its dew point on top of a cold liquid: the sum-rates start has no vapour left, boiling liquids
+    do.
+    """
     column = Column(10, [LiquidFeed(1, [1.0, 10.0, 60.0], 330.0), VaporFeed(10, [60.0, 25.0, 5.0], 340.0)], 2.5e5)
     profile = solve_equilibrium(column, ternary())
     closed(profile)
