@@ -44,9 +44,9 @@ def tray_from_leaving_liquid(point: FrothPoint, liquid_flow: Array, properties: 
                              stretches: int = STRETCHES) -> TrayResult:
     """What leaves a tray whose leaving liquid (point.x, point.T_L, `liquid_flow` mol/s before draws) is known.
 
-    One batch axis. The froth over the leaving liquid by `method`; then upstream in at most `stretches` stretches, each by the
-    linearised response of the froth at its outlet (`mixing.mixed_tray`), the liquid on its bubble line; the few trays
-    this carries out of bounds are marched pool by pool (`march_upstream`). A well-mixed tray is its point.
+    One batch axis. The froth over the leaving liquid by `method`; then upstream in at most `stretches` stretches, each
+    by the linearised response of the froth at its outlet (`mixing.mixed_tray`), the liquid on its bubble line; the few
+    trays this carries out of bounds are marched pool by pool (`march_upstream`). A well-mixed tray is its point.
     """
     froth = method(point, properties, local=local)
     transferred, energy = np.zeros_like(froth.transferred), np.zeros_like(froth.energy)
