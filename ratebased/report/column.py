@@ -13,6 +13,9 @@ from ..equipment import Section as HardwareSection
 from .blocks import Block, Bullets, Cell, Mark, Paragraph, Report, Section, Table, figures, words
 from .common import correlations_section, inputs_section, pictures
 
+FRACTION = ".4f"
+SMALL = 0.01
+"""Largest figure of a row of fractions below which four decimals would hide it."""
 SHORT = {ONE_EFFICIENCY: "one E", FED_BACK: "fed back", RATE_BASED: "rate-based"}
 
 
@@ -38,6 +41,8 @@ def products_table(comparison: Comparison) -> Table:
             continue
         label, form, scale = _figure_words(str(column), names)
         values = [None if value is None else float(value) * scale for value in frame[column]]
+        if form == FRACTION and 0 < max(value or 0.0 for value in values) < SMALL:
+            form = ".3e"
         cells = figures(values, form)
         if column == "contact_stages_needed":
             cells = tuple(cell if cell.text else Cell("not reached", Mark.BLANK) for cell in cells)
@@ -45,7 +50,7 @@ def products_table(comparison: Comparison) -> Table:
     name, product, purity = comparison.purity
     caption = f"One efficiency: {comparison.efficiency:.3f} ({comparison.efficiency_source})."
     if counted:
-        caption += f" Contact stages needed for {purity:.4f} {name} in the {product} product."
+        caption += f" Contact stages needed for a mole fraction of {purity:.4g} {name} in the {product} product."
     return Table(("", *(SHORT[model] for model in frame.index)), tuple(rows), caption)
 
 
@@ -56,8 +61,8 @@ def _figure_words(column: str, names: Sequence[str]) -> tuple[str, str, float]:
         return f"{column.removesuffix('_duty_W')} duty / kW", ".1f", 1e-3
     product, kind, name = column.split("_", 2)
     if kind == "recovery":
-        return f"{name}, share of the feed in the {product} product", ".4f", 1.0
-    return f"{name} in the {product} product, mole fraction", ".4f", 1.0
+        return f"{name}, share of the feed in the {product} product", FRACTION, 1.0
+    return f"{name} in the {product} product, mole fraction", FRACTION, 1.0
 
 
 def _comparison(comparison: Comparison) -> Section:
