@@ -131,7 +131,7 @@ def _panels(number: NDArray[np.int64], series: list[_Series], window: tuple[floa
         if k >= len(series):
             ax.set_visible(False)
             continue
-        _panel(ax, number, series[k], low, high, band)
+        _panel(ax, number, series[k], intervals, low, high, band)
         ax.xaxis.set_major_locator(MaxNLocator(nbins=6 if columns < 4 else 4, steps=[1, 2, 5, 10]))
         for line in lines:
             ax.axvline(line, color=GREY, linewidth=0.8, zorder=0.6)
@@ -163,7 +163,8 @@ def _limits(series: list[_Series], window: tuple[float, float], lines: tuple[flo
     return float(low - pad), float(high + pad)
 
 
-def _panel(ax: Axes, number: NDArray[np.int64], s: _Series, low: float, high: float, band: float) -> None:
+def _panel(ax: Axes, number: NDArray[np.int64], s: _Series, intervals: bool, low: float, high: float,
+           band: float) -> None:
     """Draw one component."""
     stage_axis(ax, number)
     ax.set_xlim(low - band, high)
@@ -178,7 +179,8 @@ def _panel(ax: Axes, number: NDArray[np.int64], s: _Series, low: float, high: fl
         cut = s.spread & ((end < low) | (end > high))
         ax.plot(np.clip(end[cut], low, high), number[cut], linestyle="none", marker=sign, markersize=3.5,
                 color="black", zorder=2.4, clip_on=False)
-    for where, face in ((inside & s.spread, "black"), (inside & ~s.spread, "white")):
+    plain = inside & (s.spread | (not intervals))
+    for where, face in ((plain, "black"), (inside & ~plain, "white")):
         ax.plot(s.value[where], number[where], linestyle="none", marker="o", markersize=4.0, color="black",
                 markerfacecolor=face, zorder=2.6)
     ax.plot(np.full(s.void.sum(), low - 0.5 * band), number[s.void], linestyle="none", marker="x", color="black",
@@ -200,8 +202,8 @@ def _signs(series: list[_Series], intervals: bool, void: str, low: float, high: 
     handles = []
     if any((s.sound & s.spread).any() for s in series):
         handles.append(sign("o", "black", "value, 5 to 95 % interval", "-"))
-    if any((s.sound & ~s.spread).any() for s in series):
-        handles.append(sign("o", "white", "value, interval undefined" if intervals else "value"))
+    if intervals and any((s.sound & ~s.spread).any() for s in series):
+        handles.append(sign("o", "white", "value, interval undefined"))
     if any(s.void.any() for s in series):
         handles.append(sign("x", "black", void))
     if any((s.spread & ((s.low < low) | (s.high > high))).any() for s in series):

@@ -97,9 +97,13 @@ def _temperatures(ax: Axes, number: NDArray[np.int64], equilibrium: Profile, rat
 
 def _compositions(ax: Axes, number: NDArray[np.int64], phase: str, equilibrium: Profile,
                   ratebased: Profile) -> list[Curve]:
+    from matplotlib.ticker import MaxNLocator
+
     stage_axis(ax, number)
-    ax.set_xlim(-0.03, 1.03)
-    ax.set_xticks([0.0, 0.5, 1.0], ["0", "0.5", "1"])
+    top = max(float(z.max()) for profile in (equilibrium, ratebased) for z in (profile.x, profile.y))
+    right = min(1.3 * top, 1.0)
+    ax.set_xlim(-0.03 * right, 1.03 * right)
+    ax.xaxis.set_major_locator(MaxNLocator(nbins=4, steps=[1, 2, 5, 10]))
     ax.set_xlabel(f"Mole fraction, {phase} (–)")
     curves = []
     for i, name in enumerate(ratebased.names):

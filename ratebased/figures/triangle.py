@@ -71,11 +71,11 @@ def triangle_figure(source: EfficiencyTable | Profile, *, stage: int | None = No
         for phase, film in (("Vapour", path.vapor_film), ("Liquid", path.liquid_film)):
             zoom = figure.add_axes((0.0, 0.0, 1.0, 1.0))
             zooms.append((zoom, _film(zoom, phase, _part(film, pick), names, stage, path.straight)))
-    large, small = SIDE * HEIGHT + 0.95, (SMALL_SIDE * HEIGHT + 0.95) if zooms else 0.0
+    large, small = SIDE * HEIGHT + 0.95, (SMALL_SIDE * HEIGHT + 1.15) if zooms else 0.0
     bottom, top = finish(figure, large + small, bottom=0.0, handles=handles, notes=_notes(path, pick))
     _settle(figure, ax, (0.0, top - large, WIDE, top - 0.02), SIDE, 0.55)
     for k, (zoom, _) in enumerate(zooms):
-        _settle(figure, zoom, (0.5 * WIDE * k, bottom, 0.5 * WIDE * (k + 1), bottom + small), SMALL_SIDE, 0.45)
+        _settle(figure, zoom, (0.5 * WIDE * k, bottom, 0.5 * WIDE * (k + 1), bottom + small), SMALL_SIDE, 0.6)
     figure.set_label("Composition triangle: stage path and tie lines" + (f", films of stage {stage}" if stage else ""))
     label_curves(ax, _apart(ax, labels))
     for zoom, curves in zooms:
@@ -210,7 +210,7 @@ def _film(ax: Axes, phase: str, film: Array, names: Sequence[str], stage: int, s
     sign = "s" if phase == "Vapour" else "o"
     ax.plot(*bulk, marker=sign, color=mark(2).color, markersize=5.5, zorder=2.5)
     ax.plot(*face, marker="D", color=mark(2).color, markerfacecolor="white", markersize=5.0, zorder=2.5)
-    ax.text(0.5, HEIGHT + 0.14 / SMALL_SIDE, f"{phase} film of stage {stage} (× {_times(part.side)})",
+    ax.text(0.5, HEIGHT + 0.2 / SMALL_SIDE, f"{phase} film of stage {stage} (× {_times(part.side)})",
             fontsize=SMALL, fontweight="bold", ha="center", va="bottom")
     return [*(Curve("", a) for a in (line, chord, *obstacles)), Curve("bulk", bulk[None]), Curve("interface",
                                                                                                 face[None])]

@@ -73,12 +73,15 @@ class Triangle:
                 ax.text(x, y, f"{tick * step:.{decimals}f}", fontsize=size - 0.5, ha=_side(way[0]),
                         va="center" if abs(way[1]) < 0.1 else ("center_baseline" if way[1] > 0 else "top"))
         ax.plot(*frame.T, color="black", linewidth=0.9, zorder=0.8)
-        wide = (0.25 + (1.5 + decimals) * 0.6 * size / 72.0) * inch
-        deep = 0.36 * inch
-        for x, y, turn, text in ((0.25 - wide * HEIGHT, 0.5 * (HEIGHT + wide), 60.0, f"{names[0]} (–) →"),
-                                 (0.5, -deep, 0.0, f"← {names[1]} (–)"),
-                                 (0.75 + wide * HEIGHT, 0.5 * (HEIGHT + wide), -60.0, f"{names[2]} (–) →")):
-            ax.text(x, y, text, fontsize=size, rotation=turn, ha="center", va="center", rotation_mode="anchor")
+        wide = (0.16 + (1.5 + decimals) * 0.6 * size / 72.0) * inch
+        deep = 0.3 * inch
+        first, second, third = (folded(name, 1.0 / inch - 0.28) for name in names)
+        up = 0.42  # of the way up a side: titles keep clear of what is written above the top
+        for x, y, turn, text in ((0.5 * up - wide * HEIGHT, HEIGHT * up + 0.5 * wide, 60.0, f"{first} (–) →"),
+                                 (0.5, -deep, 0.0, f"← {second} (–)"),
+                                 (1.0 - 0.5 * up + wide * HEIGHT, HEIGHT * up + 0.5 * wide, -60.0, f"{third} (–) →")):
+            ax.text(x, y, text, fontsize=size, rotation=turn, ha="center", va="bottom" if turn else "top",
+                    rotation_mode="anchor", linespacing=1.05)
         if corners:
             for x, y, name, ha, va in ((0.5, HEIGHT + 0.06 * inch, names[0], "center", "bottom"),
                                        (-0.08 * inch, -0.21 * inch, names[1], "center", "top"),
