@@ -1,5 +1,5 @@
 """Distillation and absorption columns: equilibrium-stage and rate-based, side by side."""
-from .back_calculation import EfficiencyTable, HeightTable
+from .back_calculation import ColumnEfficiencies, ColumnHeights
 from .compare import Comparison, compare, feed_back_error
 from .contact import Averaged, FlowPattern, Mixed, Plug
 from .definition import (
@@ -35,9 +35,9 @@ from .specifications import (
 from .stage_system import Entering, StageBlocks, StageUnknowns, stage_residuals
 
 __all__ = [
-    "Averaged", "BoilupRatio", "BottomsRate", "Column", "Comparison", "ComponentRecovery", "CondenserDuty",
-    "ContactRecord", "ContactorPressure", "DistillateRate", "EfficiencyTable", "Entering", "EntropyProduction", "Feed",
-    "FlashResult", "FlowPattern", "GridRefinement", "HeightTable", "LiquidDraw", "LiquidFeed", "Mixed",
+    "Averaged", "BoilupRatio", "BottomsRate", "Column", "ColumnEfficiencies", "ColumnHeights", "Comparison",
+    "ComponentRecovery", "CondenserDuty", "ContactRecord", "ContactorPressure", "DistillateRate", "Entering",
+    "EntropyProduction", "Feed", "FlashResult", "FlowPattern", "GridRefinement", "LiquidDraw", "LiquidFeed", "Mixed",
     "PartialCondenser", "Plug", "Product", "ProductPurity", "ProductStream", "Profile", "Reboiler", "ReboilerDuty",
     "RefluxRatio", "SolutionReport", "StageBlocks", "StageUnknowns", "TotalCondenser", "VaporDraw", "VaporFeed",
     "column_from_mapping", "column_from_table", "compare", "feed_back_error", "flash", "refine_grid", "resized",

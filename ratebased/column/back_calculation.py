@@ -21,7 +21,7 @@ if TYPE_CHECKING:
 
 
 @dataclass(frozen=True, eq=False)
-class EfficiencyTable:
+class ColumnEfficiencies:
     """Component efficiencies of the C contact stages of a column of S stages.
 
     stage: numbers, (C,). basis: temperature at which the equilibrium vapour y* of the leaving liquid is taken.
@@ -118,8 +118,8 @@ def equilibrium_state(profile: Profile, properties: PropertyModel, at_liquid_tem
     return EfficiencyBasis.LIQUID_TEMPERATURE, y, T_L
 
 
-def efficiency_table(profile: Profile, *, limit: float = 0.01, at_liquid_temperature: bool | None = None,
-                     properties: PropertyModel | None = None) -> EfficiencyTable:
+def column_efficiencies(profile: Profile, *, limit: float = 0.01, at_liquid_temperature: bool | None = None,
+                     properties: PropertyModel | None = None) -> ColumnEfficiencies:
     """Back-calculated component efficiencies of a column.
 
     Parameters
@@ -146,13 +146,13 @@ def efficiency_table(profile: Profile, *, limit: float = 0.01, at_liquid_tempera
     T_L, T_V = profile.T_L[c], profile.T_V[c]
     K = model.k_value(T_L, profile.P[c], profile.x[c], y)
     eta = vaporization(K, profile.x[c], y, ordinary)          # zero where a trace is lost in rounding
-    return EfficiencyTable(profile.names, profile.stages, c + 1, basis, murphree, flagged, y_in, y, y_star,
+    return ColumnEfficiencies(profile.names, profile.stages, c + 1, basis, murphree, flagged, y_in, y, y_star,
                            np.where(eta > 0, eta, 1.0), T_V - T_L, T, T_L, T_V,
                            np.argmax(np.where(ordinary, y, -1.0), -1), ordinary)
 
 
 @dataclass(frozen=True, eq=False)
-class HeightTable:
+class ColumnHeights:
     """Heights of a packed bed by component, (C, n), over its C segments.
 
     hetp: height equivalent to a theoretical plate, m, blank (NaN) where flagged. stages: N_eq of each segment.
@@ -184,7 +184,7 @@ class HeightTable:
         return pd.DataFrame(columns)
 
 
-def height_table(profile: Profile, *, limit: float = 0.01, properties: PropertyModel | None = None) -> HeightTable:
+def column_heights(profile: Profile, *, limit: float = 0.01, properties: PropertyModel | None = None) -> ColumnHeights:
     """Component HETPs of a packed bed from its rate-based profile.
 
     A segment of height Z is E_i of a plate (Murphree, y* of the leaving liquid); N_eq,i = ln(1 + E_i (S_i - 1))/ln S_i
@@ -198,7 +198,7 @@ def height_table(profile: Profile, *, limit: float = 0.01, properties: PropertyM
         raise InputError("profile: no segment height, trays have efficiencies instead of an HETP")
     model = profile.model_or(properties)
     c = profile.contact_index
-    table = efficiency_table(profile, limit=limit, properties=model)
+    table = column_efficiencies(profile, limit=limit, properties=model)
     l_in = profile.entering_liquid()[c]
     x_in = l_in / l_in.sum(-1, keepdims=True)
     at_own = table.basis is EfficiencyBasis.LIQUID_TEMPERATURE
@@ -223,4 +223,4 @@ def height_table(profile: Profile, *, limit: float = 0.01, properties: PropertyM
         good &= stages > 0
     Z = profile.height[c]
     stages = np.where(good, stages, np.nan)
-    return HeightTable(profile.names, c + 1, Z, Z[:, None] / stages, stages, S, ~good)
+    return ColumnHeights(profile.names, c + 1, Z, Z[:, None] / stages, stages, S, ~good)

@@ -13,7 +13,7 @@ from correlations.overall import oconnell, oconnell_absorber
 
 from ..errors import ConvergenceError, InputError
 from ..properties.protocol import Array, PropertyModel
-from .back_calculation import EfficiencyTable
+from .back_calculation import ColumnEfficiencies
 from .contact import ContactorLayout, FlowPattern
 from .definition import Column
 from .equilibrium import solve_equilibrium
@@ -45,7 +45,7 @@ class Comparison:
     profiles: dict[str, Profile]
     efficiency: float
     efficiency_source: str
-    table: EfficiencyTable
+    table: ColumnEfficiencies
     differences: tuple[str, ...]
     purity: tuple[str, str, float]
     stages_needed: dict[str, int | None]
@@ -150,7 +150,7 @@ def key_components(profile: Profile) -> tuple[int, int]:
     return int(order[k]), int(order[k + 1])
 
 
-def _rule_of_thumb(profile: Profile, table: EfficiencyTable, properties: PropertyModel, light: int, heavy: int
+def _rule_of_thumb(profile: Profile, table: ColumnEfficiencies, properties: PropertyModel, light: int, heavy: int
                    ) -> tuple[float, str]:
     if profile.height is not None:
         return float(np.nanmedian(table.murphree)), "median of the segments' component efficiencies"

@@ -17,7 +17,7 @@ from .feeds import StageFeeds
 if TYPE_CHECKING:
     import pandas as pd
 
-    from .back_calculation import EfficiencyTable, HeightTable
+    from .back_calculation import ColumnEfficiencies, ColumnHeights
     from .entropy import EntropyProduction
 
 FORMAT = "column profile 1"
@@ -174,15 +174,15 @@ class Profile:
 
     # ------------------------------------------------------------------------------------------- what follows from it
     def efficiency(self, *, limit: float = 0.01, at_liquid_temperature: bool | None = None,
-                   properties: PropertyModel | None = None) -> EfficiencyTable:
-        """Back-calculated component efficiencies of the contact stages; see `back_calculation.efficiency_table`."""
-        from .back_calculation import efficiency_table
-        return efficiency_table(self, limit=limit, at_liquid_temperature=at_liquid_temperature, properties=properties)
+                   properties: PropertyModel | None = None) -> ColumnEfficiencies:
+        """Back-calculated component efficiencies of the contact stages; see `back_calculation.column_efficiencies`."""
+        from .back_calculation import column_efficiencies
+        return column_efficiencies(self, limit=limit, at_liquid_temperature=at_liquid_temperature, properties=properties)
 
-    def hetp(self, *, limit: float = 0.01, properties: PropertyModel | None = None) -> HeightTable:
-        """Heights equivalent to a theoretical plate of each component; see `back_calculation.height_table`."""
-        from .back_calculation import height_table
-        return height_table(self, limit=limit, properties=properties)
+    def hetp(self, *, limit: float = 0.01, properties: PropertyModel | None = None) -> ColumnHeights:
+        """Heights equivalent to a theoretical plate of each component; see `back_calculation.column_heights`."""
+        from .back_calculation import column_heights
+        return column_heights(self, limit=limit, properties=properties)
 
     def entropy_production(self, *, properties: PropertyModel | None = None) -> EntropyProduction:
         """Entropy produced on each contact stage, W/K, by cause; see `entropy.entropy_production`."""

@@ -11,7 +11,6 @@ from dataclasses import dataclass, fields, replace
 import numpy as np
 from numpy.typing import NDArray
 from scipy.special import ndtri
-from scipy.stats import qmc
 
 from correlations.gas_diffusivity import fuller
 from correlations.liquid_diffusivity import wilke_chang
@@ -206,6 +205,8 @@ def sample_rows(profile: StageProfile, hardware: Hardware, properties: PropertyM
 
     The froth by the fast default whatever `options` say of the point.
     """
+    from scipy.stats import qmc  # slow to import, and only needed here
+
     options = replace(options or RatingOptions(), point=RatingOptions().point)
     rows, entering = entering_streams(profile, properties)
     n, R, S = len(profile.names), rows.size, uncertainty.samples
