@@ -13,8 +13,8 @@ from ..efficiency import EfficiencyTable, equilibrium_vapor
 from ..errors import InputError
 from .efficiencies import _table
 from .labels import Curve, label_curves
-from .style import GREY, SMALL, finish, mark, new_figure, styled
-from .triangle_axes import HEIGHT, Triangle
+from .style import GREY, SMALL, finish, folded, mark, new_figure, styled
+from .triangle_axes import CORNER, HEIGHT, Triangle
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -71,7 +71,8 @@ def triangle_figure(source: EfficiencyTable | Profile, *, stage: int | None = No
         for phase, film in (("Vapour", path.vapor_film), ("Liquid", path.liquid_film)):
             zoom = figure.add_axes((0.0, 0.0, 1.0, 1.0))
             zooms.append((zoom, _film(zoom, phase, _part(film, pick), names, stage, path.straight)))
-    large, small = SIDE * HEIGHT + 0.95, (SMALL_SIDE * HEIGHT + 1.15) if zooms else 0.0
+    lines = folded(names[0], CORNER).count("\n") + 1
+    large, small = SIDE * HEIGHT + 0.66 + 0.16 * lines, (SMALL_SIDE * HEIGHT + 1.15) if zooms else 0.0
     bottom, top = finish(figure, large + small, bottom=0.0, handles=handles, notes=_notes(path, pick))
     _settle(figure, ax, (0.0, top - large, WIDE, top - 0.02), SIDE, 0.55)
     for k, (zoom, _) in enumerate(zooms):
@@ -230,6 +231,8 @@ def _notes(path: _Path, pick: NDArray[np.intp]) -> list[str]:
                  f"{', '.join(path.names[i] for i in rest)} (together up to {most:.2g} of a phase). Numbers at the "
                  "path: stages from the top."]
     if path.vapor_film is not None:
-        notes.append("Films: filled, the bulk; hollow, the interface; "
-                     + ("a straight line joins them." if path.straight else "dotted, the straight line between them."))
+        notes.append("Films: filled, the bulk; hollow, the interface; " + (
+            "a straight line joins them." if path.straight else
+            "dotted, the straight line between them; in the middle of the froth over the leaving liquid, or of the "
+            "segment."))
     return [" ".join(notes)]

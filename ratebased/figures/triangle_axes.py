@@ -17,6 +17,8 @@ if TYPE_CHECKING:
 Array = NDArray[np.float64]
 
 HEIGHT = sqrt(3.0) / 2.0
+CORNER = 1.3
+"""Width of a name at a corner, inch."""
 SMALLEST = 1e-4
 """Side of the smallest triangle drawn: below it a path is a point."""
 
@@ -86,7 +88,7 @@ class Triangle:
             for x, y, name, ha, va in ((0.5, HEIGHT + 0.06 * inch, names[0], "center", "bottom"),
                                        (-0.08 * inch, -0.21 * inch, names[1], "center", "top"),
                                        (1.0 + 0.08 * inch, -0.21 * inch, names[2], "center", "top")):
-                ax.text(x, y, folded(name, 1.3), fontsize=size + 0.5, fontweight="bold", ha=ha, va=va)
+                ax.text(x, y, folded(name, CORNER), fontsize=size + 0.5, fontweight="bold", ha=ha, va=va)
         return [frame[m:m + 2] for m in range(3)]
 
 
