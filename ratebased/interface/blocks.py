@@ -246,10 +246,10 @@ def energies(p: InterfaceProblem, N: Array, T: Array, bulk_derivatives: bool) ->
     bulk_V = bulk_L = by_V = by_L = None
     if bulk_derivatives:
         bulk_V, bulk_L = vapor_heat_capacity(model, p.T_V, p.P, p.y), liquid_heat_capacity(model, p.T_L, p.P, p.x)
-        by_V = enthalpy_by_composition(model.vapor_enthalpy, np.stack(np.broadcast_arrays(p.T_V, T)), p.P, p.y,
-                                       p.volatile)
-        by_L = enthalpy_by_composition(model.liquid_enthalpy, np.stack(np.broadcast_arrays(p.T_L, T)), p.P, p.x,
-                                       p.condensable)
+        by_V = enthalpy_by_composition(model.vapor_enthalpy, getattr(model, "vapor_enthalpy_derivatives", None),
+                                       np.stack(np.broadcast_arrays(p.T_V, T)), p.P, p.y, p.volatile)
+        by_L = enthalpy_by_composition(model.liquid_enthalpy, getattr(model, "liquid_enthalpy_derivatives", None),
+                                       np.stack(np.broadcast_arrays(p.T_L, T)), p.P, p.x, p.condensable)
     return (film_energy(N, T, p.T_V, p.h_V, p.H_V, H_V, slope_V, 1, slope_bulk=bulk_V,
                         H_bulk_composition=None if by_V is None else by_V[0],
                         H_interface_composition=None if by_V is None else by_V[1]),

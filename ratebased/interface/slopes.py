@@ -15,6 +15,7 @@ from ..properties.protocol import Mask
 
 Array = NDArray[np.float64]
 Property = Callable[[Array, Array, Array], Array]
+OwnDerivatives = Callable[[Array, Array, Array], Array | None]
 
 MOLE_STEP = 2e-5
 TEMPERATURE_STEP = 0.02
@@ -55,13 +56,21 @@ def factor_and_slopes(factor: Property, T: Array, P: Array, composition: Array, 
     return values[0], np.moveaxis(by_mole[:-1] - by_mole[-1], 0, -3), by_temperature
 
 
-def enthalpy_by_composition(enthalpy: Property, T: Array, P: Array, composition: Array, mask: Mask) -> Array | None:
+def enthalpy_by_composition(enthalpy: Property, own: OwnDerivatives | None, T: Array, P: Array, composition: Array,
+                            mask: Mask) -> Array | None:
     """dH_i/dc_j along e_j - e_n, J/mol, (..., n, n), last column zero; T may be a stack (k, ...).
 
-    None where no entry depends on composition.
+    own: the model's method for the mole-number derivatives, where it has one; else differences. None where no entry
+    depends on composition.
     """
     T, composition = _same_batch(T, composition)
     n = composition.shape[-1]
+    if own is not None:
+        given = own(T, P, composition)
+        if given is None or not given.any():
+            return None
+        by_mole = np.where(mask, given, 0.0)
+        return np.asarray(by_mole - by_mole[..., -1:])
     components, moved = _stack(composition, mask)
     H = np.asarray(enthalpy(np.stack([T] * (1 + len(moved))), P, np.stack([composition, *moved])))
     if not (H[1:] != H[0]).any():

@@ -60,10 +60,13 @@ class PropertyModel(Protocol):
 
     Masks: a component that is not `condensable` never enters the liquid (x = 0, N = 0), one that is not `volatile`
     never enters the vapour. `k_value` gives 0 for both (a placeholder: the masks decide).
-    Optional methods, used where present: `k_value_derivatives(T, P, x, y) -> KDerivatives`,
+    Optional methods, used where present: `k_value_derivatives(T, P, x, y) -> KDerivatives`;
     `vapor_heat_capacity(T, P, y)`, `liquid_heat_capacity(T, P, x)` (partial molar, dH_i/dT at constant composition,
-    (..., n)), `vapor_thermodynamic_factor(T, P, y)` (identity without it). Optional attribute: `T_range`
-    (low, high), K, outside which the model raises `PropertyRangeError`; solvers keep their iterates inside it.
+    (..., n)); `vapor_thermodynamic_factor(T, P, y)` (identity without it); `vapor_enthalpy_derivatives(T, P, y)`,
+    `liquid_enthalpy_derivatives(T, P, x)` (mole-number derivatives of the partial molar enthalpies, (..., n, n), None
+    where they do not depend on composition; differences stand in for any that is missing).
+    Optional attribute: `T_range` (low, high), K, outside which the model raises `PropertyRangeError`; solvers keep
+    their iterates inside it.
     """
 
     @property

@@ -18,6 +18,7 @@ from .mixture import (
     StageProperties,
     SurfaceTension,
     excess_enthalpy,
+    excess_enthalpy_derivatives,
     excess_heat_capacity,
     spread,
     thermodynamic_factor,
@@ -151,6 +152,19 @@ class ThermoProperties(MixtureModel):
         basis = self._bank.basis(T)
         pure = self._gas_enthalpy(basis)[0] - self._pure.enthalpy_below_gas(basis, T, P)
         return pure + excess_enthalpy(T, self.activity.ln_gamma(T, x, 1))
+
+    def vapor_enthalpy_derivatives(self, T: ArrayLike, P: ArrayLike, y: ArrayLike) -> Array | None:
+        """Mole-number derivatives of the vapour's partial molar enthalpies, J/mol, (..., n, n); ideal gas: None."""
+        if self._vapor is None:
+            return None
+        T, P, y = np.asarray(T, float), np.asarray(P, float), self._checked("y", y)
+        vapor = self._vapor
+        return excess_enthalpy_derivatives(T, lambda T: vapor.mole_number_derivatives(T, P, y))
+
+    def liquid_enthalpy_derivatives(self, T: ArrayLike, P: ArrayLike, x: ArrayLike) -> Array:
+        """Mole-number derivatives of the liquid's partial molar enthalpies, J/mol, (..., n, n)."""
+        T, x = np.asarray(T, float), self._liquid_composition(x)
+        return excess_enthalpy_derivatives(T, lambda T: self.activity.mole_number_derivatives(T, x))
 
     def vapor_heat_capacity(self, T: ArrayLike, P: ArrayLike, y: ArrayLike) -> Array:
         """dH_i/dT of the vapour at constant pressure and composition, J/(mol K), (..., n)."""
