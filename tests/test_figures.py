@@ -3,6 +3,7 @@ from __future__ import annotations
 
 import itertools
 import re
+import subprocess
 import sys
 from dataclasses import fields, replace
 from functools import cache
@@ -407,6 +408,20 @@ def test_without_matplotlib(monkeypatch: pytest.MonkeyPatch) -> None:
         efficiency_figure(table)
     with pytest.raises(InputError, match="optional extra `plot`"):
         figure_svg(None)  # type: ignore[arg-type]
+
+
+def test_matplotlib_is_loaded_when_a_figure_is_made() -> None:
+    code = """
+import sys
+import numpy as np
+from ratebased.column import EntropyProduction
+from ratebased.figures import entropy_figure, figure_svg
+assert "matplotlib" not in sys.modules
+figure_svg(entropy_figure(EntropyProduction(np.array([1]), *(np.ones(1),) * 9)))
+assert "matplotlib.pyplot" not in sys.modules
+"""
+    done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=False)
+    assert done.returncode == 0, done.stderr
 
 
 def test_explanation_of_an_interface_alone() -> None:

@@ -21,6 +21,7 @@ from .style import (
     stage_axis,
     stage_height,
     styled,
+    value_axis,
 )
 
 if TYPE_CHECKING:
@@ -57,7 +58,7 @@ def efficiency_figure(table: EfficiencyTable) -> Figure:
     small for an efficiency. A hollow sign: the driving force changes sign within the uncertainty, no interval exists.
     Values below -2 or above 3 are written at the edge. Raises `InputError`.
     """
-    r = _table(table).rows
+    r = rated_table(table).rows
     u = table.uncertainty
     series = []
     for i in np.flatnonzero(r.ordinary):
@@ -80,7 +81,7 @@ def hetp_figure(table: EfficiencyTable) -> Figure:
     A cross in the grey band: no HETP exists. Values above four times the median are written at the edge. Raises
     `InputError` for a table without packed rows.
     """
-    r = _table(table).rows
+    r = rated_table(table).rows
     packed, u = r.packed, table.uncertainty
     if packed is None:
         raise InputError("table: no packed rows, a tray has no HETP")
@@ -101,7 +102,7 @@ def hetp_figure(table: EfficiencyTable) -> Figure:
                    u is not None and u.hetp is not None, "no HETP", [])
 
 
-def _table(table: EfficiencyTable) -> EfficiencyTable:
+def rated_table(table: EfficiencyTable) -> EfficiencyTable:
     if not isinstance(table, EfficiencyTable):
         raise InputError(f"table: expected an EfficiencyTable, got {type(table).__name__}")
     if not table.rows.number.size:
@@ -115,8 +116,6 @@ def _interval(interval: Interval | None, value: Array, i: int) -> tuple[Array, A
 
 def _panels(number: NDArray[np.int64], series: list[_Series], window: tuple[float, float], label: str,
             lines: tuple[float, ...], intervals: bool, void: str, notes: list[str]) -> Figure:
-    from matplotlib.ticker import MaxNLocator
-
     if not series:
         raise InputError("table: no component is in both phases")
     columns = len(series) if len(series) <= 4 else -(-len(series) // 2) if len(series) <= 8 else 4
@@ -132,7 +131,7 @@ def _panels(number: NDArray[np.int64], series: list[_Series], window: tuple[floa
             ax.set_visible(False)
             continue
         _panel(ax, number, series[k], intervals, low, high, band)
-        ax.xaxis.set_major_locator(MaxNLocator(nbins=6 if columns < 4 else 4, steps=[1, 2, 5, 10]))
+        value_axis(ax, 6 if columns < 4 else 4)
         for line in lines:
             ax.axvline(line, color=GREY, linewidth=0.8, zorder=0.6)
         ax.set_title(titles[k], loc="left")

@@ -15,7 +15,7 @@ if TYPE_CHECKING:
 CAUSES = (
     ("vapor_diffusion", "diffusion, vapour film", "#1a1a1a", ""),
     ("liquid_diffusion", "diffusion, liquid film", "#ffffff", "////"),
-    ("vapor_conduction", "conduction, vapour film", "#D55E00", "...."),
+    ("vapor_conduction", "conduction, vapour film", "#D55E00", "\\\\\\\\"),
     ("liquid_conduction", "conduction, liquid film", "#56B4E9", "xxxx"),
     ("vapor_mixing", "mixing, vapour", "#9a9a9a", ""),
     ("liquid_mixing", "mixing, liquid", "#e9e9e9", "----"),

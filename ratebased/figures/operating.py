@@ -7,7 +7,7 @@ import numpy as np
 
 from ..efficiency import EfficiencyTable
 from ..errors import InputError
-from .efficiencies import _table
+from .efficiencies import rated_table
 from .labels import Curve, label_curves
 from .style import GREY, SMALL, breaks, finish, mark, new_figure, stage_axis, stage_height, styled
 
@@ -27,7 +27,7 @@ def operating_figure(table: EfficiencyTable) -> Figure:
 
     Whatever the hardware has no method for is left out. Raises `InputError` if that is all of them.
     """
-    r = _table(table).rows
+    r = rated_table(table).rows
     found = {}
     for name, words in LIMITS:
         value = getattr(r.hydraulics, name)

@@ -9,7 +9,7 @@ from numpy.typing import NDArray
 from ..column import Profile
 from ..errors import InputError
 from .labels import Curve, label_curves
-from .style import GREY, SMALL, finish, mark, new_figure, stage_axis, stage_height, styled
+from .style import GREY, SMALL, finish, mark, new_figure, stage_axis, stage_height, styled, value_axis
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -97,13 +97,11 @@ def _temperatures(ax: Axes, number: NDArray[np.int64], equilibrium: Profile, rat
 
 def _compositions(ax: Axes, number: NDArray[np.int64], phase: str, equilibrium: Profile,
                   ratebased: Profile) -> list[Curve]:
-    from matplotlib.ticker import MaxNLocator
-
     stage_axis(ax, number)
     top = max(float(z.max()) for profile in (equilibrium, ratebased) for z in (profile.x, profile.y))
     right = min(1.3 * top, 1.0)
     ax.set_xlim(-0.03 * right, 1.03 * right)
-    ax.xaxis.set_major_locator(MaxNLocator(nbins=4, steps=[1, 2, 5, 10]))
+    value_axis(ax, 5)
     ax.set_xlabel(f"Mole fraction, {phase} (–)")
     curves = []
     for i, name in enumerate(ratebased.names):

@@ -102,6 +102,14 @@ def renderer_of(figure: Any) -> Any:
     return figure.canvas.get_renderer()
 
 
+def value_axis(ax: Axes, ticks: int) -> None:
+    """At most so many round numbers on the horizontal axis, without idle zeros."""
+    from matplotlib.ticker import FuncFormatter, MaxNLocator
+
+    ax.xaxis.set_major_locator(MaxNLocator(nbins=ticks, steps=[1, 2, 5, 10]))
+    ax.xaxis.set_major_formatter(FuncFormatter(lambda value, _: f"{round(value, 12):g}".replace("-", "−")))
+
+
 def finish(figure: Figure, body: float, *, left: float = 0.62, right: float = 0.12, top: float = 0.08,
            bottom: float = 0.44, wspace: float = 0.12, hspace: float = 0.2, handles: Sequence[Any] = (),
            notes: Sequence[str] = ()) -> tuple[float, float]:

@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 from ..column import Profile
 from ..efficiency import EfficiencyTable, equilibrium_vapor
 from ..errors import InputError
-from .efficiencies import _table
+from .efficiencies import rated_table
 from .labels import Curve, label_curves
 from .style import GREY, SMALL, finish, folded, mark, new_figure, styled
 from .triangle_axes import CORNER, HEIGHT, Triangle
@@ -106,7 +106,7 @@ def _apart(ax: Axes, curves: list[Curve]) -> list[Curve]:
 
 
 def _table_path(table: EfficiencyTable, stage: int | None) -> _Path:
-    r = _table(table).rows
+    r = rated_table(table).rows
     vapor = liquid = None
     if stage is not None:
         row = table.row_of(stage)
