@@ -100,11 +100,17 @@ class StageProfile:
 
         path = Path(path)
         try:
+            head = pd.read_csv(path, skipinitialspace=True, comment="#", header=None, nrows=1, dtype=str)
             frame = pd.read_csv(path, skipinitialspace=True, comment="#")
         except FileNotFoundError as error:
             raise InputError(f"{path}: no such file") from error
+        except OSError as error:
+            raise InputError(f"{path}: cannot be read: {error.strerror}") from error
         except (pd.errors.ParserError, pd.errors.EmptyDataError, UnicodeDecodeError) as error:
             raise InputError(f"{path}: not a readable CSV table: {error}") from error
+        titles = head.iloc[0].tolist()
+        if len(titles) == frame.shape[1]:
+            frame.columns = pd.Index(titles)             # as written: pandas renames a title that appears twice
         return cls.from_frame(frame, names, feeds=feeds, draws=draws, fraction_tolerance=fraction_tolerance,
                               balance_tolerance=balance_tolerance, source=str(path))
 

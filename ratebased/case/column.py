@@ -16,7 +16,9 @@ from pathlib import Path
 from ..column import Column, Comparison, compare
 from ..column.from_table import column_from_table
 from ..equipment import Section
+from ..errors import InputError
 from ..properties.protocol import PropertyModel
+from ..stage_profile import LOWEST_PRESSURE, LOWEST_TEMPERATURE
 from ..toml_table import TomlTable
 from .hardware import hardware_from
 from .mixture import component_names, properties_from
@@ -62,6 +64,7 @@ def column_case(top: TomlTable, path: Path) -> ColumnCase:
     if not 1 <= stages <= LARGEST:
         raise table.fail("stages", f"expected 1 to {LARGEST} stages, condenser and reboiler included")
     column = column_from_table(table, names)
+    _check_units(column, table)
     hardware = hardware_from(top.tables("hardware"), (1, stages), names, str(path))
     options = top.table("compare", required=False)
     efficiency = options.optional_number("efficiency", above=0.0)
@@ -74,3 +77,15 @@ def column_case(top: TomlTable, path: Path) -> ColumnCase:
     top.finish()
     properties = properties_from(mixture, [])
     return ColumnCase(title, properties, column, hardware, efficiency, component, product, purity, count, (path,))
+
+
+def _check_units(column: Column, table: TomlTable) -> None:
+    """Refuse what is far more likely in another unit, as a profile does."""
+    lowest = float(column.pressures.min())
+    if lowest < LOWEST_PRESSURE:
+        raise InputError(f"{table.where}: pressure {lowest:g} Pa is below {LOWEST_PRESSURE:g}: is it in bar or kPa? "
+                         "Pressures are in Pa")
+    for k, feed in enumerate(column.feeds, 1):
+        if feed.temperature is not None and feed.temperature < LOWEST_TEMPERATURE:
+            raise InputError(f"{table.where} [[feed]] {k}: T_K = {feed.temperature:g} is below {LOWEST_TEMPERATURE:g}: "
+                             "is it in degrees Celsius? Temperatures are in K")
