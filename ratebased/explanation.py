@@ -11,6 +11,7 @@ from .film.result import regimes
 from .film.split import FluxSplit, flux_split
 from .interface import InterfaceFlux
 from .properties.protocol import Array
+from .show import Shown
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -30,7 +31,7 @@ class FilmExplanation:
 
 
 @dataclass(frozen=True)
-class FluxExplanation:
+class FluxExplanation(Shown):
     """The flux of every component through one interface.
 
     names; N mol/(m2 s), positive from vapour to liquid; vapor, liquid: the films; vapor_share: share of the vapour film

@@ -64,7 +64,8 @@ ODD = st.one_of(
     st.booleans(), st.text(max_size=8), st.sampled_from(["", "total", "liquid", "water", "../profile.csv", "\x00"]),
     st.lists(st.one_of(st.floats(), st.integers(-3, 20), st.text(max_size=3)), max_size=3),
     st.dictionaries(st.sampled_from(["water", "methanol", "2-propanol", "x", "stage"]), st.floats(), max_size=3),
-    st.lists(st.dictionaries(st.sampled_from(["type", "stage", "flow_mol_s"]), st.floats(0, 9), max_size=2), max_size=2))
+    st.lists(st.dictionaries(st.sampled_from(["type", "stage", "flow_mol_s"]), st.floats(0, 9), max_size=2),
+             max_size=2))
 
 
 @st.composite
@@ -150,7 +151,8 @@ def run(kind: str, case: str | bytes, profile: str | bytes | None = None) -> int
 
 
 TIMES = int(os.environ.get("FUZZ", "1"))
-COMMON = dict(deadline=None, derandomize=TIMES == 1, suppress_health_check=[HealthCheck.too_slow, HealthCheck.data_too_large])
+COMMON = dict(deadline=None, derandomize=TIMES == 1,
+              suppress_health_check=[HealthCheck.too_slow, HealthCheck.data_too_large])
 PROFILE = (TEMPLATES / "profile.csv").read_text()
 
 

@@ -14,6 +14,7 @@ from ..efficiency_set import EfficiencyBasis, EfficiencyKind, EfficiencySet
 from ..errors import InputError
 from ..properties.protocol import Array, Mask, PropertyModel
 from ..properties.saturation import bubble_point
+from ..show import Shown
 from .profile import Profile
 
 if TYPE_CHECKING:
@@ -21,7 +22,7 @@ if TYPE_CHECKING:
 
 
 @dataclass(frozen=True, eq=False)
-class ColumnEfficiencies:
+class ColumnEfficiencies(Shown):
     """Component efficiencies of the C contact stages of a column of S stages.
 
     stage: numbers, (C,). basis: temperature at which the equilibrium vapour y* of the leaving liquid is taken.
@@ -152,7 +153,7 @@ def column_efficiencies(profile: Profile, *, limit: float = 0.01, at_liquid_temp
 
 
 @dataclass(frozen=True, eq=False)
-class ColumnHeights:
+class ColumnHeights(Shown):
     """Heights of a packed bed by component, (C, n), over its C segments.
 
     hetp: height equivalent to a theoretical plate, m, blank (NaN) where flagged. stages: N_eq of each segment.

@@ -13,6 +13,7 @@ from correlations.overall import oconnell, oconnell_absorber
 
 from ..errors import ConvergenceError, InputError
 from ..properties.protocol import Array, PropertyModel
+from ..show import Shown
 from .back_calculation import ColumnEfficiencies
 from .contact import ContactorLayout, FlowPattern
 from .definition import Column
@@ -32,7 +33,7 @@ NEGLIGIBLE = 1e-7
 
 
 @dataclass(frozen=True, eq=False)
-class Comparison:
+class Comparison(Shown):
     """Three predictions of one column.
 
     profiles: by model name, in the order one efficiency, component efficiencies, rate-based. efficiency: the one

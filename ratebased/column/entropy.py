@@ -16,6 +16,7 @@ from numpy.typing import NDArray
 
 from ..properties.differences import liquid_heat_capacity, vapor_heat_capacity
 from ..properties.protocol import GAS_CONSTANT, Array, PropertyModel
+from ..show import Shown
 from .profile import Profile
 
 if TYPE_CHECKING:
@@ -25,7 +26,7 @@ NODES, WEIGHTS = np.polynomial.legendre.leggauss(12)
 
 
 @dataclass(frozen=True, eq=False)
-class EntropyProduction:
+class EntropyProduction(Shown):
     """W/K of each contact stage, (C,).
 
     vapor_diffusion, liquid_diffusion: R sum N_i ln(a_0/a_d) of the films. vapor_conduction, liquid_conduction: of the

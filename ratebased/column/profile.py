@@ -12,6 +12,7 @@ from numpy.typing import NDArray
 
 from ..errors import InputError
 from ..properties.protocol import Array, PropertyModel
+from ..show import Shown
 from .feeds import StageFeeds
 
 if TYPE_CHECKING:
@@ -88,7 +89,7 @@ class SolutionReport:
 
 
 @dataclass(frozen=True, eq=False)
-class Profile:
+class Profile(Shown):
     """A solved column of S stages, numbered from the top, condenser and reboiler included.
 
     names; model: "equilibrium" or "rate-based"; kinds: one word a stage. T_L, T_V K; P Pa; L, V mol/s, NET of side
@@ -177,7 +178,8 @@ class Profile:
                    properties: PropertyModel | None = None) -> ColumnEfficiencies:
         """Back-calculated component efficiencies of the contact stages; see `back_calculation.column_efficiencies`."""
         from .back_calculation import column_efficiencies
-        return column_efficiencies(self, limit=limit, at_liquid_temperature=at_liquid_temperature, properties=properties)
+        return column_efficiencies(self, limit=limit, at_liquid_temperature=at_liquid_temperature,
+                                   properties=properties)
 
     def hetp(self, *, limit: float = 0.01, properties: PropertyModel | None = None) -> ColumnHeights:
         """Heights equivalent to a theoretical plate of each component; see `back_calculation.column_heights`."""

@@ -13,6 +13,7 @@ from ..equipment.protocol import Contactor
 from ..equipment.sections import Section
 from ..errors import InputError
 from ..properties.protocol import Array, PropertyModel
+from ..show import Shown
 from .contact import ContactorLayout, FlowPattern
 from .definition import AnyFeed, Column, ContactorPressure, LiquidFeed, VaporDraw, VaporFeed
 from .problem import make_problem
@@ -137,7 +138,7 @@ def halves(column: Column) -> tuple[NDArray[np.int64], NDArray[np.int64]]:
 
 
 @dataclass(frozen=True, eq=False)
-class GridRefinement:
+class GridRefinement(Shown):
     """Packed bed on successive grids, each with half the segment height of the one before.
 
     segments: contact stages, (G,). profiles: one a grid. products: component flows of the end products side by side,

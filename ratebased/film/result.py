@@ -12,6 +12,7 @@ from numpy.typing import ArrayLike, NDArray
 from ..arguments import finite_array
 from ..errors import InputError
 from ..maxwell_stefan import face_entropy, film_matrix, pair_dissipation, reduced, resistances, solve
+from ..show import Shown
 from .blocks import FilmBlocks, coth_blocks, linearized_blocks
 from .grid import chebyshev_points, double_exponential, interpolation
 from .spectral import coth_columns, coth_function, profile_shape
@@ -59,7 +60,7 @@ def regimes(N: Array, x0: Array, xd: Array) -> NDArray[np.str_]:
 
 
 @dataclass(frozen=True)
-class FilmFlux:
+class FilmFlux(Shown):
     """Fluxes through a film and the problem they answer. Fluxes are positive from face 0 to face delta.
 
     N : molar fluxes, mol/(m2 s), (..., n); NaN where `status` says that no solution was found.

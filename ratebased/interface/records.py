@@ -11,6 +11,7 @@ from numpy.typing import NDArray
 
 from ..bootstrap import TotalFlux
 from ..film import FilmFlux
+from ..show import Shown
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -85,7 +86,7 @@ class FilmState:
 
 
 @dataclass(frozen=True)
-class InterfaceFlux:
+class InterfaceFlux(Shown):
     """Solution of the two-film interface. Fluxes positive from vapour to liquid, batch first.
 
     N : component fluxes, mol/(m2 s), (..., n). y_I, x_I : interface mole fractions, (..., n). T_I : K, (...).
