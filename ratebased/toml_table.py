@@ -14,6 +14,8 @@ from numpy.typing import NDArray
 from .errors import InputError
 
 _REQUIRED = object()
+LARGEST = 1e20
+"""Size beyond which no figure of a case file makes sense; positive ones are above its inverse."""
 
 
 class TomlTable:
@@ -89,6 +91,8 @@ class TomlTable:
         value = self.take(key, default)
         if not _finite(value):
             raise self.fail(key, "expected a finite number")
+        if abs(value) > LARGEST or (above is not None and 0 < value - above < 1.0 / LARGEST):
+            raise self.fail(key, f"no such size in SI units (expected {1.0 / LARGEST:g} to {LARGEST:g})")
         if above is not None and not value > above:
             raise self.fail(key, f"expected a number above {above:g}")
         if most is not None and value > most:

@@ -104,7 +104,7 @@ def _constant(table: TomlTable, names: list[str], span: tuple[float, float] | No
     liquid_capacity = table.by_component("liquid_heat_capacity_J_mol_K", names, 0.0)
     in_vapor = table.by_pair("vapor_diffusivity_m2_s", names, 1e-5)
     in_liquid = table.by_pair("liquid_diffusivity_m2_s", names, 3e-9)
-    a, b = table.number("a"), table.number("b_K", above=0.0)
+    a, b = table.number("a", above=0.0, most=60.0), table.number("b_K", above=0.0, most=2e4)
     reference = table.number("reference_temperature_K", 298.15, above=0.0)
     masks = []
     for key in ("noncondensing", "nonvolatile"):

@@ -7,6 +7,8 @@ from argparse import Namespace
 from collections.abc import Callable, Sequence
 from importlib import import_module
 
+from numpy.linalg import LinAlgError
+
 from ..errors import ConvergenceError, InputError, NoPhysicalRootError
 from .terminal import warnings_as_notes
 from .words import parser
@@ -31,6 +33,10 @@ def main(arguments: Sequence[str] | None = None) -> int:
             return BAD_INPUT
         except (ConvergenceError, NoPhysicalRootError) as error:
             print(f"ratebased: no solution: {_line(error)}", file=sys.stderr)
+            return NO_SOLUTION
+        except (ArithmeticError, LinAlgError) as error:
+            print(f"ratebased: no solution: the numbers of the case lead beyond what can be computed with "
+                  f"({type(error).__name__}: {_line(error)})", file=sys.stderr)
             return NO_SOLUTION
         except BrokenPipeError:
             os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())   # nobody reads: nothing more to flush

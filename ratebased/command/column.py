@@ -18,8 +18,10 @@ if TYPE_CHECKING:
 def run(options: Namespace) -> None:
     """Predict and compare."""
     from ..case import read_column_case
-    from ..report import column_report, to_markdown, write_report
+    from ..report import column_report, require_jinja, to_markdown, write_report
 
+    if options.report:
+        require_jinja()
     with progress("reading case, building properties"):
         case = read_column_case(options.case)
     with progress(f"solving {case.column.stages} stages three ways"):

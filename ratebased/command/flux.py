@@ -23,11 +23,13 @@ def run(options: Namespace) -> None:
     from ..case import FilmCase, read_flux_case
     from ..efficiency.package import plain
     from ..efficiency.table import CAUTION
-    from ..report import to_markdown, write_report
+    from ..report import require_jinja, to_markdown, write_report
     from ..report.blocks import Bullets, Table
     from ..report.common import versions
     from ..report.terminal import WIDTH, table_text
 
+    if options.report:
+        require_jinja()
     with progress("reading case, building properties"):
         case = read_flux_case(options.case)
     report, frame = (_film(case, case.solve()) if isinstance(case, FilmCase) else _interface(case, case.solve()))

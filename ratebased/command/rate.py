@@ -10,7 +10,10 @@ def run(options: Namespace) -> None:
     """Rate a case."""
     from ..case import read_rate_case
     from ..efficiency import write_package
+    from ..report import rating_report, require_jinja, write_report
 
+    if options.report:
+        require_jinja()
     with progress("reading case, building properties"):
         case = read_rate_case(options.case)
     with progress(f"rating {int(case.profile.contact.sum())} stages"):
@@ -19,8 +22,6 @@ def run(options: Namespace) -> None:
     texts = write_package(table, folder, title=case.title, hardware=case.hardware, inputs=case.files)
     files = [folder / name for name in ("table.csv", "table.md", "table.json")]
     if options.report:
-        from ..report import rating_report, write_report
-
         with progress("writing the report"):
             files += write_report(rating_report(table, title=case.title, hardware=case.hardware, files=case.files),
                                   folder)

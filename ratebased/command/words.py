@@ -43,6 +43,7 @@ Fluxes through one film, or through one interface between a vapour and a liquid,
 
   ratebased flux case.toml
   ratebased flux case.toml --format csv           # one row a component
+  ratebased flux case.toml --report               # with the parts of every flux drawn
   ratebased new DIR --kind flux                   # a commented interface to start from
 
 The fluxes go to standard output; flux.csv, flux.md and flux.json are written into the --out folder.

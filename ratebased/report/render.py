@@ -1,6 +1,7 @@
 """A report as one HTML page that needs nothing else, and as Markdown."""
 from __future__ import annotations
 
+from importlib.util import find_spec
 from pathlib import Path
 
 from ..errors import InputError
@@ -19,16 +20,21 @@ LONG_NAME = 18
 BREAK = "\u200b"
 
 
+def require_jinja() -> None:
+    """Raise `InputError` where jinja2 is not installed: before anything is computed for a report."""
+    if find_spec("jinja2") is None:
+        raise InputError("report: HTML needs the package jinja2, pip install 'ratebased[report]'")
+
+
 def to_html(report: Report) -> str:
     """One self-contained page: style and figures inside, no script, nothing from a network.
 
     Raises `InputError` where jinja2 is not installed.
     """
-    try:
-        import jinja2
-        import markupsafe
-    except ImportError as error:
-        raise InputError("report: HTML needs the package jinja2, pip install 'ratebased[report]'") from error
+    require_jinja()
+    import jinja2
+    import markupsafe
+
     folder = Path(__file__).parent
     environment = jinja2.Environment(loader=jinja2.FileSystemLoader(folder), autoescape=True, trim_blocks=True,
                                      lstrip_blocks=True, undefined=jinja2.StrictUndefined, keep_trailing_newline=True)
