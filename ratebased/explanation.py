@@ -82,6 +82,8 @@ class FluxExplanation(Shown):
         parts |= {f"the pull of {other}": s.pull[i, j] for j, other in enumerate(self.names) if j != i}
         ranked = sorted(parts.items(), key=lambda item: -abs(item[1]))
         told = [f"{value * unit:+.4g} by {words}" for words, value in ranked if abs(value) > 0.05 * abs(ranked[0][1])]
+        if self.N[i] == 0:
+            return f"{name} does not move."
         way = "from vapour to liquid" if self.N[i] > 0 else "from liquid to vapour"
         text = (f"{name} moves {way} at {abs(self.N[i]) * unit:.4g} mmol/(m2 s); the {film.phase} film controls "
                 f"({100 * share:.0f} % of the diffusive entropy production) and its flux there is "

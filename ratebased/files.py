@@ -24,5 +24,7 @@ def write_whole(path: Path, text: str) -> None:
 
 
 def checksum(paths: Sequence[Path]) -> dict[str, str]:
-    """SHA-256 of each input file by name."""
-    return {path.name: hashlib.sha256(path.read_bytes()).hexdigest() for path in paths}
+    """SHA-256 of each input file by name, with its folder where two have the same name."""
+    names = [path.name for path in paths]
+    return {path.name if names.count(path.name) == 1 else f"{path.parent.name}/{path.name}":
+            hashlib.sha256(path.read_bytes()).hexdigest() for path in paths}

@@ -9,6 +9,7 @@ from ratebased import (
     ConstantVolatility,
     FixedCoefficients,
     InputError,
+    ProfileDraw,
     ProfileFeed,
     RatingOptions,
     Section,
@@ -16,7 +17,16 @@ from ratebased import (
     efficiency_table,
     integral,
 )
-from ratebased.efficiency import equilibrium_vapor, rate_rows
+from ratebased.efficiency import (
+    Uncertainty,
+    compare_methods,
+    equilibrium_vapor,
+    rate_rows,
+    sample_rows,
+    small_driving_force,
+    spread,
+)
+from ratebased.efficiency.rating import bulk_states, entering_streams
 from ratebased.properties import bubble_point
 from ratebased.stage import Pools, WellMixed
 
@@ -118,7 +128,8 @@ def test_components_must_match() -> None:
 
 def test_mixing_raises_the_efficiency_and_is_reported() -> None:
     """A binary-like tray: more pools, more Murphree efficiency (Lewis 1936, case 1 is the limit)."""
-    mixed = efficiency_table(frame(), contactor(), model(), feeds=feeds(), options=RatingOptions(mixing=WellMixed())).rows
+    plain = RatingOptions(mixing=WellMixed())
+    mixed = efficiency_table(frame(), contactor(), model(), feeds=feeds(), options=plain).rows
     pools = efficiency_table(frame(), contactor(), model(), feeds=feeds(),
                              options=RatingOptions(mixing=Pools(np.full(4, 3.0)))).rows
     assert (pools.murphree[:, 0] > mixed.murphree[:, 0]).all()
@@ -126,20 +137,86 @@ def test_mixing_raises_the_efficiency_and_is_reported() -> None:
 
 
 def test_small_driving_forces_are_flagged_not_printed() -> None:
-    table = frame()
-    names = [f"{p}_{n}" for p in "xy" for n in NAMES]
-    pinched = pd.concat([table.iloc[[3]]] * 4 + [table.iloc[[4]]], ignore_index=True)
-    pinched["stage"] = np.arange(1, 6)
-    pinched.loc[:3, [f"y_{n}" for n in NAMES]] = pinched.loc[0, [f"x_{n}" for n in NAMES]].to_numpy(float)
-    pinched.loc[3, names] = table.loc[3, names]
-    profile = StageProfile.from_frame(table, NAMES, feeds=feeds())
-    T, star = bubble_point(model(), profile.P, profile.x)
-    near = star * (1 + 1e-3 * np.array([1.0, -1.0, 0.3]))
-    near = near / near.sum(-1, keepdims=True)
-    from ratebased.efficiency import small_driving_force
+    """A limit above every driving force: no figure for E in the frame, the change in brackets in print."""
+    options = RatingOptions(driving_force_limit=2.0)
+    table = efficiency_table(frame(), contactor(), model(), feeds=feeds(), options=options)
+    assert table.rows.flagged.all()
+    columns = table.to_frame()
+    assert columns[[f"E_{name}" for name in NAMES]].isna().all().all()
+    assert np.allclose(columns["dy_light"], table.rows.y_out[:, 0] - table.rows.y_in[:, 0])
+    row = next(line for line in str(table).splitlines() if line.split()[:1] == ["1"])
+    assert row.count("[") == 3 and "driving force too small" in row
+    y_in, star = np.array([0.2, 0.3, 0.0]), np.array([0.2019, 0.35, 0.0])
+    assert small_driving_force(y_in, star).tolist() == [True, False, True]
 
-    assert small_driving_force(near, star).all()
-    assert not small_driving_force(profile.x, star).all()
+
+def absent(order: list[int]) -> tuple[pd.DataFrame, list[str], ConstantVolatility, FixedCoefficients, ProfileFeed]:
+    """The same column with a fourth component that is not there, components in some order."""
+    names = [[*NAMES, "absent"][i] for i in order]
+    table = frame()
+    table["x_absent"] = table["y_absent"] = 0.0
+    alpha, latent = np.array([2.8, 1.2, 0.5, 0.9]), np.array([3.1e4, 3.3e4, 3.6e4, 3.2e4])
+    m = ConstantVolatility(names, alpha[order], latent[order], a=22.6, b=4000.0, vapor_heat_capacity=80.0,
+                           liquid_heat_capacity=130.0, reference_temperature=350.0)
+    kappa_v, kappa_l = np.full((4, 4), 0.015), np.full((4, 4), 1.5e-4)
+    kappa_v[:3, :3], kappa_l[:3, :3] = KAPPA_V, KAPPA_L
+    hardware = FixedCoefficients(kappa_v[np.ix_(order, order)], kappa_l[np.ix_(order, order)], 30.0, h_vapor=50.0,
+                                 h_liquid=1500.0)
+    f = feeds()[0]
+    feed = ProfileFeed(1, "liquid", f.flow, np.append(f.composition, 0.0)[order], f.temperature)
+    return table, names, m, hardware, feed
+
+
+@pytest.mark.parametrize("order", [[0, 1, 2, 3], [3, 0, 1, 2], [0, 3, 1, 2]])
+def test_an_absent_component_changes_nothing(order: list[int]) -> None:
+    options = RatingOptions(mixing=Pools(np.array(5.0)))
+    plain = efficiency_table(frame(), contactor(), model(), feeds=feeds(), options=options).rows
+    table, names, m, hardware, feed = absent(order)
+    rows = efficiency_table(table, hardware, m, feeds=(feed,), options=options).rows
+    for i, name in enumerate(NAMES):
+        assert np.allclose(rows.murphree[:, names.index(name)], plain.murphree[:, i], rtol=1e-8)
+    k = names.index("absent")
+    assert rows.flagged[:, k].all() and (rows.y_out[:, k] == 0).all() and not rows.notes
+
+
+def test_side_draws_and_side_feeds_reach_the_stage() -> None:
+    """The vapour on a stage includes what is drawn from it; a liquid feed changes the entering temperature."""
+    table = frame()
+    x = table[[f"x_{n}" for n in NAMES]].to_numpy()
+    cold = ProfileFeed(3, "liquid", 5.0, x[1], 300.0)
+    profile = StageProfile.from_frame(table, NAMES, feeds=[*feeds(), cold], draws=[ProfileDraw(2, "vapor", 4.0)],
+                                      balance_tolerance=10.0 - 1e-9)
+    rows, entering = entering_streams(profile, model())
+    H = (15.0 * entering.x[2] * model().liquid_enthalpy(entering.T_L[2:3], profile.P[2:3], entering.x[2:3])[0]).sum()
+    parts = ((10.0, profile.x[1], profile.T_L[1]), (5.0, x[1], 300.0))
+    expected = sum((flow * z * model().liquid_enthalpy(np.full(1, T), np.full(1, 1e5), z[None])[0]).sum()
+                   for flow, z, T in parts)
+    assert H == pytest.approx(expected, rel=1e-9)
+    bulk = bulk_states(profile, rows, entering, np.zeros(4, bool))
+    assert bulk.V[1] == pytest.approx((10.0 + 14.0) / 2)
+
+
+def test_local_coefficients_are_sampled_too() -> None:
+    """Coefficients re-evaluated up the froth carry their uncertainty."""
+    profile = StageProfile.from_frame(frame(), NAMES, feeds=feeds())
+    spread = Uncertainty(vapor=0.3, liquid=0.3, vapor_diffusivity=0.0, liquid_diffusivity=0.0, k_value=0.0, samples=16)
+    widths = []
+    for local in (False, True):
+        u = sample_rows(profile, contactor(), model(), spread, RatingOptions(local_coefficients=local))
+        widths.append(u.change.p95 - u.change.p05)
+    assert np.allclose(widths[0], widths[1], rtol=0.05)  # the vapour's density is now the local one
+
+
+def test_methods_side_by_side() -> None:
+    profile = StageProfile.from_frame(frame(), NAMES, feeds=feeds())
+    hardware = {"one": contactor(), "two": FixedCoefficients(KAPPA_V, KAPPA_L, 15.0, h_vapor=50.0, h_liquid=1500.0),
+                "none": [Section(1, 2, contactor())]}
+    table = compare_methods(profile, hardware, model())
+    assert table.loc[table["method"] == "none", "failed"].str.contains("no section").all()
+    wide = spread(table)
+    assert len(wide) == 12 and (wide["difference"] >= 0).all() and (wide["one"] > wide["two"]).mean() > 0.9
+    with pytest.raises(InputError, match="figure = 'speed'"):
+        spread(table, "speed")
 
 
 def test_basis_of_y_star_with_a_gas_that_does_not_condense() -> None:
@@ -153,9 +230,9 @@ def test_basis_of_y_star_with_a_gas_that_does_not_condense() -> None:
 
 
 def test_absorber_segments_against_the_number_of_transfer_units() -> None:
-    """A dilute absorber with straight lines: N_OV from Colburn's integral over the bed equals K_OV a Z/V.
+    """A dilute absorber with straight lines: N_OV from Colburn's integral over the bed is K_OV a Z/V.
 
-    Source: Colburn, Trans. AIChE 35 (1939) 211; 1/K_OV = 1/(c_V kappa_V) + m/(c_L kappa_L). Rows are exact ends of a bed
+    Colburn, Trans. AIChE 35 (1939) 211; 1/K_OV = 1/(c_V kappa_V) + m/(c_L kappa_L). Rows are exact ends of a bed
     of eight equal segments.
     """
     m = ConstantVolatility(["gas", "solute", "water"], [1.0, 2.0, 0.01], 0.0, a=np.log(1e5) + 4000.0 / 300.0, b=4000.0,

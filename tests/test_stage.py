@@ -194,3 +194,27 @@ def test_order_of_components_does_not_matter() -> None:
     two = tray_from_leaving_liquid(swapped, L, other, Pools(np.full(2, 3.3)))
     assert np.abs(one.y[:, order] - two.y).max() < 1e-10
     assert np.abs(one.T_V - two.T_V).max() < 1e-7
+
+
+def test_a_leaving_liquid_that_does_not_fit_is_marked() -> None:
+    """Hardly any liquid: upstream it would hold less than nothing, so the froth at the outlet stands for the tray."""
+    model = mixture(spread=0.1)
+    p = point(model, kappa_vapor=0.02 * UNEQUAL)
+    r = tray_from_leaving_liquid(p, np.full(2, 0.02), model, Pools(np.full(2, 6.0)))
+    assert r.unmixed.all()
+    assert np.allclose(r.y, r.point.y, rtol=1e-12)
+    fits = tray_from_leaving_liquid(p, np.full(2, 2.0), model, Pools(np.full(2, 6.0)))
+    assert not fits.unmixed.any()
+
+
+def test_no_heat_capacity_is_the_limit_of_little() -> None:
+    """Constant molar overflow: the froth and the pools without heat capacities against nearly none."""
+    none, little = mixture(spread=0.1, cp=0.0), mixture(spread=0.1, cp=1e-4)
+    p = point(none, kappa_vapor=0.02 * UNEQUAL)
+    one, two = exponential_midpoint(p, none), exponential_midpoint(p, little)
+    assert np.allclose(one.y, two.y, atol=2e-4)
+    assert np.allclose(one.T_V, two.T_V, atol=1.0)  # that of the interface at the middle state
+    equal = mixture(cp=0.0)
+    q = point(equal, kappa_vapor=0.02 * UNEQUAL)
+    tray = pools_in_series(q, np.full(2, 1.4), equal, 3)
+    assert np.allclose(tray.V, 1.0, atol=1e-9) and np.allclose(tray.L, 1.4, atol=1e-9)

@@ -30,8 +30,7 @@ LEWIS = [
 def test_three_cases_of_lewis(E: float, lam: float, one: float, two: float, three: float) -> None:
     point, S = np.array([[E]]), np.array([[lam]])
     for path, value in ((VaporPath.MIXED, one), (VaporPath.SAME_DIRECTION, two), (VaporPath.ALTERNATING, three)):
-        trays = 41 if path is not VaporPath.MIXED else 9
-        assert lewis_efficiency(point, S, path, trays=trays)[0, 0] == pytest.approx(value, rel=2e-4), path
+        assert lewis_efficiency(point, S, path)[0, 0] == pytest.approx(value, rel=2e-4), path
 
 
 E2 = np.array([[0.62, 0.08], [-0.05, 0.74]])
@@ -67,18 +66,37 @@ def test_limits() -> None:
     assert np.allclose(tray_efficiency(E2, S2, Pools(np.array(1e8))), tray_efficiency(E2, S2, PlugFlow()), rtol=1e-6)
     assert np.allclose(tray_efficiency(E2, S2, EddyDiffusion(np.array(1e-7))), E2, rtol=1e-6)
     assert np.allclose(entrained(E2, 0.0), E2)
-    assert np.allclose(weeping(E2, S2, Pools(np.array(3.0)), 0.0), tray_efficiency(E2, S2, Pools(np.array(3.0))))
-    assert np.allclose(weeping(E2, S2, WellMixed(), 0.4), E2)
+    assert np.allclose(weeping(E2, S2, 0.0, pools=3), tray_efficiency(E2, S2, Pools(np.array(3.0))))
+    assert np.allclose(weeping(E2, S2, 1e-7), tray_efficiency(E2, S2, PlugFlow()), rtol=1e-6)
+    assert np.allclose(weeping(E2, S2, 0.4, pools=1), E2)
+    assert np.allclose(weeping(E2, S2, 0.3, pools=20000), weeping(E2, S2, 0.3), rtol=1e-4)
 
 
 def test_entrainment_of_a_scalar_is_colburns() -> None:
     assert entrained(np.array([[0.7]]), 0.1)[0, 0] == pytest.approx(float(colburn_entrainment(0.7, 0.1)), rel=1e-14)
 
 
-def test_weeping_lowers_the_efficiency() -> None:
-    plain = tray_efficiency(np.array([[0.7]]), np.array([[1.2]]), PlugFlow())
-    wet = weeping(np.array([[0.7]]), np.array([[1.2]]), PlugFlow(), 0.3)
-    assert 0.7 < wet[0, 0] < plain[0, 0]
+def test_weeping_by_the_balances_of_the_pools() -> None:
+    """Liquid and component balances of four pools that weep, solved as one linear system with y* = K x."""
+    E, K, V, L, f, p, y_in = 0.7, 1.8, 1.0, 1.5, 0.3, 4, 0.1
+    A, b = np.zeros((p, p)), np.zeros(p)
+    x_in = 0.4
+    for k in range(p):
+        above, below = L * (1 - f * k / p), L * (1 - f * (k + 1) / p)
+        # above x_(k-1) = below x_k + (f L/p) x_k + (V/p) E (K x_k - y_in)
+        A[k, k] = below + f * L / p + V / p * E * K
+        b[k] = V / p * E * y_in
+        if k:
+            A[k, k - 1] = -above
+        else:
+            b[k] += above * x_in
+    x = np.linalg.solve(A, b)
+    y_out = y_in + E * (K * x - y_in).mean()
+    leaving = (1 - f) * x[-1] + f * x.mean()
+    expected = (y_out - y_in) / (K * leaving - y_in)
+    S = np.array([[K * V / L]])
+    assert weeping(np.array([[E]]), S, f, pools=p)[0, 0] == pytest.approx(expected, rel=1e-12)
+    assert 0.7 < expected < tray_efficiency(np.array([[E]]), S, Pools(np.array(4.0)))[0, 0]
 
 
 def test_overall_efficiency() -> None:

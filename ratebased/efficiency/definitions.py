@@ -51,8 +51,8 @@ def equilibrium_vapor(properties: PropertyModel, P: Array, x: Array, T_L: Array,
 
 
 def small_driving_force(y_in: Array, y_star: Array, limit: float = NEAR_EQUILIBRIUM) -> Mask:
-    """Where |y* - y_in| < limit max(y*, y_in): a Murphree efficiency means nothing there."""
-    return np.abs(y_star - y_in) < limit * np.maximum(y_star, y_in)
+    """Where |y* - y_in| <= limit max(y*, y_in): a Murphree efficiency means nothing there (an absent component too)."""
+    return np.abs(y_star - y_in) <= limit * np.maximum(y_star, y_in)
 
 
 def murphree_vapor(y_in: Array, y_out: Array, y_star: Array) -> Array:

@@ -20,13 +20,14 @@ from ..properties.protocol import Array, Mask, PropertyModel
 from ..stage import (
     FrothPoint,
     LiquidMixing,
+    PlugFlow,
     PointMethod,
-    PointResult,
     Pools,
     SegmentResult,
     TrayResult,
     WellMixed,
     exponential_midpoint,
+    liquid_temperature,
     segment_between_ends,
     tray_from_leaving_liquid,
     vapor_temperature,
@@ -41,8 +42,10 @@ from .definitions import (
     vaporization,
 )
 
+LIMITS = ("flooding", "pressure_drop", "clear_liquid", "liquid_holdup", "weeping", "downcomer", "entrainment")
 LONG = "segment too long: it would lose nine tenths of a component; use shorter ones"
-UNMIXED = "no tray with its liquid path mixed this way has this leaving liquid: rated with mixed liquid"
+UNMIXED = ("the leaving liquid does not fit: upstream it would hold less than nothing of a component; rated over the "
+           "leaving liquid alone")
 
 
 @dataclass(frozen=True)
@@ -84,7 +87,8 @@ class PackedRows:
     position: index among the rated rows. height m. N_OV, N_V, N_L: numbers of overall, vapour-film and liquid-film
     transfer units of each component, signed, over the segment; H_OV, H_V, H_L: their heights, m. HETP m. stripping:
     S_i = m_i V/L with m_i the slope of y* between the ends. undefined: where HETP has no value (S or N_OV not positive,
-    or a driving force too small).
+    or a driving force too small; it is infinite there). A component that does not move has no units and infinite
+    heights.
     """
 
     position: NDArray[np.int64]
@@ -186,11 +190,24 @@ def entering_streams(profile: StageProfile, properties: PropertyModel) -> tuple[
         if dry.size:
             raise InputError(f"{profile.source}: no {words} enters stage {profile.number[dry[0]]}: list its feed, or "
                              "add the row it comes from")
-    hot = np.flatnonzero(mixed[0])
-    if hot.size:
-        T_V[hot] = vapor_temperature(properties, profile.P[hot], g[hot], HV[hot], T_V[hot])
+    for into, flows, heats, T, solve in ((mixed[0], g, HV, T_V, vapor_temperature), (mixed[1], l, HL, T_L,
+                                                                                 liquid_temperature)):
+        at = np.flatnonzero(into)
+        if at.size:
+            T[at] = solve(properties, profile.P[at], flows[at], heats[at], T[at])
     V, L = g[rows].sum(-1), l[rows].sum(-1)
     return rows, Entering(V, g[rows] / V[:, None], T_V[rows], L, l[rows] / L[:, None], T_L[rows])
+
+
+def contact_rows(profile: StageProfile, properties: PropertyModel) -> tuple[NDArray[np.int64], Entering, Mask]:
+    """Rows to rate, the streams that enter them, and which are packed; checks that profile and model fit each other."""
+    if tuple(properties.names) != profile.names:
+        raise InputError(f"properties: components {list(properties.names)}, but the profile has {list(profile.names)}")
+    rows, entering = entering_streams(profile, properties)
+    packed = np.array([profile.kind[row] == "segment" for row in rows])
+    if packed.any() and profile.height is None:
+        raise InputError(f"{profile.source}: rows of kind segment need a column height_m")
+    return rows, entering, packed
 
 
 def rate_rows(profile: StageProfile, hardware: Hardware, properties: PropertyModel,
@@ -201,14 +218,9 @@ def rate_rows(profile: StageProfile, hardware: Hardware, properties: PropertyMod
     solution). Source of the method: Krishna & Standart 1976 for the films, pools in series after Gerster et al. 1958.
     """
     options = options or RatingOptions()
-    if tuple(properties.names) != profile.names:
-        raise InputError(f"properties: components {list(properties.names)}, but the profile has {list(profile.names)}")
-    rows, entering = entering_streams(profile, properties)
+    rows, entering, packed = contact_rows(profile, properties)
     number = profile.number[rows]
     kind = tuple(profile.kind[row] for row in rows)
-    packed = np.array([k == "segment" for k in kind])
-    if packed.any() and profile.height is None:
-        raise InputError(f"{profile.source}: rows of kind segment need a column height_m")
     bulk = bulk_states(profile, rows, entering, packed)
     total = Collected(rows.size, len(profile.names))
     heights: list[PackedRows] = []
@@ -219,7 +231,7 @@ def rate_rows(profile: StageProfile, hardware: Hardware, properties: PropertyMod
                 if is_packed:
                     segment = group.segments()
                     heights.append(packed_rows(member, group, profile.x[rows[member]], profile.T_L[rows[member]],
-                                               segment))
+                                               segment, options))
                     total.add(member, group, segment, np.ones(member.size))
                 else:
                     total.add(member, group, *group.trays(options))
@@ -267,13 +279,13 @@ class BulkStates:
 
 
 def bulk_states(profile: StageProfile, rows: NDArray[np.int64], entering: Entering, packed: Mask) -> BulkStates:
-    """Vapour: mean of the ends. Liquid: the leaving one on a tray (before draws), the mean of the ends in a segment."""
-    y, V = (entering.y + profile.y[rows]) / 2, (entering.V + profile.V[rows]) / 2
+    """Vapour: mean of the ends. Liquid: the leaving one on a tray, the mean of the ends in a segment. Before draws."""
+    y = (entering.y + profile.y[rows]) / 2
     T_V = (entering.T_V + profile.T_V[rows]) / 2
-    L = profile.L[rows].copy()
+    leaving = {"vapor": profile.V[rows].copy(), "liquid": profile.L[rows].copy()}
     for draw in profile.draws:
-        if draw.phase == "liquid":
-            L[rows == profile.row_of(draw.stage, "draw")] += draw.flow
+        leaving[draw.phase][rows == profile.row_of(draw.stage, "draw")] += draw.flow
+    L, V = leaving["liquid"], (entering.V + leaving["vapor"]) / 2
     both = packed[:, None]
     x = np.where(both, (entering.x + profile.x[rows]) / 2, profile.x[rows])
     T_L = np.where(packed, (entering.T_L + profile.T_L[rows]) / 2, profile.T_L[rows])
@@ -287,7 +299,7 @@ class RowGroup:
                  member: NDArray[np.int64], contactor: Contactor, properties: PropertyModel,
                  change: StateChange | None = None) -> None:
         """`member` picks rows, a row may come more than once; `change` alters state and coefficients of each."""
-        self.member, self.contactor, self.properties = member, contactor, properties
+        self.member, self.contactor, self.properties, self.change = member, contactor, properties, change
         self.P = profile.P[rows[member]]
         self.entering = Entering(*(getattr(entering, name)[member] for name in ("V", "y", "T_V", "L", "x", "T_L")))
         self.bulk = BulkStates(*(getattr(bulk, name)[member] for name in ("y", "T_V", "V", "x", "T_L", "L")))
@@ -311,16 +323,20 @@ class RowGroup:
         if mixing is None and peclet is not None:
             pools = (peclet(state) + 2.0) / 2.0
             mixing = Pools(pools)
-        elif isinstance(mixing, Pools):
-            pools = np.broadcast_to(mixing.count, pools.shape)
+        elif mixing is not None:
+            mixing = mixing.taken(self.member)
+            pools = np.broadcast_to(np.inf if isinstance(mixing, PlugFlow) else mixing.pools, pools.shape)
         local = self.local if options.local_coefficients else None
         return tray_from_leaving_liquid(point, b.L, self.properties, mixing or WellMixed(), method=options.point,
                                         local=local, stretches=stretches), pools
 
     def local(self, V: Array, y: Array, T_V: Array) -> TransferCoefficients:
-        """Coefficients at a local state of the vapour."""
+        """Coefficients at a local state of the vapour, over the leaving liquid."""
         b = self.bulk
-        return self.contactor.transfer(contact_state(self.properties, V, b.L, T_V, b.T_L, self.P, y, b.x))
+        state = contact_state(self.properties, V, b.L, T_V, b.T_L, self.P, y, b.x)
+        if self.change is None:
+            return self.contactor.transfer(state)
+        return self.change.coefficients(self.contactor.transfer(self.change.state(state)))
 
     def segments(self) -> SegmentResult:
         """Vapour leaving each segment."""
@@ -350,9 +366,9 @@ class Collected:
         self.flux[member] = result.transferred / coefficients.area[..., None]
         self.L[member] = group.bulk.L
         interface = result.point.middle if isinstance(result, TrayResult) else result.interface
-        worst = result.point if isinstance(result, TrayResult) else result.interface
-        self.films[member] = worst.interface_residual if isinstance(worst, PointResult) else worst.residual
-        self.heat[member] = worst.energy_residual
+        tray = isinstance(result, TrayResult)
+        self.films[member] = result.interface_residual if tray else result.interface.residual
+        self.heat[member] = result.energy_residual if tray else result.interface.energy_residual
         if isinstance(result, TrayResult):
             self.energy_closure[member] = result.point.energy_closure
             if result.unmixed.any():
@@ -364,33 +380,34 @@ class Collected:
         for row in member:
             self.basis[row] = coefficients.basis
         hydraulics = group.contactor.hydraulics(group.state)
-        for name in ("flooding", "pressure_drop", "liquid_holdup", "weeping", "downcomer", "entrainment"):
+        for name in LIMITS:
             value = getattr(hydraulics, name)
             if value is not None:
                 self.limits.setdefault(name, np.full(self.V.size, np.nan))[member] = value
-        for note, where in coefficients.notes.items():
-            self.notes.setdefault(note, np.zeros(self.V.size, bool))[member] = where
+        for note, where in {**hydraulics.notes, **coefficients.notes}.items():
+            self.notes.setdefault(note, np.zeros(self.V.size, bool))[member] |= where
 
     def hydraulics(self) -> Hydraulics:
         """Limits of all rows; a row whose contactor has no method for one holds NaN there (an empty cell)."""
         return Hydraulics(**{"flooding": None, **self.limits})
 
 
-def packed_rows(position: NDArray[np.int64], group: RowGroup, x_out: Array, T_out: Array,
-                result: SegmentResult) -> PackedRows:
+def packed_rows(position: NDArray[np.int64], group: RowGroup, x_out: Array, T_out: Array, result: SegmentResult,
+                options: RatingOptions) -> PackedRows:
     """Transfer units and HETP of each component from what segments do between their ends.
 
     At the mean states, with V dy_i = -(N_i - y_i N_t) area: N_OV,i = dy_i/(y* - y)_i, N_V,i = dy_i/(y_I - y)_i, N_L,i =
-    N_i area/(L (x_I - x)_i); H = Z/N. HETP_i = H_OV,i ln S_i/(S_i - 1), S_i = m_i V/L, m_i the slope of y* between the
-    ends. The same as Z/N_eq,i with N_eq,i = ln(1 + E_i (S_i - 1))/ln S_i and the Murphree efficiency E_i that N_OV,i
-    gives a segment of straight lines (Colburn 1939). x_out, T_out: the liquid that leaves below.
+    (N_i - x_i N_t) area/(L (x_I - x)_i); H = Z/N. HETP_i = H_OV,i ln S_i/(S_i - 1), S_i = m_i V/L, m_i the slope of y*
+    between the ends. The same as Z/N_eq,i with N_eq,i = ln(1 + E_i (S_i - 1))/ln S_i and the Murphree efficiency E_i
+    that N_OV,i gives a segment of straight lines (Colburn 1939). x_out, T_out: the liquid that leaves below.
     """
     e, bulk, P, properties = group.entering, group.bulk, group.P, group.properties
     assert group.state.height is not None
     Z = group.state.height
 
     def star(x: Array, T: Array) -> Array:
-        return equilibrium_vapor(properties, P, x, T, e.y).composition
+        return equilibrium_vapor(properties, P, x, T, e.y,
+                                 at_liquid_temperature=options.at_liquid_temperature).composition
 
     star_mean, star_out, star_in = star(bulk.x, bulk.T_L), star(x_out, T_out), star(e.x, e.T_L)
     with np.errstate(divide="ignore", invalid="ignore"):
@@ -398,14 +415,19 @@ def packed_rows(position: NDArray[np.int64], group: RowGroup, x_out: Array, T_ou
         S = (star_in - star_out) / (e.x - x_out) * (bulk.V / bulk.L)[:, None]
         N_OV = dy / (star_mean - bulk.y)
         N_V = dy / (result.interface.y_I - bulk.y)
-        N_L = group.coefficients.area[:, None] * result.interface.N / bulk.L[:, None] / (result.interface.x_I - bulk.x)
+        N, area = result.interface.N, group.coefficients.area[:, None]
+        dx = area * (N - bulk.x * N.sum(-1, keepdims=True)) / bulk.L[:, None]
+        N_L = dx / (result.interface.x_I - bulk.x)
         heights = [Z[:, None] / N for N in (N_OV, N_V, N_L)]
         near = np.abs(S - 1.0) < 1e-6
         HETP = heights[0] * np.where(near, 1.0, np.log(np.where(S > 0, S, 1.0)) / np.where(near, 1.0, S - 1.0))
-    undefined = ~((S > 0) & (N_OV > 0) & np.isfinite(HETP)) | small_driving_force(bulk.y, star_mean)
-    n_ov, n_v, n_l, h_ov, h_v, h_l, s = (np.where(np.isfinite(value), value, 0.0)
-                                         for value in (N_OV, N_V, N_L, *heights, S))
-    return PackedRows(position, Z, n_ov, n_v, n_l, h_ov, h_v, h_l, s, np.where(undefined, 0.0, HETP), undefined)
+    small = small_driving_force(bulk.y, star_mean, options.driving_force_limit)
+    undefined = ~((S > 0) & (N_OV > 0) & np.isfinite(HETP)) | small
+    # Nothing over nothing (an absent component) is no unit and an infinite height; a pole is infinite.
+    units = [np.where(np.isnan(value), 0.0, value) for value in (N_OV, N_V, N_L)]
+    heights = [np.where(np.isnan(value), np.inf, value) for value in heights]
+    return PackedRows(position, Z, *units, *heights, np.where(np.isfinite(S), S, 0.0),
+                      np.where(undefined, np.inf, HETP), undefined)
 
 
 def _joined(parts: list[PackedRows]) -> PackedRows | None:

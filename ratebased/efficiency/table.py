@@ -147,12 +147,15 @@ class EfficiencyTable:
         for label, values in (("dy", r.y_out - r.y_in), ("y_in", r.y_in), ("y_out", r.y_out), ("y_star", r.y_star)):
             for i, name in enumerate(r.names):
                 columns[f"{label}_{name}"] = values[:, i]
-        columns |= {"V_in_mol_s": r.V_in, "V_out_mol_s": r.V_out, "area_m2": r.area, "pools": r.pools,
+        columns |= {"V_in_mol_s": r.V_in, "V_out_mol_s": r.V_out, "area_m2": r.area,
+                    "pools": np.where(np.isfinite(r.pools), r.pools, np.nan),
                     "heat_to_liquid_W": r.energy}
-        for label in ("pressure_drop", "liquid_holdup", "weeping", "downcomer", "entrainment"):
+        for label, name in (("pressure_drop", "pressure_drop_Pa"), ("clear_liquid", "clear_liquid_m"),
+                            ("liquid_holdup", "liquid_holdup"), ("weeping", "weep_velocity_ratio"),
+                            ("downcomer", "downcomer_level_ratio"), ("entrainment", "entrainment_kg_kg")):
             value = getattr(limits, label)
             if value is not None:
-                columns[label] = value
+                columns[name] = value
         columns |= self._packed_columns() | self._uncertainty_columns()
         columns |= {"vapor_film_share": r.vapor_entropy_share, "distance_y": self.distance,
                     "interface_residual": r.interface_residual, "energy_residual": r.energy_residual,
@@ -175,9 +178,11 @@ class EfficiencyTable:
         for i, name in enumerate(self.rows.names):
             columns[f"HETP_{name}_m"] = spread(np.where(packed.undefined[:, i], np.nan, packed.HETP[:, i]))
             for label in ("H_OV", "H_V", "H_L"):
-                columns[f"{label}_{name}_m"] = spread(getattr(packed, label)[:, i])
+                height = getattr(packed, label)[:, i]
+                columns[f"{label}_{name}_m"] = spread(np.where(np.isfinite(height), height, np.nan))
             for label in ("N_OV", "N_V", "N_L"):
-                columns[f"{label}_{name}"] = spread(getattr(packed, label)[:, i])
+                units = getattr(packed, label)[:, i]
+                columns[f"{label}_{name}"] = spread(np.where(np.isfinite(units), units, np.nan))
         return columns
 
     def _uncertainty_columns(self) -> dict[str, Any]:
@@ -189,6 +194,7 @@ class EfficiencyTable:
         if u.hetp is not None and self.rows.packed is not None:
             blank = np.ones_like(u.pole)
             blank[self.rows.packed.position] = self.rows.packed.undefined
+            blank |= ~(np.isfinite(u.hetp.p05) & np.isfinite(u.hetp.p95))
             figures.append(("HETP", u.hetp, blank))
         for label, interval, blank in figures:
             for quantile in ("p05", "p50", "p95"):
@@ -282,7 +288,11 @@ def efficiency_table(profile: pd.DataFrame | StageProfile, hardware: Hardware, p
     uncertainty: adds intervals, see `Uncertainty`.
     Raises `InputError` for bad input, `ConvergenceError` where an interface has no solution.
     """
-    if not isinstance(profile, StageProfile):
+    if isinstance(profile, StageProfile):
+        if feeds or draws:
+            raise InputError("feeds, draws: a StageProfile brings its own")
+    else:
         profile = StageProfile.from_frame(profile, properties.names, feeds=feeds, draws=draws)
+    rows = rate_rows(profile, hardware, properties, options)
     spread = None if uncertainty is None else sample_rows(profile, hardware, properties, uncertainty, options)
-    return EfficiencyTable(rate_rows(profile, hardware, properties, options), profile.source, spread)
+    return EfficiencyTable(rows, profile.source, spread)

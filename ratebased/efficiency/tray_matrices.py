@@ -10,6 +10,7 @@ from __future__ import annotations
 from enum import Enum
 
 import numpy as np
+from numpy.typing import NDArray
 
 from ..arguments import finite_array
 from ..errors import InputError
@@ -39,7 +40,7 @@ def tray_efficiency(E: Array, S: Array, mixing: LiquidMixing) -> Array:
     return np.stack(columns, -1)
 
 
-def lewis_efficiency(E: Array, S: Array, path: VaporPath, *, trays: int = 9, points: int = 24) -> Array:
+def lewis_efficiency(E: Array, S: Array, path: VaporPath, *, trays: int = 41, points: int = 24) -> Array:
     """[E_MV] of a tray inside a long stack with the liquid in plug flow, (m, m).
 
     Case 1 is in closed form, (exp([E][S]) - 1)[S]^-1; cases 2 and 3 have none for unequal eigenvectors: a stack of
@@ -52,7 +53,7 @@ def lewis_efficiency(E: Array, S: Array, path: VaporPath, *, trays: int = 9, poi
     m = E.shape[0]
     if path is VaporPath.MIXED:
         return tray_efficiency(E, S, PlugFlow())
-    w, D, weights = _chebyshev(points)
+    D, weights = _chebyshev(points)
     eye, P = np.eye(m), points
     flip = np.eye(P)[::-1] if path is VaporPath.ALTERNATING else np.eye(P)
     # Unknowns: u_k(w) = y*(x) on tray k, k = 0 the top; the liquid enters at w = 0. Vapour into tray k: the one leaving
@@ -95,19 +96,41 @@ def entrained(E_MV: Array, entrainment: float) -> Array:
     return np.asarray(E_MV @ np.linalg.inv(np.eye(E_MV.shape[-1]) + entrainment / (1 - entrainment) * E_MV))
 
 
-def weeping(E: Array, S: Array, mixing: LiquidMixing, fraction: float) -> Array:
+def weeping(E: Array, S: Array, fraction: float, *, pools: int | None = None) -> Array:
     """Murphree matrix of a tray that weeps, (..., m, m), on the liquid that leaves it by both ways.
 
-    fraction: share of the leaving liquid that weeps, evenly over the path. y* of the mixed leaving liquid is y*_p +
-    fraction (f - 1)(y*_p - y_in), so [E_w] = [E] f ([I] + fraction (f - [I]))^-1 with f = f([S][E]); a well-mixed tray
-    does not notice. (Derived here from the pools balance.)
+    fraction: share of the entering liquid that weeps, evenly over the path, 0 to below 1. pools: mixed pools in series,
+    None for plug flow. The liquid that is left thins out along the path, so [S] (of the entering flow) grows: with
+    z = [S][E], drive y* - y_in at the place s over that at the outlet, plug flow: ((1 - f s)/(1 - f))^(z/f); pools:
+    drive_(k-1) = (1 + z/(p (1 - f (k-1)/p))) drive_k. [E_w] = [E] mean ((1 - f) + f mean)^-1, `mean` over the path.
+    One pool gives [E]. (Derived here from the balances.)
     """
-    if not 0 <= fraction <= 1:
-        raise InputError(f"fraction = {fraction}: expected 0 to 1")
+    if not 0 <= fraction < 1:
+        raise InputError(f"fraction = {fraction}: expected 0 to below 1")
+    if pools is not None and (pools < 1 or pools != int(pools)):
+        raise InputError(f"pools = {pools}: expected a whole number of one or more")
     E, S = _pair(E, S)
-    tray = tray_efficiency(E, S, mixing)
-    f = np.linalg.solve(E, tray)
-    return np.asarray(tray @ np.linalg.inv(np.eye(E.shape[-1]) + fraction * (f - np.eye(E.shape[-1]))))
+    z, U = np.linalg.eig(S @ E)
+    z = z.astype(complex)
+    mean = _mean_drive_plug(z, fraction) if pools is None else _mean_drive_pools(z, fraction, int(pools))
+    ratio = mean / ((1.0 - fraction) + fraction * mean)
+    return np.asarray((E @ (U * ratio[..., None, :]) @ np.linalg.inv(U)).real)
+
+
+def _mean_drive_plug(z: NDArray[np.complex128], fraction: float) -> NDArray[np.complex128]:
+    """Mean of ((1 - f s)/(1 - f))^(z/f) over s: ((1 - f)^(-z/f) - (1 - f))/(f + z), (e^z - 1)/z at f = 0."""
+    if fraction < 1e-9:
+        small = np.abs(z) < 1e-9
+        return np.where(small, 1.0, np.expm1(z) / np.where(small, 1.0, z))
+    return np.asarray(((1.0 - fraction) ** (-z / fraction) - (1.0 - fraction)) / (fraction + z))
+
+
+def _mean_drive_pools(z: NDArray[np.complex128], fraction: float, pools: int) -> NDArray[np.complex128]:
+    drive, total = np.ones_like(z), np.zeros_like(z)
+    for k in range(pools, 0, -1):
+        total += drive / pools
+        drive = drive * (1.0 + z / (pools * (1.0 - fraction * (k - 1) / pools)))
+    return total
 
 
 def overall_efficiency(E_MV: Array, stripping_factor: Array) -> Array:
@@ -121,8 +144,8 @@ def overall_efficiency(E_MV: Array, stripping_factor: Array) -> Array:
         where = tuple(int(i) for i in np.argwhere((inside <= 0) | (S <= 0))[0])
         raise InputError(f"E_MV{list(where)} = {E[where]}, stripping_factor = {S[where]}: 1 + E (S - 1) is not "
                          "positive")
-    near = np.abs(S - 1.0) < 1e-9
-    return np.where(near, E, np.log(inside) / np.where(near, 1.0, np.log(np.where(near, 2.0, S))))
+    near = S == 1.0
+    return np.where(near, E, np.log1p(E * (S - 1.0)) / np.where(near, 1.0, np.log1p(S - 1.0)))
 
 
 def _square(name: str, value: Array) -> Array:
@@ -157,8 +180,8 @@ def _vapor_maps(E: Array, flip: Array, trays: int, P: int, m: int) -> list[tuple
     return maps
 
 
-def _chebyshev(points: int) -> tuple[Array, Array, Array]:
-    """Chebyshev points on 0..1, differentiation matrix, Clenshaw-Curtis weights."""
+def _chebyshev(points: int) -> tuple[Array, Array]:
+    """Differentiation matrix and Clenshaw-Curtis weights of the Chebyshev points on 0..1."""
     k = np.arange(points)
     x = np.cos(np.pi * k / (points - 1))
     c = np.where((k == 0) | (k == points - 1), 2.0, 1.0) * (-1.0) ** k
@@ -168,4 +191,4 @@ def _chebyshev(points: int) -> tuple[Array, Array, Array]:
     order = np.arange(points)
     moments = np.where(order % 2 == 0, 2.0 / (1.0 - np.where(order % 2 == 0, order, 0) ** 2.0), 0.0)
     weights = np.linalg.solve(np.cos(np.outer(order, np.arccos(x))), moments)
-    return (1.0 - x) / 2.0, -2.0 * D, weights / 2.0
+    return -2.0 * D, weights / 2.0

@@ -21,10 +21,13 @@ from ..interface import FilmState, InterfaceFlux
 from ..properties.protocol import Array, LiquidTransport, Mask, PropertyModel, VaporTransport
 from ..stage_profile import StageProfile
 from .definitions import equilibrium_vapor, murphree_vapor, small_driving_force
-from .rating import RatingOptions, RowGroup, bulk_states, entering_streams, packed_rows
+from .rating import RatingOptions, RowGroup, bulk_states, contact_rows, packed_rows
 
 GOOD_REGRESSION = 0.8
 """Share of the variance a linear regression must explain before its shares are reported."""
+
+DEVIATION = 1.25
+"""Standard deviation over mean absolute error of a normal scatter, sqrt(pi/2)."""
 
 SAMPLE_TOLERANCE = 1e-7
 """Of the interfaces of the samples: far below any spread, two iterations fewer."""
@@ -38,8 +41,9 @@ class Uncertainty:
     """Relative standard deviations of the inputs, lognormal, independent of each other.
 
     vapor, liquid : pair coefficients of each phase. area : interfacial area. None takes the mean error the contactor's
-        correlation has in print, else `assumed`. vapor_diffusivity, liquid_diffusivity : None takes the mean errors of
-        Fuller's and of Wilke & Chang's equations. k_value : of each component's K, one factor for y* and the interface.
+        correlation has in print, times 1.25 (a normal scatter of mean absolute error e has the standard deviation
+        e sqrt(pi/2)), else `assumed`. vapor_diffusivity, liquid_diffusivity : None takes those of Fuller's and of Wilke
+        & Chang's equations. k_value : of each component's K, one factor for y* and the interface.
     assumed : where nothing is published (the result says where it was used).
     samples : a power of two. seed : of the scrambling.
     """
@@ -63,16 +67,16 @@ class Uncertainty:
             raise InputError(f"samples = {self.samples}: expected a power of two, 8 or more")
 
     def spreads(self, contactor: Contactor) -> tuple[dict[str, float], tuple[str, ...]]:
-        """Standard deviation of the logarithm of each input but K, and the names of those that were assumed."""
+        """Relative standard deviation of each input but K, and the names of those that were assumed."""
         used = getattr(contactor, "correlations", {})
         found: dict[str, float] = {}
         assumed = []
         for name in ("vapor", "liquid", "area"):
             given = getattr(self, name)
             if given is None and name in used:
-                given = used[name].record.validity.mean_error
-                if given is None:
-                    given = self.assumed
+                error = used[name].record.validity.mean_error
+                given = self.assumed if error is None else DEVIATION * error
+                if error is None:
                     assumed.append(name)
             elif given is None and name != "area":
                 given = self.assumed
@@ -80,7 +84,7 @@ class Uncertainty:
             found[name] = given or 0.0
         for name, correlation in (("vapor_diffusivity", fuller), ("liquid_diffusivity", wilke_chang)):
             given = getattr(self, name)
-            found[name] = correlation.record.validity.mean_error or 0.0 if given is None else given
+            found[name] = DEVIATION * (correlation.record.validity.mean_error or 0.0) if given is None else given
         return found, tuple(assumed)
 
 
@@ -98,10 +102,10 @@ class UncertaintyResult:
     """Spread of the rated rows; arrays over rows and components.
 
     inputs : names of the uncertain inputs, I of them. murphree, change (y_out - y_in) : intervals. hetp : of packed
-    rows (R rows, zero elsewhere), or None. pole : the driving force y* - y_in changes sign among the samples or is too
-    small in more than a twentieth of them, so the interval of E is none: read that of the change. negative :
-    probability of E < 0. shares : first-order shares, (R, n, I), of E where `of_efficiency`, else of the change.
-    explained : R^2 of the regression behind them. assumed : inputs whose
+    rows (R rows; infinite where more than a twentieth of the samples have none), or None. pole : the driving force
+    y* - y_in changes sign among the samples or is too small in more than a twentieth of them, so the interval of E is
+    none: read that of the change. negative : probability of E < 0. shares : first-order shares, (R, n, I), of E where
+    `of_efficiency`, else of the change. explained : R^2 of the regression behind them. assumed : inputs whose
     scatter is not published and was assumed.
     """
 
@@ -208,27 +212,29 @@ def sample_rows(profile: StageProfile, hardware: Hardware, properties: PropertyM
     from scipy.stats import qmc  # slow to import, and only needed here
 
     options = replace(options or RatingOptions(), point=RatingOptions().point)
-    rows, entering = entering_streams(profile, properties)
+    rows, entering, packed = contact_rows(profile, properties)
     n, R, S = len(profile.names), rows.size, uncertainty.samples
     ordinary = np.flatnonzero(properties.condensable & properties.volatile)
     scores = ndtri(np.clip(qmc.Sobol(len(FACTORS) + ordinary.size, scramble=True, rng=uncertainty.seed).random(S),
                            1e-12, 1 - 1e-12))
     K = np.ones((S, n))
-    K[:, ordinary] = np.exp(np.log1p(uncertainty.k_value) * scores[:, len(FACTORS):])
-    packed = np.array([profile.kind[row] == "segment" for row in rows])
+    K[:, ordinary] = np.exp(_log_deviation(uncertainty.k_value) * scores[:, len(FACTORS):])
     bulk = bulk_states(profile, rows, entering, packed)
     y_out, driving = np.zeros((S, R, n)), np.zeros((S, R, n))
-    E, small, HETP = np.zeros((S, R, n)), np.zeros((S, R, n), bool), np.zeros((S, R, n))
+    E, small = np.zeros((S, R, n)), np.zeros((S, R, n), bool)
+    HETP, no_HETP = np.zeros((S, R, n)), np.ones((S, R, n), bool)
     assumed: set[str] = set()
     active = np.zeros(len(FACTORS), bool)
-    for contactor, index in by_contactor(hardware, profile.number[rows]):
+    members = [(contactor, part) for contactor, index in by_contactor(hardware, profile.number[rows])
+               for part in (index[~packed[index]], index[packed[index]]) if part.size]
+    for contactor, index in members:
         spreads, guessed = uncertainty.spreads(contactor)
         assumed |= set(guessed)
-        factors = np.exp(np.log1p([spreads[name] for name in FACTORS]) * scores[:, :len(FACTORS)])
+        factors = np.exp(_log_deviation([spreads[name] for name in FACTORS]) * scores[:, :len(FACTORS)])
         active |= np.array([spreads[name] > 0 for name in FACTORS])
         plain = RowGroup(profile, rows, entering, bulk, index, contactor, properties)
         near, shift = None, np.zeros((R, n))
-        if not packed[index].any():
+        if not packed[index[0]]:
             # Samples take the liquid's path in one stretch, a third of the work; what that does to the rated row itself
             # is taken off every sample.
             rough = plain.trays(options, stretches=1)[0]
@@ -239,14 +245,12 @@ def sample_rows(profile: StageProfile, hardware: Hardware, properties: PropertyM
         for s, j in _chunks(S, index):
             model = ScaledVolatility(properties, K[s])
             group = RowGroup(profile, rows, entering, bulk, j, contactor, model, _Change(*factors[s].T))
-            is_packed = packed[j]
-            if is_packed.any() and not is_packed.all():
-                raise InputError("hardware: one section holds both trays and segments")
             x, T, P = profile.x[rows[j]], profile.T_L[rows[j]], profile.P[rows[j]]
-            if is_packed.all():
+            if packed[index[0]]:
                 segment = group.segments()
                 y_out[s, j] = segment.y
-                HETP[s, j] = packed_rows(j, group, x, T, segment).HETP
+                heights = packed_rows(j, group, x, T, segment, options)
+                HETP[s, j], no_HETP[s, j] = heights.HETP, heights.undefined
             else:
                 start = None if near is None else repeated(near, place[j])
                 y_out[s, j] = shift[j] + group.trays(options, start=start, tolerance=SAMPLE_TOLERANCE,
@@ -265,7 +269,8 @@ def sample_rows(profile: StageProfile, hardware: Hardware, properties: PropertyM
     good = (explained_E > GOOD_REGRESSION) & ~pole
     return UncertaintyResult(
         inputs=tuple(names[i] for i in used), murphree=_interval(E), change=_interval(change),
-        hetp=_interval(HETP) if packed.any() else None, pole=pole, negative=(E < 0).mean(0),
+        hetp=_interval(np.where(no_HETP.mean(0) > 0.05, np.inf, HETP)) if packed.any() else None,
+        pole=pole, negative=(E < 0).mean(0),
         shares=np.where(good[..., None], of_E, of_change), of_efficiency=good,
         explained=np.where(good, explained_E, explained), assumed=tuple(sorted(assumed)))
 
@@ -288,8 +293,14 @@ def repeated(interface: InterfaceFlux, index: NDArray[np.int64]) -> InterfaceFlu
     return replace(interface, **arrays, films=films, derivatives=None)
 
 
+def _log_deviation(relative: float | list[float]) -> Array:
+    """Standard deviation of the logarithm of a lognormal factor with this relative standard deviation."""
+    return np.sqrt(np.log1p(np.square(relative)))
+
+
 def _interval(values: Array) -> Interval:
-    return Interval(*np.quantile(values, (0.05, 0.5, 0.95), axis=0))
+    # Nearest-rank quantiles: an infinite sample must not turn its neighbours into NaN.
+    return Interval(*np.quantile(values, (0.05, 0.5, 0.95), axis=0, method="nearest"))
 
 
 def _shares(scores: Array, values: Array) -> tuple[Array, Array]:

@@ -23,6 +23,11 @@ class Calls:
         self._note(function, arguments, 0)
         return np.broadcast_to(np.asarray(function.silent(**arguments), float), self.batch)
 
+    def noted(self, function: Correlation[..., Any], **arguments: Any) -> Any:
+        """The correlation's own result, for those that give more than one array."""
+        self._note(function, arguments, 0)
+        return function.silent(**arguments)
+
     def pairs(self, function: Correlation[..., Any], diffusivity: Array, **arguments: Any) -> Array:
         """The correlation for each pair of each stage, (..., n, n), from pair diffusivities (..., n, n)."""
         n = diffusivity.shape[-1]

@@ -3,6 +3,7 @@ from __future__ import annotations
 
 import numpy as np
 
+from ..errors import InputError
 from .calls import pair_mean
 from .protocol import Array, LiquidTransport, VaporTransport
 
@@ -15,4 +16,6 @@ def analogy(kappa: Array, bulk: VaporTransport | LiquidTransport, exponent: floa
     """
     diffusivity = pair_mean(bulk.diffusivity)
     volumetric = bulk.molar_density * bulk.heat_capacity
+    if not (volumetric > 0).all():
+        raise InputError("heat capacity of a phase is zero: the heat-transfer analogy needs one")
     return np.asarray(pair_mean(kappa) * volumetric * (bulk.conductivity / (volumetric * diffusivity)) ** exponent)

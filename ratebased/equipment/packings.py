@@ -189,7 +189,9 @@ def billet_of(bed: PackedBed) -> BilletConstants:
 
 @dataclass(frozen=True)
 class RandomPacking(PackedBed):
-    """Dumped packing. nominal_size m; critical_surface_tension of its material, N/m (steel 0.075, ceramic 0.061,
+    """Dumped packing.
+
+    nominal_size m; critical_surface_tension of its material, N/m (steel 0.075, ceramic 0.061,
     polyethylene 0.033); packing_factor of the generalised flooding line, 1/m, or None (then flooding is not given
     unless `billet` has the constant); method: `Onda()`, `BravoFair(bed_height)`, `BilletSchultes()`.
     """
@@ -254,7 +256,7 @@ class RandomPacking(PackedBed):
         flooding = drop = holdup = None
         b = self.billet
         if b is not None and b.flooding is not None:
-            flooding = vapor_velocity / billet_flooding(self, state)
+            flooding = vapor_velocity / billet_flooding(self, state, calls)
         elif self.packing_factor is not None:
             flooding = vapor_velocity / calls(
                 packing_limits.generalized_flooding, flow_ratio=state.liquid_mass_flow / state.vapor_mass_flow,
@@ -266,17 +268,17 @@ class RandomPacking(PackedBed):
                            specific_area=self.specific_area, holdup_constant=b.holdup)
             if b.friction is not None:
                 drop = self.height(state) * billet_pressure_gradient(self, state, holdup, calls)
-        return Hydraulics(flooding=flooding, pressure_drop=drop, liquid_holdup=holdup)
+        return Hydraulics(flooding=flooding, pressure_drop=drop, liquid_holdup=holdup, notes=calls.notes)
 
 
-def billet_flooding(bed: PackedBed, state: ContactState) -> Array:
+def billet_flooding(bed: PackedBed, state: ContactState, calls: Calls) -> Array:
     """Flooding velocity of the vapour at the same L/V, m/s (Billet & Schultes 1999)."""
     arguments = {
         "flow_ratio": state.liquid_mass_flow / state.vapor_mass_flow, "vapor_density": state.vapor.mass_density,
         "liquid_density": state.liquid.mass_density, "vapor_viscosity": state.vapor.viscosity,
         "liquid_viscosity": state.liquid.viscosity, "specific_area": bed.specific_area,
         "void_fraction": bed.void_fraction, "flooding_constant": billet_of(bed).need("flooding")}
-    return np.asarray(packing_limits.billet_schultes_flooding.silent(**arguments).vapor_velocity)
+    return np.asarray(calls.noted(packing_limits.billet_schultes_flooding, **arguments).vapor_velocity)
 
 
 def billet_pressure_gradient(bed: PackedBed, state: ContactState, holdup: Array, calls: Calls) -> Array:

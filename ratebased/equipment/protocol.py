@@ -73,16 +73,19 @@ class Hydraulics:
     """Operating point of a stage against its limits, batched; None where the contactor has no method for it.
 
     flooding: vapour velocity over flooding velocity at the same L/V. pressure_drop Pa (a stage; a segment of its
-    height). liquid_holdup m3/m3 (packing) or clear liquid height m (tray). weeping: weep-point hole velocity over hole
-    velocity (above one weeps). downcomer: backup over height available.
+    height). clear_liquid m (tray), liquid_holdup m3/m3 (packing). weeping: weep-point hole velocity over hole velocity
+    (above one weeps). downcomer: level of the froth in it over spacing and weir height. entrainment: kg of liquid
+    carried up by a kg of vapour. notes: as in `TransferCoefficients`.
     """
 
     flooding: Array | None
     pressure_drop: Array | None = None
+    clear_liquid: Array | None = None
     liquid_holdup: Array | None = None
     weeping: Array | None = None
     downcomer: Array | None = None
     entrainment: Array | None = None
+    notes: dict[str, NDArray[np.bool_]] = field(default_factory=dict)
 
 
 @runtime_checkable

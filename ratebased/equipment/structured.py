@@ -7,7 +7,7 @@ from typing import Any, Protocol
 
 import numpy as np
 
-from correlations import Correlation, packing, packing_area, packing_coefficients, packing_pressure_drop
+from correlations import Correlation, packing, packing_area, packing_coefficients, packing_limits, packing_pressure_drop
 
 from ..arguments import positive_scalar
 from ..errors import InputError
@@ -51,9 +51,11 @@ class RochaBravoFair:
         factor = calls(packing_area.rocha_bravo_fair_holdup_factor, **_film(state, liquid_velocity),
                        surface_tension=state.liquid.surface_tension, void_fraction=bed.void_fraction,
                        corrugation_side=bed.side, corrugation_angle=bed.angle)
-        found = packing_pressure_drop.rocha_bravo_fair.silent(
-            vapor_velocity, state.vapor.mass_density, state.vapor.viscosity, liquid_velocity,
-            state.liquid.mass_density, state.liquid.viscosity, factor, bed.void_fraction, bed.side, bed.angle)
+        found = calls.noted(
+            packing_pressure_drop.rocha_bravo_fair, vapor_velocity=vapor_velocity,
+            vapor_density=state.vapor.mass_density, vapor_viscosity=state.vapor.viscosity,
+            **_film(state, liquid_velocity), holdup_factor=factor, void_fraction=bed.void_fraction,
+            corrugation_side=bed.side, corrugation_angle=bed.angle)
         return SheetOperation(np.asarray(found[0]), np.asarray(found[1]))
 
     def __call__(self, bed: StructuredPacking, state: ContactState, calls: Calls) -> tuple[Array, Array, Array]:
@@ -164,7 +166,10 @@ class StructuredPacking(PackedBed):
     @property
     def correlations(self) -> dict[str, Correlation[..., Any]]:
         """The correlations used, by what for."""
-        return dict(self.method.correlations)
+        found = dict(self.method.correlations)
+        if self.billet is not None and self.billet.flooding is not None:
+            found["flooding"] = packing_limits.billet_schultes_flooding
+        return found
 
     def transfer(self, state: ContactState) -> TransferCoefficients:
         """Pair coefficients on the interfacial area of each segment; heat by Chilton-Colburn and penetration."""
@@ -181,10 +186,10 @@ class StructuredPacking(PackedBed):
         found = self.method.operation(self, state, calls)
         flooding = None
         if self.billet is not None and self.billet.flooding is not None:
-            flooding = self.velocities(state)[0] / billet_flooding(self, state)
+            flooding = self.velocities(state)[0] / billet_flooding(self, state, calls)
         drop = found.pressure_gradient
         return Hydraulics(flooding=flooding, liquid_holdup=found.holdup,
-                          pressure_drop=None if drop is None else drop * self.height(state))
+                          pressure_drop=None if drop is None else drop * self.height(state), notes=calls.notes)
 
 
 def _film(state: ContactState, liquid_velocity: Array) -> dict[str, Array]:

@@ -43,8 +43,9 @@ class TrayOperation:
 class TrayTransferMethod(Protocol):
     """Transfer units of the pairs on a tray."""
 
-    exponent: float
-    """p of kappa ~ D^p, for the heat-transfer analogy."""
+    vapor_exponent: float
+    liquid_exponent: float
+    """p of kappa ~ D^p in each phase, for the heat-transfer analogy."""
 
     correlations: Mapping[str, Correlation[..., Any]]
     """The correlations used, by what for; "vapor" and "liquid" carry the scatter of the coefficients."""
@@ -60,7 +61,7 @@ class TrayTransferMethod(Protocol):
 class _AIChEMixing:
     """Residence time on the clear liquid of the method and the eddy diffusivity of the AIChE manual (1958)."""
 
-    exponent = 0.5
+    vapor_exponent = liquid_exponent = 0.5
 
     def clear_liquid(self, tray: CrossFlowTray, operation: TrayOperation, state: ContactState, calls: Calls) -> Array:
         """Clear liquid height, m."""
@@ -80,58 +81,45 @@ class _AIChEMixing:
                      liquid_residence_time=self.liquid_time(tray, operation, state, calls))
 
 
-class AIChESieve(_AIChEMixing):
+class _AIChE(_AIChEMixing):
+    """The vapour units of the manual with the liquid units and the clear liquid of one kind of tray."""
+
+    correlations: Mapping[str, Correlation[..., Any]]
+
+    def clear_liquid(self, tray: CrossFlowTray, operation: TrayOperation, state: ContactState, calls: Calls) -> Array:
+        """Clear liquid height by the manual's own equation, m."""
+        return calls(self.correlations["clear liquid"], weir_height=tray.weir_height,
+                     weir_load=operation.path_load, active_velocity=operation.active_velocity,
+                     vapor_density=state.vapor.mass_density)
+
+    def __call__(self, tray: CrossFlowTray, operation: TrayOperation, state: ContactState,
+                 calls: Calls) -> tuple[Array, Array]:
+        """N_V, N_L of the pairs."""
+        vapor = calls.pairs(
+            self.correlations["vapor"], state.vapor.diffusivity, active_velocity=operation.active_velocity,
+            vapor_density=state.vapor.mass_density, vapor_viscosity=state.vapor.viscosity,
+            weir_height=tray.weir_height, weir_load=operation.path_load)
+        liquid = calls.pairs(
+            self.correlations["liquid"], state.liquid.diffusivity, active_velocity=operation.active_velocity,
+            vapor_density=state.vapor.mass_density,
+            liquid_residence_time=self.liquid_time(tray, operation, state, calls))
+        return vapor, liquid
+
+
+class AIChESieve(_AIChE):
     """Two-film transfer units of sieve trays, AIChE Bubble-Tray Design Manual (1958)."""
 
     correlations = {"vapor": tray_transfer.aiche_vapor_units, "liquid": tray_transfer.aiche_sieve_liquid_units,
                     "clear liquid": tray_hydraulics.aiche_sieve_clear_liquid,
                     "eddy diffusivity": mixing.aiche_eddy_diffusivity}
 
-    def clear_liquid(self, tray: CrossFlowTray, operation: TrayOperation, state: ContactState, calls: Calls) -> Array:
-        """Clear liquid height by the manual's own equation, m."""
-        return calls(tray_hydraulics.aiche_sieve_clear_liquid, weir_height=tray.weir_height,
-                     weir_load=operation.path_load, active_velocity=operation.active_velocity,
-                     vapor_density=state.vapor.mass_density)
 
-    def __call__(self, tray: CrossFlowTray, operation: TrayOperation, state: ContactState,
-                 calls: Calls) -> tuple[Array, Array]:
-        """N_V, N_L of the pairs."""
-        vapor = calls.pairs(
-            tray_transfer.aiche_vapor_units, state.vapor.diffusivity, active_velocity=operation.active_velocity,
-            vapor_density=state.vapor.mass_density, vapor_viscosity=state.vapor.viscosity,
-            weir_height=tray.weir_height, weir_load=operation.path_load)
-        liquid = calls.pairs(
-            tray_transfer.aiche_sieve_liquid_units, state.liquid.diffusivity,
-            active_velocity=operation.active_velocity, vapor_density=state.vapor.mass_density,
-            liquid_residence_time=self.liquid_time(tray, operation, state, calls))
-        return vapor, liquid
-
-
-class AIChEBubbleCap(_AIChEMixing):
+class AIChEBubbleCap(_AIChE):
     """Two-film transfer units of bubble-cap trays, AIChE Bubble-Tray Design Manual (1958)."""
 
     correlations = {"vapor": tray_transfer.aiche_vapor_units, "liquid": tray_transfer.aiche_bubble_cap_liquid_units,
                     "clear liquid": tray_hydraulics.aiche_bubble_cap_clear_liquid,
                     "eddy diffusivity": mixing.aiche_eddy_diffusivity}
-
-    def clear_liquid(self, tray: CrossFlowTray, operation: TrayOperation, state: ContactState, calls: Calls) -> Array:
-        """Clear liquid height by the manual's own equation, m."""
-        return calls(tray_hydraulics.aiche_bubble_cap_clear_liquid, weir_height=tray.weir_height,
-                     weir_load=operation.path_load, active_velocity=operation.active_velocity,
-                     vapor_density=state.vapor.mass_density)
-
-    def __call__(self, tray: CrossFlowTray, operation: TrayOperation, state: ContactState,
-                 calls: Calls) -> tuple[Array, Array]:
-        """N_V, N_L of the pairs."""
-        vapor = calls.pairs(
-            tray_transfer.aiche_vapor_units, state.vapor.diffusivity, active_velocity=operation.active_velocity,
-            vapor_density=state.vapor.mass_density, vapor_viscosity=state.vapor.viscosity,
-            weir_height=tray.weir_height, weir_load=operation.path_load)
-        liquid = calls.pairs(
-            tray_transfer.aiche_bubble_cap_liquid_units, state.liquid.diffusivity,
-            active_velocity=operation.active_velocity, vapor_density=state.vapor.mass_density,
-            liquid_residence_time=self.liquid_time(tray, operation, state, calls))
-        return vapor, liquid
 
 
 class ChanFair(_AIChEMixing):
@@ -180,9 +168,10 @@ class ChenChuang(_AIChEMixing):
 class Zuiderweg(_AIChEMixing):
     """Coefficients and area of sieve trays, Zuiderweg (1982); spray or mixed regime below, emulsion flow above 3."""
 
-    exponent = 0.25
+    vapor_exponent, liquid_exponent = 0.0, 0.25
     correlations = {"vapor": tray_transfer.zuiderweg_vapor, "liquid": tray_transfer.zuiderweg_liquid,
                     "area": tray_transfer.zuiderweg_spray_area,
+                    "area in emulsion flow": tray_transfer.zuiderweg_emulsion_area,
                     "clear liquid": tray_hydraulics.hofhuis_zuiderweg_clear_liquid,
                     "eddy diffusivity": mixing.aiche_eddy_diffusivity}
 

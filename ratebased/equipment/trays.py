@@ -47,6 +47,9 @@ class CrossFlowTray:
         for name in ("diameter", "spacing", "weir_height", "hole_diameter", "hole_area_fraction", "downcomer_fraction",
                      "deck_thickness", "foaming_factor"):
             positive_scalar(name, getattr(self, name))
+        for name in ("hole_pitch", "apron_clearance"):
+            if getattr(self, name) is not None:
+                positive_scalar(name, getattr(self, name))
         if not self.downcomer_fraction < 0.4:
             raise InputError(f"downcomer_fraction = {self.downcomer_fraction}: expected below 0.4 of the cross-section")
         if not self.hole_area_fraction < 0.35:
@@ -117,7 +120,7 @@ class CrossFlowTray:
     def transfer(self, state: ContactState) -> TransferCoefficients:
         """Pair coefficients per active area from the transfer units: kappa_V A = N_V Q_V, kappa_L A = N_L Q_L.
 
-        Heat by analogy, h = mean kappa c cp Le^p, with the exponent p of the method's kappa ~ D^p.
+        Heat by analogy, h = mean kappa c cp Le^p, with the exponents p of the method's kappa ~ D^p.
         """
         calls = Calls(state.V.shape)
         operation = self.operation(state, calls)
@@ -125,8 +128,9 @@ class CrossFlowTray:
         kappa_V = N_V * (state.vapor_volume_flow / self.active_area)[..., None, None]
         kappa_L = N_L * (state.liquid_volume_flow / self.active_area)[..., None, None]
         return TransferCoefficients(
-            kappa_vapor=kappa_V, kappa_liquid=kappa_L, h_vapor=analogy(kappa_V, state.vapor, self.method.exponent),
-            h_liquid=analogy(kappa_L, state.liquid, self.method.exponent),
+            kappa_vapor=kappa_V, kappa_liquid=kappa_L,
+            h_vapor=analogy(kappa_V, state.vapor, self.method.vapor_exponent),
+            h_liquid=analogy(kappa_L, state.liquid, self.method.liquid_exponent),
             area=np.full(state.V.shape, self.active_area), basis="active area", notes=calls.notes)
 
     @property
@@ -134,6 +138,10 @@ class CrossFlowTray:
         """The correlations used, by what for."""
         return {**self.method.correlations, "flooding": tray_limits.fair_flooding,
                 "froth density": tray_hydraulics.bennett_froth_density,
+                "orifice coefficient": tray_hydraulics.leibson_orifice_coefficient,
+                "residual pressure drop": tray_hydraulics.bubble_residual_head,
+                "weir crest": tray_hydraulics.francis_weir_crest,
+                "underflow": tray_hydraulics.downcomer_underflow_head,
                 "dry pressure drop": self.dry_correlation, "weep point": tray_limits.froude_weep_point,
                 "entrainment": tray_limits.hunt_entrainment,
                 "downcomer backup": tray_hydraulics.downcomer_backup}
@@ -169,12 +177,13 @@ class CrossFlowTray:
                        underflow_head=underflow)
         level = calls(tray_hydraulics.downcomer_froth_height, backup=backup, downcomer_froth_density=0.5)
         return Hydraulics(
-            flooding=o.flooding, pressure_drop=drop, liquid_holdup=o.clear_liquid,
+            flooding=o.flooding, pressure_drop=drop, clear_liquid=o.clear_liquid,
             weeping=self.weep_velocity(o, state, calls) / o.hole_velocity,
             downcomer=level / (self.spacing + self.weir_height),
             entrainment=calls(tray_limits.hunt_entrainment, surface_tension=state.liquid.surface_tension,
                               net_velocity=o.net_velocity, tray_spacing=self.spacing,
-                              clear_liquid_height=o.clear_liquid))
+                              clear_liquid_height=o.clear_liquid),
+            notes=calls.notes)
 
     @property
     def dry_correlation(self) -> Correlation[..., Any]:

@@ -35,7 +35,10 @@ def bubble_line(properties: PropertyModel, P: Array, x: Array, T_guess: Array) -
     T, y = bubble_point(properties, P, x, T_guess)
     d = k_value_derivatives(properties, T, P, x, y)
     K = properties.k_value(T, P, x, y)
-    by_mole = d.liquid * y[..., None] + K[..., None] * (np.eye(x.shape[-1]) - x[..., None])
-    rise = y * d.temperature
+    unit = np.eye(x.shape[-1])
+    # y_i = K_i x_i: (I - diag(y) dlnK/dy) dy = y dlnK/dx + K dx + y dlnK/dT dT, and sum dy = 0 gives dT.
+    A = unit - y[..., None] * d.vapor
+    by_mole = np.linalg.solve(A, d.liquid * y[..., None] + K[..., None] * (unit - x[..., None]))
+    rise = np.linalg.solve(A, (y * d.temperature)[..., None])[..., 0]
     slope = -by_mole.sum(-2) / rise.sum(-1)[..., None]
     return BubbleLine(T, y, by_mole + rise[..., None] * slope[..., None, :], slope)

@@ -17,6 +17,8 @@ from ..properties.saturation import bubble_point
 from .point import FrothPoint, PointResult, exponential_midpoint
 
 LEAST_SHARE = 1e-9
+ROUNDING = 1e-12
+"""Of the flow: what a component may be missing by rounding."""
 
 
 @dataclass(frozen=True)
@@ -35,7 +37,7 @@ def march_upstream(point: FrothPoint, outlet: PointResult, index: NDArray[np.int
     """Transfer of trays of `pools` (B) pools each, their leaving liquids given; one batch axis.
 
     outlet: the froth at the leaving liquids, of a larger batch of which `index` picks these. Upstream froths by
-    `exponential_midpoint`.
+    `exponential_midpoint` with the coefficients of the point.
     """
     whole = (properties.condensable & properties.volatile).all()
     offset = point.T_L - bubble_point(properties, point.P, point.x, point.T_L)[0] if whole else np.zeros_like(point.T_L)
@@ -50,7 +52,8 @@ def march_upstream(point: FrothPoint, outlet: PointResult, index: NDArray[np.int
         energy += share * heat
         left = left - share
         upstream = l - share[:, None] * rate
-        feasible &= (upstream >= 0).all(-1)
+        feasible &= (upstream >= -ROUNDING * liquid_flow[:, None]).all(-1)
+        upstream = np.maximum(upstream, 0.0)
         active = np.flatnonzero(feasible & (left > LEAST_SHARE))
         if not active.size:
             return MarchResult(transferred, energy, feasible)

@@ -10,6 +10,7 @@ import numpy as np
 from scipy.linalg import expm
 
 from ..equipment.protocol import Array
+from ..errors import InputError
 from ..maxwell_stefan import resistance_matrix
 from ..properties.differences import vapor_heat_capacity
 from ..properties.protocol import PropertyModel
@@ -21,8 +22,9 @@ from .point import FrothPoint
 class MatrixPoint:
     """Vapour above a point by linear theory.
 
-    y (..., n); T_V K. efficiency: [E] with y_out - y_in = [E](y* - y_in) on the first n-1 components, (..., n-1, n-1)
-    (augmented form: at the entering vapour's temperature). y_star (..., n), T_bubble K.
+    y (..., n); T_V K. efficiency: [E] = [I] - dy_out/dy_in on the first n-1 components, (..., n-1, n-1): y_out - y_in =
+    [E](y* - y_in), in the augmented form for a vapour that enters at the bubble temperature. y_star (..., n), T_bubble
+    K.
     """
 
     y: Array
@@ -116,6 +118,9 @@ def augmented_matrix(point: FrothPoint, properties: PropertyModel) -> MatrixPoin
 
 
 def _linear(point: FrothPoint, properties: PropertyModel) -> _Linear:
+    if not (properties.condensable & properties.volatile).all():
+        raise InputError("properties: the matrix forms refer to a bubble point, which masked components do not have; "
+                         "use exponential_midpoint")
     line = bubble_line(properties, point.P, point.x, point.T_L)
     T_b, y_star, tau = line.temperature, line.vapor, line.temperature_slope
     y_ref = (point.y_in + y_star) / 2.0

@@ -15,7 +15,9 @@ from typing import Protocol
 import numpy as np
 from numpy.typing import NDArray
 
+from ..arguments import positive_array
 from ..equipment.protocol import Array
+from ..errors import ConvergenceError, InputError
 
 Complex = NDArray[np.complex128]
 
@@ -37,6 +39,10 @@ class LiquidMixing(Protocol):
 
     def factor_slope(self, z: Complex) -> Complex: ...
 
+    def taken(self, index: NDArray[np.int64]) -> LiquidMixing:
+        """The mixing of some trays of a batch."""
+        ...
+
     def stretch(self, share: Array) -> LiquidMixing | None: ...
 
     @property
@@ -53,6 +59,9 @@ class WellMixed:
     def factor_slope(self, z: Complex) -> Complex:
         return np.zeros_like(z)
 
+    def taken(self, index: NDArray[np.int64]) -> LiquidMixing:
+        return self
+
     def stretch(self, share: Array) -> LiquidMixing | None:
         return None
 
@@ -67,6 +76,11 @@ class Pools:
 
     count: Array
 
+    def __post_init__(self) -> None:
+        count = positive_array("count", self.count)
+        if (count < 1 - 1e-9).any():
+            raise InputError(f"count = {count.min()}: expected one pool or more")
+
     def factor(self, z: Complex) -> Complex:
         p = np.asarray(self.count, float)[..., None]
         series = 1.0 + z * (1.0 - 1.0 / p) / 2.0 * (1.0 + z * (1.0 - 2.0 / p) / 3.0)
@@ -77,6 +91,9 @@ class Pools:
         q = (1.0 - 1.0 / p) / 2.0
         return _quotient(z, self.factor(z) - 1.0,
                          q * (1.0 + z * (1.0 - 2.0 / p) / 3.0 * (1.0 + z * (1.0 - 3.0 / p) / 4.0)))
+
+    def taken(self, index: NDArray[np.int64]) -> LiquidMixing:
+        return self if np.ndim(self.count) == 0 else Pools(np.asarray(self.count)[index])
 
     def stretch(self, share: Array) -> LiquidMixing | None:
         return Pools(np.where(share > 0, self.count * share, 1.0))
@@ -96,6 +113,9 @@ class PlugFlow:
     def factor_slope(self, z: Complex) -> Complex:
         return _quotient(z, self.factor(z) - 1.0, 0.5 * (1.0 + z / 3.0 * (1.0 + z / 4.0)))
 
+    def taken(self, index: NDArray[np.int64]) -> LiquidMixing:
+        return self
+
     def stretch(self, share: Array) -> LiquidMixing | None:
         return self
 
@@ -110,12 +130,16 @@ class EddyDiffusion:
 
     peclet: Array
 
+    def __post_init__(self) -> None:
+        positive_array("peclet", self.peclet)
+
     def factor(self, z: Complex) -> Complex:
         Pe = np.asarray(self.peclet, float)[..., None]
         zero = z == 0
         w = np.where(zero, 1.0, z)
         b = 2.0 * w / (1.0 + np.sqrt(1.0 + 4.0 * w / Pe))
         both = b + Pe
+        both = np.where(np.abs(both + b) < 1e-9 * Pe, both * (1.0 + 1e-9), both)  # removable: b = -Pe/2
         f = -np.expm1(-both) / (both * (1.0 + both / b)) + np.expm1(b) / (b * (1.0 + b / both))
         return np.where(zero, 1.0, f)
 
@@ -123,6 +147,9 @@ class EddyDiffusion:
         Pe = np.asarray(self.peclet, float)[..., None]
         small = np.abs(z) < 1e-5
         return np.where(small, self._first(Pe), (self.factor(z) - 1.0) / np.where(small, 1.0, z))
+
+    def taken(self, index: NDArray[np.int64]) -> LiquidMixing:
+        return self if np.ndim(self.peclet) == 0 else EddyDiffusion(np.asarray(self.peclet)[index])
 
     def stretch(self, share: Array) -> LiquidMixing | None:
         return None
@@ -143,7 +170,8 @@ def mixed_tray(mixing: LiquidMixing, transfer: Array, slope: Array) -> tuple[Arr
     """Mean transfer over a tray and mean departure of its liquid from the leaving one.
 
     transfer: R_p at the leaving liquid, (..., m). slope: [B] = dR/dw there, (..., m, m). Returns f(-[B]) R_p and the
-    mean of w - w_p, both (..., m).
+    mean of w - w_p, both (..., m); not finite where the response grows beyond all bounds along the path. Raises
+    `ConvergenceError` where a real number of pools has no real answer.
     """
     w, U = np.linalg.eig(-slope)
     poor = np.linalg.cond(U) > 1e8
@@ -155,9 +183,14 @@ def mixed_tray(mixing: LiquidMixing, transfer: Array, slope: Array) -> tuple[Arr
         w, U = np.where(poor[..., None], again, w), np.where(poor[..., None, None], vectors, U)
     w, U = w.astype(complex), U.astype(complex)
     r = np.linalg.solve(U, transfer.astype(complex)[..., None])[..., 0]
-    mean = np.einsum("...ij,...j->...i", U, mixing.factor(w) * r).real
+    with np.errstate(over="ignore", invalid="ignore"):  # a path too steep for a linear response: not finite, not hidden
+        complete = np.einsum("...ij,...j->...i", U, mixing.factor(w) * r)
+        departure = -np.einsum("...ij,...j->...i", U, mixing.factor_slope(w) * r).real
+    mean = complete.real
+    if (np.abs(complete.imag) > 1e-6 * np.abs(complete).max(-1, keepdims=True)).any():
+        raise ConvergenceError("mixing of the liquid: a real number of pools has no real answer for a transfer that "
+                               "falls off so steeply along the path; use whole pools or plug flow")
     # mean(w - w_p) = (f(-B) - I) B^-1 R_p, and (f(z) - 1)/z at z = -B carries the opposite sign
-    departure = -np.einsum("...ij,...j->...i", U, mixing.factor_slope(w) * r).real
     return mean, departure
 
 

@@ -45,6 +45,9 @@ class FrothPoint:
     tolerance: float = 1e-10
 
 
+NO_CONDUCTION = 1e-12
+"""Factor on the heat-transfer coefficient beside a vapour that has no heat capacity."""
+
 LocalCoefficients = Callable[[Array, Array, Array], TransferCoefficients]
 """Coefficients at a local state of the vapour: called with (V, y, T_V), each batched over stages."""
 
@@ -57,9 +60,10 @@ class PointResult:
     transferred to the liquid, W. sensitivity_vapor: d(g, T_V) out by d(g, T_V) in, (..., n+1, n+1).
     sensitivity_liquid: by (x, T_L), (..., n+1, n+1). flux: mean interfacial flux, mol/(m2 s), (..., n).
     interface_residual (films, equilibrium and sums, scaled), energy_residual: worst of the interfaces solved.
-    energy_closure: (enthalpy in - out - transferred) over the sum of the magnitudes of the enthalpy transferred by each
-    component. error: estimate of max|y|, (...). solutions: how many batched interface solutions it took. middle: the
-    interface at the mean state.
+    energy_closure: enthalpy in - out against the energy flux integrated on its own, over the sum of the magnitudes of
+    the enthalpy each component takes along: the error of the method (component flows close by construction). error:
+    estimate of max|y|, (...). solutions: how many batched interface solutions it took. middle: the interface at the
+    mean state.
     """
 
     V: Array
@@ -98,26 +102,28 @@ def exponential_midpoint(point: FrothPoint, properties: PropertyModel, *, local:
     n = point.x.shape[-1]
     froth = _Froth(point, properties, local)
     u = froth.start()
+    given = np.zeros(u.shape[:-1])
     total = np.zeros(u.shape)
     vapor = np.broadcast_to(np.eye(n + 1), (*u.shape, n + 1)).copy()
     liquid = np.zeros(vapor.shape)
     error = np.zeros(u.shape[:-1])
     h = 1.0 / steps
     for _ in range(steps):
-        f0, J0, _, interface = froth.linearized(u)
+        f0, J0, _, _, interface = froth.linearized(u)
         euler = h * _phi_action(h * J0, f0[..., None])[..., 0]
         middle = u + 0.5 * h * _phi_action(0.5 * h * J0, f0[..., None])[..., 0]
-        fm, Jm, Wm, interface = froth.linearized(middle, interface)
+        fm, Jm, Wm, (Em, by_E), interface = froth.linearized(middle, interface)
         slope = fm + np.einsum("...ij,...j->...i", Jm, u - middle)
         action = h * _phi_action(h * Jm, np.concatenate((slope[..., None], Wm), -1))
         step = action[..., 0]
+        given += h * (Em + (by_E * (u - middle)).sum(-1)) + h * (by_E * _phi_integral(h * Jm, h * slope)).sum(-1)
         propagator = np.eye(n + 1) + h * Jm @ _phi_action(h * Jm, np.broadcast_to(np.eye(n + 1), Jm.shape))
         liquid = propagator @ liquid + action[..., 1:]
         vapor = propagator @ vapor
         error += np.abs(step - euler)[..., :n].max(-1) / u[..., :n].sum(-1)
         total += step
         u = u + step
-    return froth.result(u, -total[..., :n], None, vapor, liquid, error, 2 * steps, interface)
+    return froth.result(u, -total[..., :n], given, vapor, liquid, error, 2 * steps, interface)
 
 
 def integral(point: FrothPoint, properties: PropertyModel, *, local: LocalCoefficients | None = None,
@@ -172,6 +178,9 @@ class _Froth:
         c = point.coefficients
         self.liquid = Bulk(point.x, point.T_L, c.kappa_liquid, c.h_liquid, point.c_liquid)
         self.worst = np.zeros((2, *point.V_in.shape))
+        # A vapour without heat capacity has the temperature of its interface: it conducts nothing.
+        self.without_heat = ~((point.y_in * self.capacity(self.start())).sum(-1) > 0)
+        self.absent = (point.y_in == 0) & (point.x == 0)
 
     def start(self) -> Array:
         p = self.point
@@ -187,7 +196,8 @@ class _Froth:
             coefficients = self.local(V, y, T_V)
             c_vapor = self.properties.vapor_transport(T_V, p.P, y).molar_density
             liquid = replace(liquid, kappa=coefficients.kappa_liquid, heat_transfer=coefficients.h_liquid)
-        vapor = Bulk(y, T_V, coefficients.kappa_vapor, coefficients.h_vapor, c_vapor)
+        h_vapor = np.where(self.without_heat, NO_CONDUCTION * coefficients.h_vapor, coefficients.h_vapor)
+        vapor = Bulk(y, T_V, coefficients.kappa_vapor, h_vapor, c_vapor)
         answer = interface_flux(vapor, liquid, self.properties, p.P, start=p.start if last is None else last,
                                 derivatives=derivatives, tolerance=p.tolerance)
         self.worst[0] = np.maximum(self.worst[0], answer.residual)
@@ -196,7 +206,8 @@ class _Froth:
 
     def capacity(self, u: Array) -> Array:
         """cp_i of the vapour, J/(mol K)."""
-        return vapor_heat_capacity(self.properties, u[..., -1], self.point.P, u[..., :-1])
+        g = np.maximum(u[..., :-1], 0.0)
+        return vapor_heat_capacity(self.properties, u[..., -1], self.point.P, g / g.sum(-1, keepdims=True))
 
     def slope(self, u: Array, last: InterfaceFlux | None) -> tuple[InterfaceFlux, Array, Array]:
         """The interface, du/ds and the enthalpy given to the liquid, W per unit of s."""
@@ -206,8 +217,9 @@ class _Froth:
         return (answer, -area[..., None] * np.concatenate((answer.N, warm[..., None]), -1),
                 area * answer.energy_flux)
 
-    def linearized(self, u: Array, last: InterfaceFlux | None = None) -> tuple[Array, Array, Array, InterfaceFlux]:
-        """du/ds, its Jacobian by u and its Jacobian by the liquid's (x, T_L)."""
+    def linearized(self, u: Array, last: InterfaceFlux | None = None
+                   ) -> tuple[Array, Array, Array, tuple[Array, Array], InterfaceFlux]:
+        """du/ds, its Jacobians by u and by the liquid's (x, T_L), and the enthalpy given, W, with its slope by u."""
         n = u.shape[-1] - 1
         answer, area = self.interface(u, last, True)
         d = answer.derivatives
@@ -228,25 +240,47 @@ class _Froth:
         by_g[..., n, :] -= np.where(on, q * cp / safe**2, 0.0)
         a = -area[..., None, None]
         J = a * np.concatenate((by_g, by_T[..., None]), -1)
-        return a[..., 0] * np.concatenate((answer.N, warm), -1), J, a * by_liquid, answer
+        by_E = np.concatenate(((d.dE[..., :n] - (d.dE[..., :n] * y).sum(-1, keepdims=True)) / V[..., 0],
+                               d.dE[..., n:n + 1]), -1)
+        energy = (area * answer.energy_flux, area[..., None] * by_E)
+        return a[..., 0] * np.concatenate((answer.N, warm), -1), J, a * by_liquid, energy, answer
 
-    def result(self, u: Array, transferred: Array, energy: Array | None, vapor: Array, liquid: Array, error: Array,
+    def result(self, u: Array, transferred: Array, given: Array, vapor: Array, liquid: Array, error: Array,
                solutions: int, middle: InterfaceFlux) -> PointResult:
         p = self.point
-        g, T_V = u[..., :-1], u[..., -1]
+        g = np.where(self.absent, 0.0, u[..., :-1])
+        transferred = np.where(self.absent, 0.0, transferred)
+        T_V = np.where(self.without_heat, middle.T_I, u[..., -1])
         V = g.sum(-1)
         y = g / V[..., None]
         H_in = p.V_in[..., None] * p.y_in * self.properties.vapor_enthalpy(p.T_V_in, p.P, p.y_in)
         H_out = g * self.properties.vapor_enthalpy(T_V, p.P, y)
         lost = (H_in - H_out).sum(-1)
-        given = lost if energy is None else energy
         size = np.abs(H_in - H_out).sum(-1) + np.abs(given)
         area = p.coefficients.area
-        return PointResult(V=V, y=y, T_V=T_V, transferred=transferred, energy=given, sensitivity_vapor=vapor,
+        return PointResult(V=V, y=y, T_V=T_V, transferred=transferred, energy=lost, sensitivity_vapor=vapor,
                            sensitivity_liquid=liquid, flux=transferred / area[..., None],
                            interface_residual=self.worst[0], energy_residual=self.worst[1],
                            energy_closure=np.abs(lost - given) / np.where(size > 0, size, 1.0), error=error,
                            solutions=solutions, middle=middle)
+
+
+def _phi_integral(Z: Array, b: Array) -> Array:
+    """Integral over s = 0..1 of s phi(s Z) b: the second phi function, (exp Z - 1 - Z)/Z^2 times b."""
+    m = b.shape[-1]
+    big = np.zeros((*Z.shape[:-2], m + 2, m + 2))
+    big[..., :m, :m], big[..., :m, m], big[..., m, m + 1] = Z, b, 1.0
+    return _exponential(big)[..., :m, m + 1]
+
+
+def _exponential(matrix: Array) -> Array:
+    with np.errstate(over="ignore", invalid="ignore"):
+        result = np.asarray(expm(matrix))
+    if not np.isfinite(result).all():
+        failed = ~np.isfinite(result).all((-2, -1))
+        raise ConvergenceError("the froth's step overflows: more transfer units than its linear response can carry; "
+                               "use `integral`", failed=np.asarray(failed))
+    return result
 
 
 def _phi_action(Z: Array, B: Array) -> Array:
@@ -254,4 +288,4 @@ def _phi_action(Z: Array, B: Array) -> Array:
     m, k = B.shape[-2:]
     big = np.zeros((*Z.shape[:-2], m + k, m + k))
     big[..., :m, :m], big[..., :m, m:] = Z, B
-    return np.asarray(expm(big))[..., :m, m:]
+    return _exponential(big)[..., :m, m:]

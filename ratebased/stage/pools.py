@@ -47,25 +47,21 @@ def pools_in_series(entering: FrothPoint, L_in: Array, properties: PropertyModel
     """
     l_in = L_in[..., None] * entering.x
     l, T = l_in, np.array(entering.T_L, float)
-    energy = np.zeros_like(T)
     liquids = []
     guess_T = entering.T_V_in
     for pool in range(count):
         l, T, froth = _one_pool(entering, l, T, properties, count, method, pool)
         liquids.append((l.sum(-1), l / l.sum(-1, keepdims=True), T))
-        energy = energy + froth.energy / count
         guess_T = froth.T_V
-    # What the liquid gained is what it took, to the last Newton step; a liquid without heat capacity tells no energy.
+    # What the liquid gained is what it took, to the last Newton step.
     totals = l - l_in
     enthalpies = (properties.liquid_enthalpy(t, entering.P, z) for t, z in (
         (T, liquids[-1][1]), (entering.T_L, entering.x)))
     gained = (l * next(enthalpies)).sum(-1) - (l_in * next(enthalpies)).sum(-1)
-    warm = (l * liquid_heat_capacity(properties, T, entering.P, liquids[-1][1])).sum(-1) > 0
-    energy = np.where(warm, gained, energy)
     g = entering.V_in[..., None] * entering.y_in - totals
     H_in = (entering.V_in[..., None] * entering.y_in
             * properties.vapor_enthalpy(entering.T_V_in, entering.P, entering.y_in)).sum(-1)
-    T_V = vapor_temperature(properties, entering.P, g, H_in - energy, guess_T)
+    T_V = vapor_temperature(properties, entering.P, g, H_in - gained, guess_T)
     V = g.sum(-1)
     return PoolsResult(V, g / V[..., None], T_V, *(np.stack(part) for part in zip(*liquids)), totals)
 
@@ -94,10 +90,9 @@ def _newton(entering: FrothPoint, l_in: Array, T_in: Array, l: Array, T: Array, 
         froth = method(replace(entering, x=x, T_L=T), properties)
         HL = properties.liquid_enthalpy(T, P, x)
         heat = (l * liquid_heat_capacity(properties, T, P, x)).sum(-1)
-        warm = heat > 0
         balance = l - l_in - froth.transferred / count
         gap = (l * HL).sum(-1) - H_in - froth.energy / count
-        residual = np.concatenate((balance, np.where(warm, gap, 0.0)[..., None]), -1)
+        residual = np.concatenate((balance, gap[..., None]), -1)
 
         S = froth.sensitivity_liquid
         by_x, by_T = S[..., :n], S[..., n:]
@@ -114,7 +109,6 @@ def _newton(entering: FrothPoint, l_in: Array, T_in: Array, l: Array, T: Array, 
         J[..., n, :n] = HL
         J[..., n, n] = heat
         J[..., n, :] -= given / count
-        J[..., n, :] = np.where(warm[..., None], J[..., n, :], np.eye(n + 1)[n])
         step = -np.linalg.solve(J, residual[..., None])[..., 0]
         shrink = np.minimum(1.0, 0.7 / np.maximum(1e-300, (-step[..., :n] / np.maximum(l, 1e-300)).max(-1)))
         shrink = np.minimum(shrink, 20.0 / np.maximum(np.abs(step[..., n]), 1e-300))

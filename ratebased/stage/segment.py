@@ -54,7 +54,9 @@ def segment_between_ends(V_in: Array, y_in: Array, T_V_in: Array, vapor: tuple[A
         # Beyond the reach of one mean state: the exponential decay that starts with the same slope instead.
         share = transferred / np.where(g_in > 0, g_in, 1.0)
         g_out = np.where(long, g_in * np.exp(-share), g_out)
+        kept = np.where(long, transferred - (g_in - g_out), 0.0)
         transferred = g_in - g_out
+        energy = energy - (kept * properties.vapor_enthalpy(vapor[1], P, vapor[0])).sum(-1)
     H_in = (g_in * properties.vapor_enthalpy(T_V_in, P, y_in)).sum(-1)
     T_V = vapor_temperature(properties, P, g_out, H_in - energy, vapor[1])
     V = g_out.sum(-1)
