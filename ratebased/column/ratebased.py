@@ -12,7 +12,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from ..arguments import positive_scalar
-from ..equipment.protocol import Hydraulics
+from ..equipment.protocol import LIMITS
 from ..errors import ApproximationWarning, ConvergenceError, InputError
 from ..interface import InterfaceBlocks
 from ..properties.protocol import Array, PropertyModel
@@ -370,12 +370,11 @@ def _hydraulics(setup: RateSetup, state: RateState) -> dict[str, Array]:
     states = setup.layout.states(problem.properties, V, L, state.T_V[c], state.T_L[c], problem.P[c],
                                  np.maximum(state.v[c], 0) / V[:, None], np.maximum(state.l[c], 0) / L[:, None],
                                  None if height is None else height[c])
-    names = [name for name in Hydraulics.__dataclass_fields__]
     values: dict[str, Array] = {}
-    counts = dict.fromkeys(names, 0)
+    counts = dict.fromkeys(LIMITS, 0)
     for hardware, i, one in states:
         limits = hardware.hydraulics(one)
-        for name in names:
+        for name in LIMITS:
             value = getattr(limits, name)
             if value is None:
                 continue

@@ -13,7 +13,16 @@ from typing import Protocol
 import numpy as np
 from numpy.typing import NDArray
 
-from ..equipment import Contactor, ContactState, Hardware, Hydraulics, TransferCoefficients, by_contactor, contact_state
+from ..equipment import (
+    LIMITS,
+    Contactor,
+    ContactState,
+    Hardware,
+    Hydraulics,
+    TransferCoefficients,
+    by_contactor,
+    contact_state,
+)
 from ..errors import InputError
 from ..interface import InterfaceFlux
 from ..properties.protocol import Array, Mask, PropertyModel
@@ -42,7 +51,6 @@ from .definitions import (
     vaporization,
 )
 
-LIMITS = ("flooding", "pressure_drop", "clear_liquid", "liquid_holdup", "weeping", "downcomer", "entrainment")
 LONG = "segment too long: it would lose nine tenths of a component; use shorter ones"
 UNMIXED = ("the leaving liquid does not fit: upstream it would hold less than nothing of a component; rated over the "
            "leaving liquid alone")

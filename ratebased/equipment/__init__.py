@@ -1,7 +1,7 @@
 """Contactors: the protocol and its implementations."""
 from .fixed import FixedCoefficients
 from .packings import BilletConstants, BilletSchultes, BravoFair, Onda, RandomPacking
-from .protocol import Contactor, ContactState, Hydraulics, TransferCoefficients
+from .protocol import LIMITS, Contactor, ContactState, Hydraulics, TransferCoefficients
 from .sections import Hardware, Section, by_contactor
 from .state import contact_state
 from .structured import BravoRochaFair, RochaBravoFair, StructuredPacking, TsaiArea
@@ -9,7 +9,7 @@ from .tray_methods import AIChEBubbleCap, AIChESieve, ChanFair, ChenChuang, Zuid
 from .trays import BubbleCapTray, SieveTray, ValveTray
 
 __all__ = [
-    "AIChEBubbleCap", "AIChESieve", "BilletConstants", "BilletSchultes", "BravoFair", "BravoRochaFair",
+    "LIMITS", "AIChEBubbleCap", "AIChESieve", "BilletConstants", "BilletSchultes", "BravoFair", "BravoRochaFair",
     "BubbleCapTray", "ChanFair", "ChenChuang", "ContactState", "Contactor", "FixedCoefficients", "Hardware",
     "Hydraulics", "Onda", "RandomPacking", "RochaBravoFair", "Section", "SieveTray", "StructuredPacking",
     "TransferCoefficients", "TsaiArea", "ValveTray", "Zuiderweg", "by_contactor", "contact_state",

@@ -88,6 +88,10 @@ class Hydraulics:
     notes: dict[str, NDArray[np.bool_]] = field(default_factory=dict)
 
 
+LIMITS = ("flooding", "pressure_drop", "clear_liquid", "liquid_holdup", "weeping", "downcomer", "entrainment")
+"""The figures of `Hydraulics`, by name."""
+
+
 @runtime_checkable
 class Contactor(Protocol):
     """A tray or a packed segment: `transfer` gives the coefficients, `hydraulics` the operating limits."""
