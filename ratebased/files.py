@@ -1,6 +1,7 @@
 """Results as files: written whole or not at all."""
 from __future__ import annotations
 
+import contextlib
 import hashlib
 import os
 from collections.abc import Sequence
@@ -13,14 +14,17 @@ SIGNIFICANT = ".10g"
 
 
 def write_whole(path: Path, text: str) -> None:
-    """Write beside, then rename: an interrupted write leaves the old file or none."""
+    """Write beside, then rename: an interrupted write leaves the old file or none, and nothing beside it."""
+    part = path.with_name(f"{path.name}.{os.getpid()}.part")
     try:
         path.parent.mkdir(parents=True, exist_ok=True)
-        part = path.with_name(path.name + ".part")
         part.write_text(text, encoding="utf-8", newline="\n")
         os.replace(part, path)
     except OSError as error:
         raise InputError(f"{path}: cannot be written: {error.strerror}") from error
+    finally:
+        with contextlib.suppress(OSError):
+            part.unlink()
 
 
 def checksum(paths: Sequence[Path]) -> dict[str, str]:

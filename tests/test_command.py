@@ -128,3 +128,142 @@ def test_import_is_lean() -> None:
     code = "import sys, ratebased; print(sorted({'thermo', 'pandas', 'matplotlib', 'scipy'} & set(sys.modules)))"
     run = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True)
     assert run.stdout.strip() == "[]"
+
+
+TEMPLATES = Path(__file__).parents[1] / "ratebased" / "case" / "template"
+FILES = {"rate": ["table.csv", "table.json", "table.md"],
+         "column": ["column.json", "column.md", "comparison.csv", "efficiencies.csv", "profiles.csv"],
+         "flux": ["flux.csv", "flux.json", "flux.md"]}
+
+
+@pytest.mark.parametrize("kind", list(FILES))
+def test_from_new_to_report(kind: str, tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    """A new user's path: a case is written, runs as it is, gives its files, the same bytes each time."""
+    assert main(["new", str(tmp_path), "--kind", kind]) == DONE
+    assert capsys.readouterr().out == f"ratebased {kind} {tmp_path / 'case.toml'}\n"
+    case = tmp_path / "case.toml"
+    assert all(word in case.read_text() for word in ("# ", "[mixture]", f"ratebased {kind} case.toml"))
+    quick = ["--quick"] if kind == "column" else []
+    assert main([kind, str(case), *quick, "--report"]) == DONE
+    text = capsys.readouterr().out
+    assert text.startswith("My ") and "licensed practice" in text
+    results = tmp_path / "results"
+    assert sorted(path.name for path in results.iterdir()) == sorted([*FILES[kind], "report.html", "report.md"])
+    assert main([kind, str(case), *quick, "--report", "--out", str(tmp_path / "again")]) == DONE
+    for path in results.iterdir():
+        assert path.read_bytes() == (tmp_path / "again" / path.name).read_bytes(), path.name
+
+
+@pytest.mark.parametrize("kind", list(FILES))
+def test_formats_are_the_files(kind: str, tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    """What goes to standard output in a format is the file of that format, and nothing else."""
+    shown = {"rate": ("table.csv", "table.md", "table.json"), "column": ("profiles.csv", "column.md", "column.json"),
+             "flux": ("flux.csv", "flux.md", "flux.json")}[kind]
+    assert main(["new", str(tmp_path), "--kind", kind]) == DONE
+    for form, name in zip(("csv", "markdown", "json"), shown):
+        capsys.readouterr()
+        quick = ["--quick"] if kind == "column" else []
+        assert main([kind, str(tmp_path / "case.toml"), *quick, "--format", form]) == DONE
+        assert capsys.readouterr().out == (tmp_path / "results" / name).read_text()
+
+
+def test_column_numbers(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    """The column fed with component efficiencies is the rate-based one; the counts of stages are asked for."""
+    assert main(["new", str(tmp_path), "--kind", "column"]) == DONE
+    assert main(["column", str(tmp_path / "case.toml")]) == DONE
+    assert "contact stages needed" in capsys.readouterr().out
+    record = json.loads((tmp_path / "results" / "column.json").read_text())
+    one, fed, rate = record["models"]
+    assert fed["top_x_methanol"] == pytest.approx(rate["top_x_methanol"], abs=1e-9)
+    assert abs(one["top_x_methanol"] - rate["top_x_methanol"]) > 1e-3
+    assert rate["contact_stages_needed"] == 10
+    for solved in record["solution"].values():
+        assert solved["component_closure"] < 1e-12 and solved["energy_closure"] < 1e-10
+    frame = pd.read_csv(tmp_path / "results" / "profiles.csv")
+    assert frame["stage"].tolist() == list(range(1, 13))
+
+
+FILM = """\
+title = "Diffusion in a ternary gas"
+[film]
+components = ["hydrogen", "nitrogen", "carbon dioxide"]
+face_0 = {nitrogen = 0.4999, "carbon dioxide" = 0.5001}
+face_delta = {hydrogen = 0.5012, nitrogen = 0.4988}
+diffusivity_m2_s = {"hydrogen / nitrogen" = 8.33e-5, "hydrogen / carbon dioxide" = 6.8e-5,\
+                    "carbon dioxide / nitrogen" = 1.68e-5}
+thickness_m = 0.0859
+molar_density_mol_m3 = 39.5
+closure = "equimolar"
+"""
+
+
+def test_film_case(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    """Capillary between two bulbs, after Duncan & Toor (1962), compositions and diffusivities from memory: nitrogen
+    moves although its fractions are nearly equal, dragged by carbon dioxide; no net flux. The pairs may be named in
+    either order."""
+    (tmp_path / "case.toml").write_text(FILM)
+    assert main(["flux", str(tmp_path / "case.toml"), "--format", "csv"]) == DONE
+    capsys.readouterr()
+    frame = pd.read_csv(tmp_path / "results" / "flux.csv").set_index("component")
+    N = frame["N_mol_m2_s"]
+    assert abs(N.sum()) < 1e-9 * N.abs().max(), "the file has ten digits"
+    assert 0.5 * N["carbon dioxide"] < N["nitrogen"] < N["carbon dioxide"]
+    assert frame.loc["nitrogen", "regime"] == "osmotic"
+    (tmp_path / "case.toml").write_text(FILM.replace('method = "exact"', "").replace(
+        'closure = "equimolar"', 'closure = "stagnant"\ncomponent = "nitrogen"\nmethod = "linearized"'))
+    assert main(["flux", str(tmp_path / "case.toml")]) == DONE
+    assert pd.read_csv(tmp_path / "results" / "flux.csv").set_index("component").loc["nitrogen", "N_mol_m2_s"] == 0
+
+
+def test_interface_with_hardware(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    """Coefficients of a tray in place of numbers: its correlations are named in the report."""
+    text = (TEMPLATES / "flux.toml").read_text()
+    for line in text.splitlines():
+        if line.startswith(("kappa_m_s", "heat_transfer")):
+            text = text.replace(line + "\n", "")
+    text = text.replace("T_K = 350.0", "T_K = 350.0\nflow_mol_s = 35.0").replace(
+        "T_K = 346.0", "T_K = 346.0\nflow_mol_s = 25.0")
+    text += '[[hardware]]\ntype = "sieve tray"\ndiameter_m = 1.1\nspacing_m = 0.5\nweir_height_m = 0.05\n' \
+            "hole_diameter_m = 0.005\nhole_area_fraction = 0.10\n"
+    (tmp_path / "case.toml").write_text(text)
+    assert main(["flux", str(tmp_path / "case.toml"), "--report"]) == DONE
+    assert "Interface at " in capsys.readouterr().out
+    assert "Bubble-Tray Design Manual" in (tmp_path / "results" / "report.html").read_text()
+
+
+def test_catalogue(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    assert main(["catalogue"]) == DONE
+    every = capsys.readouterr().out.splitlines()
+    assert len(every) > 80
+    assert main(["catalogue", "PACKING", "onda", "--format", "json", "--out", str(tmp_path)]) == DONE
+    records = json.loads(capsys.readouterr().out)
+    assert {row["correlation"] for row in records} >= {"packing_area.onda", "packing_coefficients.onda_vapor"}
+    assert len(records) < len(every)
+    assert json.loads((tmp_path / "catalogue.json").read_text()) == records
+    assert len(pd.read_csv(tmp_path / "catalogue.csv")) == len(records)
+
+
+def test_other_mixtures(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    """The same column with an equation of state, with parameters of one's own, and with constant volatilities."""
+    text = (TEMPLATES / "column.toml").read_text()
+    hydrocarbons = text.replace('"methanol", "2-propanol", "water"', '"n-butane", "n-pentane", "n-hexane"').replace(
+        'activity = "unifac-modified"', 'model = "equation of state"\nT_range_K = [270.0, 400.0]').replace(
+        'methanol = 0.40, "2-propanol" = 0.20, water = 0.40', 'n-butane = 0.4, n-pentane = 0.3, n-hexane = 0.3')
+    zero = "[[0, 0, 0], [0, 0, 0], [0, 0, 0]]"
+    nrtl = text.replace('activity = "unifac-modified"', f'activity = "nrtl"\nparameters = {{tau_b = {zero}}}')
+    ideal = text.replace('activity = "unifac-modified"', 'activity = "ideal"')
+    tops = []
+    for words in (hydrocarbons, nrtl, ideal):
+        (tmp_path / "case.toml").write_text(words)
+        assert main(["column", str(tmp_path / "case.toml"), "--quick", "--format", "json"]) == DONE
+        rate = json.loads(capsys.readouterr().out)["models"][-1]
+        tops.append([value for key, value in rate.items() if key.startswith("top_x_")])
+    assert tops[0][0] > 0.9
+    assert tops[1] == pytest.approx(tops[2], abs=1e-8), "NRTL without interaction is an ideal mixture"
+
+
+def test_a_pipe_that_closes(tmp_path: Path) -> None:
+    """`ratebased catalogue | head -1` ends quietly."""
+    run = subprocess.run(f"{sys.executable} -m ratebased.command catalogue --format json | head -1", shell=True,
+                         capture_output=True, text=True, check=True)
+    assert run.stdout == "[\n" and run.stderr == ""
