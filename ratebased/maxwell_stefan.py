@@ -369,7 +369,8 @@ def effective_diffusivity_stefan(x: ArrayLike, N: ArrayLike, D: ArrayLike) -> Ar
     friction_terms = -friction(x, N, D, 1.0)
     K = resistances(pair_matrix("D", D, x.shape[-1]), 1.0)
     size = np.abs(N) * (K @ x[..., None])[..., 0] + x * (K @ np.abs(N)[..., None])[..., 0]
-    _refuse("N", np.abs(friction_terms) <= 1e-14 * size, "no gradient goes with these fluxes: the effective diffusivity is infinite")
+    _refuse("N", np.abs(friction_terms) <= 1e-14 * size,
+            "no gradient goes with these fluxes: the effective diffusivity is infinite")
     D_effective: Array = (N - x * N.sum(-1, keepdims=True)) / friction_terms
     return D_effective
 

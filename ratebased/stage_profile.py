@@ -18,6 +18,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
+from .arguments import mole_fractions
 from .errors import InputError, PlausibilityWarning
 from .properties.protocol import Array, Mask
 
@@ -151,7 +152,7 @@ class StageProfile:
         y = reader.fractions("y_", names, fraction_tolerance)
         height = None
         if "height_m" in frame:
-            height = reader.heights("height_m", contact)
+            height = reader.heights("height_m", np.array([k == "segment" for k in kind]))
         profile = cls(names, number, kind, T_L, T_V, P, L, V, x, y, height, tuple(feeds), tuple(draws), source)
         profile._check_streams()
         profile._check_balances(reader, balance_tolerance)
@@ -160,16 +161,22 @@ class StageProfile:
     def _check_streams(self) -> None:
         for label, streams in (("feed", self.feeds), ("draw", self.draws)):
             for stream in streams:
-                row = self.row_of(stream.stage, label)
+                self.row_of(stream.stage, label)
                 if stream.phase not in ("vapor", "liquid"):
                     raise InputError(f"{label} to stage {stream.stage}: phase = {stream.phase!r}, expected 'vapor' or "
                                      "'liquid' (a feed in two phases is given as two)")
                 if not (np.isfinite(stream.flow) and stream.flow > 0):
                     raise InputError(f"{label} to stage {stream.stage}: flow = {stream.flow}, expected a number above "
                                      "zero, mol/s")
-                if isinstance(stream, ProfileFeed) and stream.composition.shape != (len(self.names),):
-                    raise InputError(f"feed to stage {row + 1}: composition has shape {stream.composition.shape}, "
-                                     f"expected ({len(self.names)},)")
+                if isinstance(stream, ProfileFeed):
+                    where = f"feed to stage {stream.stage}"
+                    composition = mole_fractions(f"{where}: composition", stream.composition, len(self.names))
+                    if composition.ndim != 1:
+                        raise InputError(f"{where}: composition has shape {composition.shape}, expected "
+                                         f"({len(self.names)},)")
+                    if not (np.isfinite(stream.temperature) and stream.temperature >= LOWEST_TEMPERATURE):
+                        raise InputError(f"{where}: temperature = {stream.temperature}, expected K, above "
+                                         f"{LOWEST_TEMPERATURE:g}")
 
     def component_balance(self) -> Array:
         """Open balance of each component round each row, in - out, mol/s, (S, n); meaningful for contact rows."""
@@ -178,7 +185,7 @@ class StageProfile:
         open_[1:] += liquid[:-1]
         open_[:-1] += vapor[1:]
         for feed in self.feeds:
-            open_[self.row_of(feed.stage, "feed")] += feed.flow * feed.composition
+            open_[self.row_of(feed.stage, "feed")] += feed.flow * np.asarray(feed.composition)
         for draw in self.draws:
             row = self.row_of(draw.stage, "draw")
             open_[row] -= draw.flow * (self.x if draw.phase == "liquid" else self.y)[row]
@@ -186,15 +193,16 @@ class StageProfile:
 
     def _check_balances(self, reader: _Reader, tolerance: float) -> None:
         rows = np.flatnonzero(self.contact)
-        relative = np.abs(self.component_balance()) / np.maximum(self.L, self.V)[:, None]
         if not rows.size:
             raise InputError(f"{self.source}: no contact stage (rows of kind {' or '.join(CONTACT_KINDS)})")
+        through = np.maximum(self.L, self.V)
+        relative = np.abs(self.component_balance()) / np.where(through > 0, through, 1.0)[:, None]
         worst = rows[np.argmax(relative[rows].max(1))]
         i = int(np.argmax(relative[worst]))
         text = (f"the balance of {self.names[i]} round stage {self.number[worst]} is open by "
                 f"{self.component_balance()[worst, i]:.4g} mol/s, {100 * relative[worst, i]:.2g} % of the flow "
                 "(a feed or draw missing?)")
-        if relative[worst, i] > tolerance:
+        if not relative[worst, i] <= tolerance:
             reader.fail(int(worst), "x_" + self.names[i], self.x[worst, i],
                         text + f"; allowed: {100 * tolerance:.3g} %")
         if relative[worst, i] > 0.1 * tolerance:
@@ -254,11 +262,11 @@ class _Reader:
             self.fail(int(bad[0]), column, values[bad[0]], "a flow must be above zero (mol/s)")
         return values
 
-    def heights(self, column: str, contact: Mask) -> Array:
+    def heights(self, column: str, needed: Mask) -> Array:
         import pandas as pd
 
         values = pd.to_numeric(self.frame[column], errors="coerce").to_numpy(float)
-        bad = np.flatnonzero(contact & ~(values > 0))
+        bad = np.flatnonzero(needed & ~(values > 0))
         if bad.size:
             self.fail(int(bad[0]), column, self.frame[column].iloc[bad[0]], "a height must be above zero (m)")
         return np.where(np.isfinite(values), values, 0.0)

@@ -78,6 +78,36 @@ def test_bad_streams_are_refused() -> None:
         read(frame(), draws=[ProfileDraw(2, "liquid", -1.0)])
 
 
+@pytest.mark.parametrize(("change", "message"), [
+    ({"composition": np.array([np.nan, 0.5, 0.5])}, r"feed to stage 3: composition\[0\] = nan"),
+    ({"composition": np.array([0.5, 0.5])}, "expected 3 components"),
+    ({"composition": np.array([0.5, 0.4, 0.3])}, "sum to 1.2"),
+    ({"temperature": 68.0}, "feed to stage 3: temperature = 68.0"), ({"flow": np.inf}, "flow = inf")])
+def test_bad_feeds_are_refused(change: dict[str, object], message: str) -> None:
+    fields = {"stage": 3, "phase": "vapor", "flow": 12.0, "composition": np.array([0.4, 0.35, 0.25]),
+              "temperature": 343.0} | change
+    with pytest.raises(InputError, match=message):
+        read(frame(), feeds=[FEEDS[0], ProfileFeed(**fields)])
+
+
+def test_a_list_will_do_for_a_composition() -> None:
+    assert read(frame(), feeds=[FEEDS[0], ProfileFeed(3, "vapor", 12.0, [0.4, 0.35, 0.25], 343.0)]).contact.all()
+
+
+def test_heights_are_asked_of_segments_only() -> None:
+    profile = read(frame(kind=["tray", "segment", "tray"], height_m=[np.nan, 0.5, np.nan]))
+    assert profile.height is not None and profile.height.tolist() == [0.0, 0.5, 0.0]
+
+
+def test_a_total_condenser_may_stand_still() -> None:
+    """No flow at all through a row that is no contact stage: nothing to divide by, nothing said."""
+    table = pd.concat([frame().iloc[[0]], frame()], ignore_index=True)
+    table["stage"], table["kind"] = [1, 2, 3, 4], ["condenser", "tray", "tray", "tray"]
+    table.loc[0, ["L_mol_s", "V_mol_s"]] = [10.0, 0.0]
+    feeds = [ProfileFeed(4, "vapor", 12.0, np.array([0.4, 0.35, 0.25]), 343.0)]
+    assert read(table, feeds=feeds).kind[0] == "condenser"
+
+
 def test_a_sum_off_by_rounding_warns_and_is_renormalised() -> None:
     table = frame(x_water=[0.50005, 0.5, 0.5])
     with pytest.warns(PlausibilityWarning, match="renormalised"):

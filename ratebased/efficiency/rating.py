@@ -190,8 +190,8 @@ def entering_streams(profile: StageProfile, properties: PropertyModel) -> tuple[
         mixed[0 if vaporous else 1, row] = flows[row].any()
         if not flows[row].any():
             temperatures[row] = feed.temperature
-        flows[row] += feed.flow * feed.composition
-        heats[row] += feed.flow * (feed.composition * enthalpy(T, P, feed.composition)).sum()
+        flows[row] += feed.flow * np.asarray(feed.composition)
+        heats[row] += feed.flow * (np.asarray(feed.composition) * enthalpy(T, P, np.asarray(feed.composition))).sum()
     rows = np.flatnonzero(profile.contact)
     for flows, words in ((g, "vapour"), (l, "liquid")):
         dry = rows[~(flows[rows].sum(-1) > 0)]
