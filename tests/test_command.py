@@ -228,7 +228,7 @@ def test_interface_with_hardware(tmp_path: Path, capsys: pytest.CaptureFixture[s
     (tmp_path / "case.toml").write_text(text)
     assert main(["flux", str(tmp_path / "case.toml"), "--report"]) == DONE
     assert "Interface at " in capsys.readouterr().out
-    assert "Bubble-Tray Design Manual" in (tmp_path / "results" / "report.html").read_text()
+    assert "Bubble-Tray Design Manual" in (tmp_path / "results" / "report.md").read_text()
 
 
 def test_catalogue(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:

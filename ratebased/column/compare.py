@@ -227,7 +227,7 @@ def _differences(profiles: dict[str, Profile]) -> list[str]:
         dx = np.abs(other.x - rate.x)
         j, i = (int(k) for k in np.unravel_index(int(np.argmax(dx)), dx.shape))
         sentences.append((error, f"{model}: the largest difference in the liquid is {error:.2g} mole fraction, "
-                          f"{rate.names[i]} on stage {j + 1} ({other.x[j, i]:.4f} against {rate.x[j, i]:.4f} "
+                          f"{rate.names[i]} on stage {j + 1} ({other.x[j, i]:.4g} against {rate.x[j, i]:.4g} "
                           f"rate-based)."))
         dT = np.abs(other.T_L - rate.T_L)
         j = int(np.argmax(dT))
@@ -237,7 +237,7 @@ def _differences(profiles: dict[str, Profile]) -> list[str]:
             z, w = other.products[product].composition, rate.products[product].composition
             i = int(np.argmax(np.abs(z - w)))
             sentences.append((float(abs(z[i] - w[i])), f"{model}: {rate.names[i]} in the {product} product comes out "
-                                                       f"at {z[i]:.4f}, {w[i]:.4f} rate-based."))
+                                                       f"at {z[i]:.4g}, {w[i]:.4g} rate-based."))
         for end, q in rate.duties.items():
             off = other.duties[end] / q - 1.0 if q else 0.0
             sentences.append((abs(off), f"{model}: the {end} duty is {100 * off:+.2g} % off "

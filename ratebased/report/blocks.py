@@ -96,3 +96,12 @@ def figures(values: Sequence[float | None], form: str) -> tuple[Cell, ...]:
         known = value is not None and abs(value) < float("inf")
         cells.append(Cell("0" if value == 0 else format(value, form)) if known else Cell("", Mark.BLANK))
     return tuple(cells)
+
+
+TRACE = 1e-4
+"""Fraction below which four decimals would hide the figure."""
+
+
+def fractions(values: Sequence[float]) -> tuple[Cell, ...]:
+    """Cells of mole fractions: four decimals, traces with their power of ten."""
+    return tuple(cell for value in values for cell in figures([value], ".4f" if value >= TRACE else ".1e"))

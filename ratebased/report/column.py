@@ -10,7 +10,7 @@ from ..column import Comparison, Profile
 from ..column.compare import FED_BACK, NEGLIGIBLE, ONE_EFFICIENCY, RATE_BASED, feed_back_error
 from ..efficiency.table import CAUTION
 from ..equipment import Section as HardwareSection
-from .blocks import Block, Bullets, Cell, Mark, Paragraph, Report, Section, Table, figures, words
+from .blocks import Block, Bullets, Cell, Mark, Paragraph, Report, Section, Table, figures, fractions, words
 from .common import correlations_section, inputs_section, pictures
 
 FRACTION = ".4f"
@@ -87,7 +87,7 @@ def _profiles(comparison: Comparison) -> Section:
         ("stage", "kind", *(f"T {word} / K" for word, _ in models), "T vapour, rate-based / K", "L / mol/s",
          "V / mol/s"), tuple(rows), "Temperatures of the liquid leaving each stage; flows are the rate-based ones.")]
     head = ("stage", *(f"x {name}, {word}" for name in rate.names for word, _ in models))
-    rows_x = [(Cell(str(j + 1)), *figures([p.x[j, i] for i in range(len(rate.names)) for _, p in models], ".4f"))
+    rows_x = [(Cell(str(j + 1)), *fractions([p.x[j, i] for i in range(len(rate.names)) for _, p in models]))
               for j in range(rate.stages)]
     blocks.append(Table(head, tuple(rows_x), "Mole fractions in the liquid leaving each stage." + remark))
     if len(rate.names) == 3:

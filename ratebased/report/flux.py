@@ -11,14 +11,14 @@ from ..equipment import Section as HardwareSection
 from ..explanation import explain_flux
 from ..film import FilmFlux
 from ..interface import InterfaceFlux
-from .blocks import Block, Bullets, Paragraph, Report, Section, Table, figures, words
+from .blocks import Block, Bullets, Paragraph, Report, Section, Table, figures, fractions, words
 from .common import correlations_section, inputs_section, pictures
 from .rating import flux_parts
 
 
 def film_table(names: Sequence[str], flux: FilmFlux) -> Table:
     """Faces, fluxes and regime of one film, one row a component."""
-    rows = tuple((*words(name), *figures([flux.x0[i], flux.xd[i]], ".4f"),
+    rows = tuple((*words(name), *fractions([flux.x0[i], flux.xd[i]]),
                   *figures([1e3 * flux.N[i], 1e3 * flux.J[i]], "+.5g"), *words(str(flux.regime[i])))
                  for i, name in enumerate(names))
     return Table(("component", "face 0", "face delta", "N / mmol/(m2 s)", "J at face 0 / mmol/(m2 s)", "diffusion"),
@@ -38,7 +38,7 @@ def film_report(names: Sequence[str], flux: FilmFlux, *, title: str, files: Sequ
 def interface_table(answer: InterfaceFlux) -> Table:
     """Bulk and interface compositions and fluxes, one row a component."""
     y, x = (np.broadcast_to(z, answer.N.shape) for z in (answer.films.y, answer.films.x))
-    rows = tuple((*words(name), *figures([y[i], answer.y_I[i], answer.x_I[i], x[i]], ".4f"),
+    rows = tuple((*words(name), *fractions([y[i], answer.y_I[i], answer.x_I[i], x[i]]),
                   *figures([1e3 * answer.N[i]], "+.5g")) for i, name in enumerate(answer.names))
     return Table(("component", "y bulk", "y interface", "x interface", "x bulk", "N / mmol/(m2 s)"), rows,
                  "N positive from vapour to liquid.")

@@ -17,7 +17,6 @@ LONG, LONG_WORD = 28, 48
 
 
 LONG_NAME = 18
-BREAK = "\u200b"
 
 
 def require_jinja() -> None:
@@ -40,16 +39,22 @@ def to_html(report: Report) -> str:
                                      lstrip_blocks=True, undefined=jinja2.StrictUndefined, keep_trailing_newline=True)
     environment.filters["kind"] = lambda block: type(block).__name__.lower()
     environment.filters["look"] = _look
-    environment.filters["breakable"] = lambda text: markupsafe.escape(_tied(text)).replace(
-        BREAK, markupsafe.Markup("<wbr>"))
+    environment.filters["breakable"] = lambda text: markupsafe.Markup(" ").join(
+        markupsafe.Markup(_word(str(markupsafe.escape(word)))) for word in _tied(text).split(" "))
     return environment.get_template("page.html").render(
         report=report, signs={mark.value: sign for mark, sign in SIGNS.items()})
 
 
 def _tied(text: str) -> str:
-    """Units kept in one piece, long names with places to break after their underscores."""
-    words = text.replace("(m2 s)", "(m2\u00a0s)").replace(" / ", " /\u00a0").split(" ")
-    return " ".join(word.replace("_", "_" + BREAK) if len(word) > LONG_NAME else word for word in words)
+    """Units kept in one piece."""
+    return text.replace("(m2 s)", "(m2\u00a0s)").replace(" / ", " /\u00a0")
+
+
+def _word(word: str) -> str:
+    """An escaped word as markup: a name with hyphens in one piece, a long one with places to break it."""
+    if len(word) > LONG_NAME:
+        return word.replace("_", "_<wbr>")
+    return f'<span class="one">{word}</span>' if "-" in word[1:-1] else word
 
 
 def _look(cell: Cell) -> str:
