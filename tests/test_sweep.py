@@ -103,7 +103,8 @@ def test_interrupted_and_resumed(case: Path, tmp_path: Path) -> None:
     out = tmp_path / "runs"
     settings = {"reflux_ratio": np.linspace(1.5, 6.0, 24).tolist()}
     script = tmp_path / "script.py"
-    script.write_text(f"from ratebased.sweep import sweep\nif __name__ == '__main__':\n"
+    script.write_text("import signal\nfrom ratebased.sweep import sweep\nif __name__ == '__main__':\n"
+                      "    signal.signal(signal.SIGINT, signal.default_int_handler)\n"
                       f"    sweep({str(case)!r}, {settings!r}, out={str(out)!r}, workers=1)\n")
     process = subprocess.Popen([sys.executable, str(script)], stderr=subprocess.DEVNULL,
                                env={**os.environ, "OPENBLAS_NUM_THREADS": "1"})
