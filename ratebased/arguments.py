@@ -41,6 +41,24 @@ def positive_scalar(name: str, value: float) -> float:
     return float(array)
 
 
+def finite_scalar(name: str, value: float) -> float:
+    """`value` as a finite float; words are no numbers."""
+    if isinstance(value, str | bytes | bool):
+        raise InputError(f"{name} = {value!r}: expected a number")
+    array = finite_array(name, value)
+    if array.ndim:
+        raise InputError(f"{name}: expected one number, got an array of shape {array.shape}")
+    return float(array)
+
+
+def whole_number(name: str, value: int) -> int:
+    """`value` as an int; a fraction is an error, never cut."""
+    number = finite_scalar(name, value)
+    if number != round(number):
+        raise InputError(f"{name} = {value}: expected a whole number")
+    return int(number)
+
+
 def mole_fractions(name: str, value: ArrayLike, n: int | None = None) -> Array:
     """`value` as mole fractions (..., n): none negative, sums one to 1e-9 (then renormalised)."""
     x = finite_array(name, value)

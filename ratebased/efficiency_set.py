@@ -32,7 +32,7 @@ class EfficiencyBasis(Enum):
     LIQUID_TEMPERATURE = "liquid temperature"
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class EfficiencySet:
     """Component efficiencies of S stages.
 
@@ -66,7 +66,15 @@ class EfficiencySet:
     def __init__(self, kind: EfficiencyKind, values: ArrayLike, dependent: ArrayLike | None = None,
                  vapor_offset: ArrayLike = 0.0, liquid_offset: ArrayLike = 0.0,
                  basis: EfficiencyBasis | None = None, given: ArrayLike | None = None) -> None:
-        table = np.asarray(values, float)
+        if not isinstance(kind, EfficiencyKind):
+            raise InputError(f"kind = {kind!r}: expected EfficiencyKind.MURPHREE_VAPOR or EfficiencyKind.VAPORIZATION")
+        if basis is not None and not isinstance(basis, EfficiencyBasis):
+            raise InputError(f"basis = {basis!r}: expected EfficiencyBasis.BUBBLE_POINT or "
+                             "EfficiencyBasis.LIQUID_TEMPERATURE")
+        try:
+            table = np.array(values, float)
+        except (TypeError, ValueError) as error:
+            raise InputError(f"values: expected numbers, got {values!r}") from error
         if table.ndim != 2:
             raise InputError(f"values: expected (stages, components), got shape {table.shape}")
         S, n = table.shape
@@ -76,7 +84,7 @@ class EfficiencySet:
         stages = np.ones(S, bool) if given is None else np.asarray(given, bool)
         if stages.shape != (S,):
             raise InputError(f"given: expected {S} entries, got shape {stages.shape}")
-        free = np.full(S, -1) if dependent is None else np.asarray(dependent, np.int64)
+        free = np.full(S, -1) if dependent is None else _indices(dependent)
         if free.shape != (S,):
             raise InputError(f"dependent: expected {S} entries, got shape {free.shape}")
         used = stages[:, None] & (np.arange(n) != free[:, None])
@@ -134,6 +142,14 @@ class EfficiencySet:
         """Efficiencies and offsets at a share (0..1) of their way from the equilibrium stage: for continuation."""
         return EfficiencySet(self.kind, 1.0 + share * (self.values - 1.0), self.dependent, share * self.vapor_offset,
                              share * self.liquid_offset, self.basis, self.given)
+
+
+def _indices(dependent: ArrayLike) -> NDArray[np.int64]:
+    """Component indices; fractions are an error, never cut."""
+    array = finite_array("dependent", dependent)
+    for j in np.flatnonzero(array != np.rint(array))[:1]:
+        raise InputError(f"dependent[{j}] = {array.flat[j]}: expected the index of a component")
+    return array.astype(np.int64)
 
 
 def uniform_murphree(value: float, stages: int, n: int, basis: EfficiencyBasis, given: ArrayLike) -> EfficiencySet:

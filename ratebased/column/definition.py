@@ -5,6 +5,7 @@ contact stages (trays, or packed segments when a segment height is given).
 """
 from __future__ import annotations
 
+import warnings
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from typing import Any
@@ -12,8 +13,8 @@ from typing import Any
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from ..arguments import finite_array, positive_array, positive_scalar
-from ..errors import InputError
+from ..arguments import finite_array, finite_scalar, positive_array, positive_scalar, whole_number
+from ..errors import InputError, PlausibilityWarning
 from .specifications import (
     BottomsRate,
     DistillateRate,
@@ -26,7 +27,7 @@ from .specifications import (
 Array = NDArray[np.float64]
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Feed:
     """A feed flashed at the pressure of its stage.
 
@@ -46,13 +47,15 @@ class Feed:
             raise InputError(f"feed to stage {stage}: give either temperature or vapor_fraction")
         if temperature is not None:
             temperature = positive_scalar("temperature", temperature)
-        if vapor_fraction is not None and not 0.0 <= vapor_fraction <= 1.0:
-            raise InputError(f"vapor_fraction = {vapor_fraction}: expected a number from 0 to 1")
-        _set(self, stage=int(stage), flows=_feed_flows(stage, flows), temperature=temperature,
+        if vapor_fraction is not None:
+            vapor_fraction = finite_scalar("vapor_fraction", vapor_fraction)
+            if not 0.0 <= vapor_fraction <= 1.0:
+                raise InputError(f"vapor_fraction = {vapor_fraction}: expected a number from 0 to 1")
+        _set(self, stage=_feed_stage(stage), flows=_feed_flows(stage, flows), temperature=temperature,
              vapor_fraction=vapor_fraction)
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class LiquidFeed:
     """A feed that is liquid as given, subcooled or not: no flash. flows mol/s, (n,); temperature K."""
 
@@ -61,11 +64,11 @@ class LiquidFeed:
     temperature: float
 
     def __init__(self, stage: int, flows: ArrayLike, temperature: float) -> None:
-        _set(self, stage=int(stage), flows=_feed_flows(stage, flows),
+        _set(self, stage=_feed_stage(stage), flows=_feed_flows(stage, flows),
              temperature=positive_scalar("temperature", temperature))
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class VaporFeed:
     """A feed that is vapour as given, superheated or not: no flash. flows mol/s, (n,); temperature K."""
 
@@ -74,7 +77,7 @@ class VaporFeed:
     temperature: float
 
     def __init__(self, stage: int, flows: ArrayLike, temperature: float) -> None:
-        _set(self, stage=int(stage), flows=_feed_flows(stage, flows),
+        _set(self, stage=_feed_stage(stage), flows=_feed_flows(stage, flows),
              temperature=positive_scalar("temperature", temperature))
 
 
@@ -88,6 +91,9 @@ class LiquidDraw:
     stage: int
     rate: float
 
+    def __post_init__(self) -> None:
+        _check_draw(self)
+
 
 @dataclass(frozen=True)
 class VaporDraw:
@@ -95,6 +101,9 @@ class VaporDraw:
 
     stage: int
     rate: float
+
+    def __post_init__(self) -> None:
+        _check_draw(self)
 
 
 @dataclass(frozen=True)
@@ -106,7 +115,8 @@ class TotalCondenser:
     subcooling: float = 0.0
 
     def __post_init__(self) -> None:
-        if not (np.isfinite(self.subcooling) and self.subcooling >= 0):
+        _set(self, subcooling=finite_scalar("subcooling", self.subcooling))
+        if self.subcooling < 0:
             raise InputError(f"subcooling = {self.subcooling}: expected zero or a positive number of kelvin")
 
 
@@ -131,12 +141,12 @@ class ContactorPressure:
     estimate: float = 0.0
 
     def __post_init__(self) -> None:
-        positive_scalar("top", self.top)
-        if not (np.isfinite(self.estimate) and self.estimate >= 0):
+        _set(self, top=positive_scalar("top", self.top), estimate=finite_scalar("estimate", self.estimate))
+        if self.estimate < 0:
             raise InputError(f"estimate = {self.estimate}: expected zero or a positive pressure drop")
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Column:
     """A distillation, absorption, stripping or reboiled absorption column.
 
@@ -159,6 +169,11 @@ class Column:
     ------
     InputError : what is missing, surplus or impossible, by name: specifications against the degrees of freedom, a
         stage number outside the column, draws and products above the feed, an end that no liquid or vapour reaches.
+
+    Warns
+    -----
+    PlausibilityWarning : liquid draws above what reflux and feeds bring, at constant molar overflow. Coolers and
+        subcooled streams condense more: the column is tried.
     """
 
     stages: int
@@ -177,7 +192,8 @@ class Column:
                  specifications: Sequence[Specification] = (), draws: Sequence[LiquidDraw | VaporDraw] = (),
                  duties: Mapping[int, float] | None = None, heat_loss: ArrayLike = 0.0,
                  segment_height: ArrayLike | None = None) -> None:
-        stages = int(stages)
+        stages = whole_number("stages", stages)
+        _check_kinds(feeds, condenser, reboiler, specifications, draws, duties)
         ends = (condenser is not None) + (reboiler is not None)
         if stages - ends < 1:
             raise InputError(f"stages = {stages}: no contact stage is left beside condenser and reboiler")
@@ -189,11 +205,13 @@ class Column:
         height = None
         if segment_height is not None:
             height = _per_stage("segment_height", positive_array("segment_height", segment_height), stages)
+        heat = {whole_number("stage of a duty", j): finite_scalar(f"duties[{j}]", q) for j, q in (duties or {}).items()}
         _set(self, stages=stages, feeds=tuple(feeds), pressure=profile, condenser=condenser, reboiler=reboiler,
-             specifications=tuple(specifications), draws=tuple(draws), duties=dict(duties or {}),
+             specifications=tuple(specifications), draws=tuple(draws), duties=heat,
              heat_loss=_per_stage("heat_loss", finite_array("heat_loss", heat_loss), stages), segment_height=height)
         self._check_places()
-        check_specifications(self.specifications, condenser is not None, reboiler is not None)
+        check_specifications(self.specifications, condenser is not None, reboiler is not None,
+                             self.feeds[0].flows.shape[0])
         self._check_rates()
         self._check_ends()
 
@@ -248,7 +266,12 @@ class Column:
         return next((s for s in self.specifications if isinstance(s, Searched)), None)
 
     def with_(self, **changes: Any) -> Column:
-        """The same column with some arguments changed."""
+        """The same column with some arguments changed; with other `stages`, what is the same on all goes along."""
+        if "stages" in changes:
+            for name in ("pressure", "heat_loss", "segment_height"):
+                value = getattr(self, name)
+                if name not in changes and isinstance(value, np.ndarray) and np.ptp(value) == 0.0:
+                    changes[name] = float(value[0])
         return replace(self, **changes)
 
     # ------------------------------------------------------------------------------------------------ checks
@@ -266,14 +289,10 @@ class Column:
         contact = self.contact
         for k, draw in enumerate(self.draws):
             self._check_stage(f"draws[{k}].stage", draw.stage)
-            if not (np.isfinite(draw.rate) and draw.rate > 0):
-                raise InputError(f"draws[{k}].rate = {draw.rate}: expected a positive number")
             if not contact[draw.stage - 1]:
                 raise InputError(f"draws[{k}].stage = {draw.stage}: side draws are taken from contact stages")
-        for stage, duty in self.duties.items():
+        for stage in self.duties:
             self._check_stage(f"duties[{stage}]", stage)
-            if not np.isfinite(duty):
-                raise InputError(f"duties[{stage}] = {duty}: expected a finite number")
             if not contact[stage - 1]:
                 raise InputError(f"duties[{stage}]: the duty of condenser or reboiler is a specification")
 
@@ -292,24 +311,21 @@ class Column:
                                  f"feed ({feed:g} mol/s) is left for the other product")
         by = {type(s): s for s in self.specifications}
         if DistillateRate in by and RefluxRatio in by and self.reboiler is not None:
-            self._check_bottom_traffic(feed - by[DistillateRate].value - drawn)
+            self._warn_of_liquid_draws(by[RefluxRatio].value * by[DistillateRate].value)
 
-    def _check_bottom_traffic(self, bottoms: float) -> None:
-        """The reboiler makes at least the vapour that no feed can bring."""
-        D = next(s.value for s in self.specifications if isinstance(s, DistillateRate))
-        R = next(s.value for s in self.specifications if isinstance(s, RefluxRatio))
-        vapor_feed = sum(f.flows.sum() for f in self.feeds if isinstance(f, VaporFeed))
-        vapor_drawn = sum(d.rate for d in self.draws if isinstance(d, VaporDraw))
-        liquid_drawn = np.cumsum(self.draw_rates[0])
-        liquid_in = R * D + np.cumsum([sum(f.flows.sum() for f in self.feeds
-                                           if f.stage <= j + 1 and not isinstance(f, VaporFeed))
-                                       for j in range(self.stages)])
-        vapor_in = (R + 1) * D - vapor_feed + vapor_drawn
-        rest = liquid_in + max(vapor_feed, 0.0) - liquid_drawn
-        if (rest[:-1] <= 0).any() and vapor_in > 0:
-            j = int(np.argmax(rest[:-1] <= 0))
-            raise InputError(f"draws: the liquid draws down to stage {j + 1} take {liquid_drawn[j]:g} mol/s, reflux "
-                             f"and feeds above bring {liquid_in[j]:g} mol/s: the section below must run dry")
+    def _warn_of_liquid_draws(self, reflux: float) -> None:
+        """Liquid left below the draws at constant molar overflow, every feed that is not vapour counted as liquid."""
+        brought = np.zeros(self.stages)
+        for feed in self.feeds:
+            if not isinstance(feed, VaporFeed):
+                brought[feed.stage - 1] += feed.flows.sum()
+        liquid, drawn = reflux + np.cumsum(brought), np.cumsum(self.draw_rates[0])
+        dry = np.flatnonzero(liquid[:-1] <= drawn[:-1])
+        if dry.size:
+            j = int(dry[0])
+            warnings.warn(f"draws: the liquid draws down to stage {j + 1} take {drawn[j]:g} mol/s, reflux and feeds "
+                          f"above bring {liquid[j]:g} mol/s: the section below runs dry unless liquid condenses above",
+                          PlausibilityWarning, stacklevel=4)
 
     def _check_ends(self) -> None:
         top = [f for f in self.feeds if f.stage == 1]
@@ -329,6 +345,35 @@ def _may_hold_vapor(feed: AnyFeed) -> bool:
     return isinstance(feed, VaporFeed) or (isinstance(feed, Feed) and feed.vapor_fraction != 0.0)
 
 
+def _check_kinds(feeds: object, condenser: object, reboiler: object, specifications: object, draws: object,
+                 duties: object) -> None:
+    """A word or a class in the place of an object would be another column."""
+    ends: tuple[tuple[str, object, tuple[type, ...]], ...] = (
+        ("condenser", condenser, (TotalCondenser, PartialCondenser)), ("reboiler", reboiler, (Reboiler,)))
+    lists: tuple[tuple[str, object, tuple[type, ...]], ...] = (
+        ("feeds", feeds, (Feed, LiquidFeed, VaporFeed)), ("draws", draws, (LiquidDraw, VaporDraw)),
+        ("specifications", specifications, (object,)))
+    for name, value, kinds in ends:
+        if value is not None and not isinstance(value, kinds):
+            raise InputError(f"{name} = {value!r}: expected {' or '.join(f'{k.__name__}()' for k in kinds)} or None")
+    for name, value, kinds in lists:
+        if not isinstance(value, Sequence) or isinstance(value, str):
+            raise InputError(f"{name} = {value!r}: expected a list")
+        for k, item in enumerate(value):
+            if not isinstance(item, kinds):
+                raise InputError(f"{name}[{k}] = {item!r}: expected {' or '.join(k.__name__ for k in kinds)}")
+    if duties is not None and not isinstance(duties, Mapping):
+        raise InputError(f"duties = {duties!r}: expected a mapping from stage number to W")
+
+
+def _check_draw(draw: LiquidDraw | VaporDraw) -> None:
+    _set(draw, stage=whole_number("stage of a draw", draw.stage), rate=positive_scalar("rate of a draw", draw.rate))
+
+
+def _feed_stage(stage: int) -> int:
+    return whole_number("stage of a feed", stage)
+
+
 def _set(record: object, **values: Any) -> None:
     for name, value in values.items():
         object.__setattr__(record, name, value)
@@ -343,7 +388,7 @@ def _feed_flows(stage: int, flows: ArrayLike) -> Array:
         raise InputError(f"flows of the feed to stage {stage}[{i}] = {array[i]}: a flow cannot be negative")
     if array.sum() <= 0:
         raise InputError(f"flows of the feed to stage {stage}: all zero")
-    return array
+    return array.copy()
 
 
 def _per_stage(name: str, array: Array, stages: int) -> Array:

@@ -11,6 +11,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
+from ..arguments import finite_scalar
 from ..efficiency_set import EfficiencyBasis, EfficiencyKind, EfficiencySet, uniform_murphree
 from ..errors import InputError, PlausibilityWarning
 from ..properties.differences import liquid_heat_capacity, vapor_heat_capacity
@@ -330,8 +331,8 @@ def solve_equilibrium(column: Column, properties: PropertyModel, efficiency: Eff
 def _efficiency_set(problem: Problem, efficiency: EfficiencySet | float | None) -> EfficiencySet | None:
     if efficiency is None or isinstance(efficiency, EfficiencySet):
         return efficiency
-    value = float(efficiency)
-    if not np.isfinite(value) or value == 0.0:
+    value = finite_scalar("efficiency", efficiency)
+    if value == 0.0:
         raise InputError(f"efficiency = {efficiency}: expected a finite number other than zero")
     masked = not problem.ordinary.all()
     basis = EfficiencyBasis.LIQUID_TEMPERATURE if masked else EfficiencyBasis.BUBBLE_POINT

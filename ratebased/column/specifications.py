@@ -9,8 +9,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass, field
 from enum import Enum
 
-import numpy as np
-
+from ..arguments import finite_scalar, whole_number
 from ..errors import InputError
 
 
@@ -30,7 +29,8 @@ class _Positive:
         return type(self).__name__
 
     def __post_init__(self) -> None:
-        if not (np.isfinite(self.value) and self.value > 0):
+        object.__setattr__(self, "value", finite_scalar(self.name, self.value))
+        if self.value <= 0:
             raise InputError(f"{self.name} = {self.value}: expected a positive number")
 
 
@@ -74,10 +74,15 @@ class Searched:
         return type(self).__name__
 
     def _check_bounds(self) -> None:
-        if self.bounds is not None:
-            low, high = self.bounds
-            if not (np.isfinite(low) and np.isfinite(high) and 0 < low < high):
-                raise InputError(f"{self.name}.bounds = {self.bounds}: expected two positive numbers, the lower first")
+        if self.bounds is None:
+            return
+        words = f"{self.name}.bounds = {self.bounds!r}: expected two positive numbers, the lower first"
+        if isinstance(self.bounds, str) or not isinstance(self.bounds, Sequence) or len(self.bounds) != 2:
+            raise InputError(words)
+        low, high = (finite_scalar(f"{self.name}.bounds", bound) for bound in self.bounds)
+        if not 0 < low < high:
+            raise InputError(words)
+        object.__setattr__(self, "bounds", (low, high))
 
 
 @dataclass(frozen=True)
@@ -85,48 +90,60 @@ class CondenserDuty(Searched):
     """Heat added in the condenser, W: negative."""
 
     def __post_init__(self) -> None:
-        if not (np.isfinite(self.value) and self.value < 0):
+        object.__setattr__(self, "value", finite_scalar(self.name, self.value))
+        if self.value >= 0:
             raise InputError(f"CondenserDuty = {self.value}: heat added to the column, expected a negative number")
         self._check_bounds()
 
 
 @dataclass(frozen=True)
-class ProductPurity(Searched):
-    """Mole fraction of a component in an end product. component: its index."""
-
+class _OfProduct(Searched):
     component: int
     product: Product = Product.TOP
 
     def __post_init__(self) -> None:
-        _check_fraction(self.name, self.value)
+        value = finite_scalar(self.name, self.value)
+        if not 0 < value < 1:
+            raise InputError(f"{self.name} = {value}: expected a number between 0 and 1")
+        component = whole_number(f"{self.name}.component", self.component)
+        if component < 0:
+            raise InputError(f"{self.name}.component = {component}: expected the index of a component")
+        try:
+            product = Product(self.product)
+        except ValueError as error:
+            raise InputError(f"{self.name}.product = {self.product!r}: expected Product.TOP or Product.BOTTOM"
+                             ) from error
+        for name, item in (("value", value), ("component", component), ("product", product)):
+            object.__setattr__(self, name, item)
         self._check_bounds()
 
 
 @dataclass(frozen=True)
-class ComponentRecovery(Searched):
-    """Share of a component's feed that leaves in an end product. component: its index."""
+class ProductPurity(_OfProduct):
+    """Mole fraction of a component in an end product. component: its index. product: a `Product`, or its value."""
 
-    component: int
-    product: Product = Product.TOP
 
-    def __post_init__(self) -> None:
-        _check_fraction(self.name, self.value)
-        self._check_bounds()
+@dataclass(frozen=True)
+class ComponentRecovery(_OfProduct):
+    """Share of a component's feed that leaves in an end product. component: its index. product: a `Product`, or its
+    value.
+    """
 
 
 Specification = RefluxRatio | DistillateRate | BottomsRate | BoilupRatio | ReboilerDuty | Searched
 
 
-def _check_fraction(name: str, value: float) -> None:
-    if not 0 < value < 1:
-        raise InputError(f"{name} = {value}: expected a number between 0 and 1")
+SPECIFICATIONS = (RefluxRatio, DistillateRate, BottomsRate, BoilupRatio, ReboilerDuty, CondenserDuty, ProductPurity,
+                  ComponentRecovery)
 
 
-def check_specifications(given: Sequence[Specification], condenser: bool, reboiler: bool) -> None:
-    """Raise an `InputError` that names every missing and every surplus specification."""
+def check_specifications(given: Sequence[Specification], condenser: bool, reboiler: bool, n: int) -> None:
+    """Raise an `InputError` that names every missing and every surplus specification; n: number of components."""
     for s in given:
-        if not isinstance(s, _Positive | Searched):
+        if not isinstance(s, SPECIFICATIONS):
             raise InputError(f"specifications: {s!r} is not a specification")
+        if isinstance(s, ProductPurity | ComponentRecovery) and s.component >= n:
+            raise InputError(f"{s.name}.component = {s.component}: expected an index from 0 to {n - 1}")
     names = [s.name for s in given]
     for name in set(names):
         if names.count(name) > 1:
@@ -148,6 +165,9 @@ def check_specifications(given: Sequence[Specification], condenser: bool, reboil
     if condenser and reboiler and {"DistillateRate", "BottomsRate"} <= set(names):
         raise InputError("specifications: DistillateRate and BottomsRate say the same thing through the overall "
                          "balance; replace one of them")
+    if condenser and reboiler and {"BoilupRatio", "ReboilerDuty"} <= set(names):
+        raise InputError("specifications: BoilupRatio and ReboilerDuty both speak of the reboiler and leave the top "
+                         "open; replace one of them by RefluxRatio, DistillateRate or BottomsRate")
     if len(given) < need:
         options = [t.__name__ for t in allowed[1:]] + [t.__name__ for t in (ProductPurity, ComponentRecovery)]
         options += ["CondenserDuty"] if condenser else []

@@ -217,3 +217,32 @@ def test_a_gas_that_condenses_needs_another_start() -> None:
     profile = solve_equilibrium(column, ternary())
     closed(profile)
     assert profile.V[0] > 1.0
+
+
+@pytest.mark.parametrize("arguments, words", [
+    ({"kind": "Murphree vapour"}, "kind = 'Murphree vapour': expected EfficiencyKind"),
+    ({"basis": "bubble point"}, "basis = 'bubble point': expected EfficiencyBasis"),
+    ({"dependent": np.full(12, 1.7)}, r"dependent\[0\] = 1.7"),
+    ({"values": "abc"}, "values: expected numbers"),
+])
+def test_efficiency_set_takes_no_words(arguments: dict[str, Any], words: str) -> None:
+    """A kind given as a word was taken for vaporisation efficiencies."""
+    with pytest.raises(InputError, match=words):
+        EfficiencySet(**{"kind": EfficiencyKind.MURPHREE_VAPOR, "values": np.ones((12, 3)),
+                         "dependent": np.full(12, 2), **arguments})
+
+
+def test_efficiency_is_one_number_or_a_set() -> None:
+    with pytest.raises(InputError, match="efficiency: expected one number, got an array"):
+        solve_equilibrium(distillation(), ternary(), np.full(12, 0.7))  # type: ignore[arg-type]
+
+
+def test_a_cooler_feeds_a_draw_above_the_reflux() -> None:
+    """16 mol/s are drawn where the reflux brings 15: a cooler above condenses the rest."""
+    with pytest.warns(PlausibilityWarning, match="unless liquid condenses above"):
+        column = Column(14, [LiquidFeed(8, [35.0, 35.0, 30.0], 345.0)], 101325.0, condenser=TotalCondenser(),
+                        reboiler=Reboiler(), specifications=[DistillateRate(30.0), RefluxRatio(0.5)],
+                        draws=[LiquidDraw(4, 16.0)], duties={3: -1.0e6})
+    profile = solve_equilibrium(column, ternary())
+    closed(profile)
+    assert profile.L[3] > 0.0
