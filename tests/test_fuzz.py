@@ -167,7 +167,7 @@ def test_rate_case(data: dict[str, Any]) -> None:
     run("rate", document(data), PROFILE)
 
 
-@settings(max_examples=100 * TIMES, **COMMON)  # type: ignore[arg-type]
+@settings(max_examples=60 * TIMES, **COMMON)  # type: ignore[arg-type]
 @given(spoiled("column"))
 def test_column_case(data: dict[str, Any]) -> None:
     run("column", document(data))

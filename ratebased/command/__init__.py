@@ -10,11 +10,11 @@ from importlib import import_module
 # Before numpy is loaded: the matrices are tiny, and threads of a linear-algebra library only wait for each other.
 os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
 
-from numpy.linalg import LinAlgError  # noqa: E402
+from numpy.linalg import LinAlgError
 
-from ..errors import ConvergenceError, InputError, NoPhysicalRootError  # noqa: E402
-from .terminal import warnings_as_notes  # noqa: E402
-from .words import parser  # noqa: E402
+from ..errors import ConvergenceError, InputError, NoPhysicalRootError
+from .terminal import warnings_as_notes
+from .words import parser
 
 DONE, NO_SOLUTION, BAD_INPUT = 0, 1, 2
 INTERRUPTED = 130
