@@ -2,6 +2,7 @@
 from __future__ import annotations
 
 import json
+import os
 import shutil
 import subprocess
 import sys
@@ -268,3 +269,20 @@ def test_a_pipe_that_closes(tmp_path: Path) -> None:
     run = subprocess.run(f"{sys.executable} -m ratebased.command catalogue --format json | head -1", shell=True,
                          capture_output=True, text=True, check=True)
     assert run.stdout == "[\n" and run.stderr == ""
+
+
+def test_progress_on_a_terminal_only(tmp_path: Path) -> None:
+    """On a terminal a line tells what is under way; it goes to standard error and is wiped when done."""
+    pty = pytest.importorskip("pty")
+    case = tmp_path / "case.toml"
+    case.write_text((TEMPLATES / "flux.toml").read_text())
+    master, slave = pty.openpty()
+    run = subprocess.Popen([sys.executable, "-m", "ratebased.command", "flux", str(case), "--format", "csv"],
+                           stdout=subprocess.PIPE, stderr=slave, text=True)
+    text, _ = run.communicate(timeout=60)
+    os.close(slave)
+    shown = os.read(master, 100_000).decode()
+    os.close(master)
+    assert run.returncode == DONE
+    assert "reading case, building properties ..." in shown and "written: " in shown
+    assert text == (tmp_path / "results" / "flux.csv").read_text()

@@ -17,7 +17,7 @@ def progress(text: str) -> Iterator[None]:
         return
     from tqdm import tqdm
 
-    with tqdm(total=1, desc=text, delay=0.5, leave=False, bar_format="{desc} ... {elapsed}") as bar:
+    with tqdm(total=1, desc=text, leave=False, bar_format="{desc} ...") as bar:
         yield
         bar.update()
 

@@ -8,6 +8,7 @@ import numpy as np
 
 from ..efficiency import EfficiencyTable
 from ..efficiency.table import CAUTION
+from ..efficiency.uncertainty import WORDS
 from ..equipment import Section as HardwareSection
 from ..explanation import FluxExplanation
 from .blocks import Block, Bullets, Cell, Mark, Paragraph, Report, Section, Table, figures, words
@@ -160,7 +161,8 @@ def _uncertainty(table: EfficiencyTable) -> list[Section]:
             share = f"{u.dominating(j, int(i))} ({100 * u.shares[j, i].max():.0f} %)"
             rows.append((Cell(str(r.number[j])), *words(r.names[i], "y_out - y_in" if pole else "E"), *quantiles,
                          Cell(f"{u.negative[j, i]:.2f}"), *words(share)))
-    notes = [Paragraph(f"The scatter of {', '.join(u.assumed)} is not published and was assumed.")] if u.assumed else []
+    assumed = " and of ".join(WORDS.get(name, name) for name in u.assumed)
+    notes = [Paragraph(f"The scatter of {assumed} is not published and was assumed.")] if assumed else []
     return [Section("uncertainty", "Uncertainty", (
         Table(("stage", "component", "figure", "5 %", "50 %", "95 %", "probability of E < 0", "dominated by"),
               tuple(rows), "Quantiles over the scatter of correlations, diffusivities and K-values. Where the driving "
