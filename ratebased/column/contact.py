@@ -1,9 +1,9 @@
 """Contactors laid out over the contact stages of a column, and how the phases flow through a stage."""
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, fields, replace
-from typing import Protocol
+from typing import Protocol, runtime_checkable
 
 import numpy as np
 from numpy.typing import NDArray
@@ -19,6 +19,7 @@ ContactorLayout = Hardware | Mapping[tuple[int, int], Contactor]
 """A contactor, a sequence of `Section`, or a mapping (first, last) stage -> contactor."""
 
 
+@runtime_checkable
 class FlowPattern(Protocol):
     """How a phase flows through a stage: the share of the entering state in the bulk state its film starts from.
 
@@ -107,8 +108,14 @@ def layout(contactor: ContactorLayout, column: Column) -> Layout:
     InputError : a contact stage without contactor or with two, something that is no contactor.
     """
     stages = np.flatnonzero(column.contact) + 1
+    if not isinstance(contactor, Contactor | Mapping | Sequence) or isinstance(contactor, str):
+        raise InputError(f"contactor = {contactor!r}: expected a contactor, sections or a mapping of stages")
     if isinstance(contactor, Mapping):
         contactor = [Section(first, last, c) for (first, last), c in contactor.items()]
+    if isinstance(contactor, Sequence):
+        for k, section in enumerate(contactor):
+            if not isinstance(section, Section):
+                raise InputError(f"contactor[{k}] = {section!r}: expected a Section")
     groups = tuple(by_contactor(contactor, stages))
     for c, _ in groups:
         if not isinstance(c, Contactor):

@@ -208,7 +208,8 @@ def _end_rows(problem: Problem, part: EquilibriumPart, r: Array, D: Array, lower
 
 @dataclass(frozen=True)
 class NewtonOutcome:
-    """Where a Newton iteration ended: converged, or `reason`; residual of the last state and the worst row."""
+    """Where a Newton iteration ended: converged, or `reason`; residual of the last state and the worst row; path: the
+    way it was reached."""
 
     state: State
     converged: bool
@@ -216,6 +217,7 @@ class NewtonOutcome:
     residual: float
     worst: str
     reason: str = ""
+    path: str = "direct"
 
 
 def _worst(residual: Array, names: tuple[str, ...]) -> str:
@@ -311,11 +313,16 @@ def solve_equilibrium(column: Column, properties: PropertyModel, efficiency: Eff
     ConvergenceError : what was tried, the worst stage and equation, and the dry-section estimate; `best` is the last
         state. NoSolutionError : a searched specification that is out of reach; it tells the best that can be reached.
 
+    With a searched specification `start` serves the first trial column and `progress` is called by all of them.
+
     Source: simultaneous Newton on component flows, Naphtali & Sandholm, AIChE J. 17 (1971) 148; balances, equilibrium
     and energy written in mole fractions and solved as a band.
     """
     if column.search is not None:
-        return with_search(column, lambda trial, last: solve_equilibrium(trial, properties, efficiency, start=last))
+        check_start(column, properties, start)
+        return with_search(column, lambda trial, last: solve_equilibrium(trial, properties, efficiency, start=last,
+                                                                         progress=progress), start)
+    check_start(column, properties, start)
     problem = make_problem(column, properties)
     given = _efficiency_set(problem, efficiency)
     if start is not None:
@@ -325,7 +332,7 @@ def solve_equilibrium(column: Column, properties: PropertyModel, efficiency: Eff
             return equilibrium_profile(problem, rows, outcome.state, outcome.iterations, outcome.residual,
                                        "from the profile given")
     state, outcome, rows = solve_state(problem, given, progress)
-    return equilibrium_profile(problem, rows, state, outcome.iterations, outcome.residual)
+    return equilibrium_profile(problem, rows, state, outcome.iterations, outcome.residual, outcome.path)
 
 
 def _efficiency_set(problem: Problem, efficiency: EfficiencySet | float | None) -> EfficiencySet | None:
@@ -339,11 +346,22 @@ def _efficiency_set(problem: Problem, efficiency: EfficiencySet | float | None) 
     return uniform_murphree(value, problem.S, problem.n, basis, problem.column.contact)
 
 
+def check_start(column: Column, properties: PropertyModel, start: Profile | None) -> None:
+    """Raise an `InputError` for a start of another size or of other components."""
+    if start is None:
+        return
+    if not isinstance(start, Profile):
+        raise InputError(f"start = {start!r}: expected a Profile")
+    S, n = column.stages, len(properties.names)
+    if start.x.shape != (S, n):
+        raise InputError(f"start: a profile of {start.x.shape[0]} stages and {start.x.shape[1]} components, the column "
+                         f"has {S} and {n}")
+    if start.names != tuple(properties.names):
+        raise InputError(f"start: a profile of {', '.join(start.names)}, the mixture is {', '.join(properties.names)}")
+
+
 def state_of(problem: Problem, rows: StageRows, profile: Profile) -> State:
     """The unknowns that a profile stands for."""
-    if profile.x.shape != (problem.S, problem.n):
-        raise InputError(f"start: a profile of {profile.x.shape[0]} stages and {profile.x.shape[1]} components, the "
-                         f"column has {problem.S} and {problem.n}")
     v = (profile.V + profile.vapor_draw)[:, None] * profile.y
     if problem.total_condenser:
         v[0] = profile.products["top"].flows
@@ -365,11 +383,15 @@ def solve_state(problem: Problem, efficiency: EfficiencySet | None, progress: Pr
                       "total reflux is a problem of its own", PlausibilityWarning, stacklevel=3)
     tried = []
     if efficiency is not None and efficiency.kind is EfficiencyKind.MURPHREE_VAPOR:
-        tame = newton(problem, stage_rows(problem, efficiency.tamed()), start, progress=progress)
-        if tame.converged:
+        tamed = stage_rows(problem, efficiency.tamed())
+        odd = not np.array_equal(tamed.factor, rows.factor)
+        tame = newton(problem, tamed, start, progress=progress) if odd else None
+        if tame is not None and tame.converged:
             outcome = newton(problem, rows, positive(problem, tame.state), progress=progress)
             if outcome.converged:
-                return outcome.state, replace(outcome, iterations=tame.iterations + outcome.iterations), rows
+                outcome = replace(outcome, iterations=tame.iterations + outcome.iterations,
+                                  path="from the column with odd efficiencies replaced")
+                return outcome.state, outcome, rows
             tried.append(f"Newton from the column with odd efficiencies replaced: residual {outcome.residual:.2g}")
     outcome = newton(problem, rows, start, progress=progress)
     if outcome.converged:
@@ -380,22 +402,22 @@ def solve_state(problem: Problem, efficiency: EfficiencySet | None, progress: Pr
         raise convergence_error("equilibrium column", tried, first.worst, first.residual, margin, first.state)
     outcome = newton(problem, rows, start, damped=True, progress=progress)
     if outcome.converged:
-        return outcome.state, outcome, rows
+        return outcome.state, replace(outcome, path="shortened steps"), rows
     tried.append(f"shortened steps: {outcome.reason}, residual {outcome.residual:.2g}")
     if efficiency is not None:
         outcome = _efficiency_continuation(problem, efficiency, start, progress)
         if outcome.converged:
-            return outcome.state, outcome, rows
+            return outcome.state, replace(outcome, path="continuation from equilibrium stages"), rows
         tried.append(f"continuation from equilibrium stages: {outcome.reason}")
     if problem.top is None and problem.bottom is None and efficiency is None:
         outcome = newton(problem, rows, condensing_state(problem), progress=progress)
         if outcome.converged:
-            return outcome.state, outcome, rows
+            return outcome.state, replace(outcome, path="from bubble points of the liquids"), rows
         tried.append(f"Newton from bubble points of the liquids: {outcome.reason}")
     if isinstance(problem.top, RefluxRatio) and efficiency is None:
         outcome = _reflux_continuation(problem, rows, progress)
         if outcome.converged:
-            return outcome.state, outcome, rows
+            return outcome.state, replace(outcome, path="continuation in the reflux ratio"), rows
         tried.append(f"continuation in the reflux ratio: {outcome.reason}")
     raise convergence_error("equilibrium column", tried, first.worst, first.residual, margin, first.state,
                             unstable_liquid(problem, start.T, start.l))

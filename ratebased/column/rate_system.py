@@ -47,10 +47,6 @@ class Shares:
         """Whether any bulk state depends on what enters."""
         return bool(self.y.any() or self.x.any() or self.T_V.any() or self.T_L.any())
 
-    def distance(self, other: Shares) -> float:
-        """Largest difference of a share."""
-        return max(float(np.abs(getattr(self, name) - getattr(other, name)).max()) for name in ("y", "x", "T_V", "T_L"))
-
 
 @dataclass(frozen=True)
 class RateSetup:
@@ -216,16 +212,22 @@ def _coefficients(setup: RateSetup, state: RateState, vapor_in: Entering, liquid
     return transfer(states, c.size, setup.area_factor)
 
 
+def short_shares(setup: RateSetup) -> Shares:
+    """Shares of a stage of half a transfer unit: all zero where both phases are mixed."""
+    short = np.full(setup.problem.contact.size, 0.5)
+    return Shares(setup.vapor.weight(short), setup.liquid.weight(short), setup.vapor.temperature_weight(short),
+                  setup.liquid.temperature_weight(short))
+
+
 def flow_shares(setup: RateSetup, state: RateState) -> Shares:
     """Shares of the entering states by the flow patterns, from the transfer units at a state.
 
-    They are held while a column is solved: they follow from numbers of transfer units, which need no accuracy.
+    The coefficients behind those are taken at the bulk states of a short stage. The shares of a solution are those of
+    its own state; their derivatives are left out of the Jacobian.
     """
     problem = setup.problem
     c = problem.contact
-    short = np.full(c.size, 0.5)
-    first = Shares(setup.vapor.weight(short), setup.liquid.weight(short), setup.vapor.temperature_weight(short),
-                   setup.liquid.temperature_weight(short))
+    first = short_shares(setup)
     if not first.any():
         return first
     vapor_in, liquid_in, vapor, liquid = entering(problem, state)

@@ -24,6 +24,7 @@ from .equilibrium import (
     MAX_ITERATIONS,
     TOLERANCE,
     Progress,
+    check_start,
     solve_state,
     stage_rows,
     state_of,
@@ -39,6 +40,7 @@ from .rate_system import (
     flow_shares,
     overall_transfer_units,
     rate_system,
+    short_shares,
     updated_condenser_vapor,
 )
 from .result import make_profile
@@ -46,13 +48,13 @@ from .search import with_search
 from .start import dry_margin, masked, starting_state
 from .steps import TINY, after_draw, limited
 
-PRESSURE_TOLERANCE = 1e-7
+PRESSURE_TOLERANCE = 1e-11
 """Relative change of the pressures at which the hydraulics and the column agree."""
 MAX_PRESSURE_ROUNDS = 30
 HOLD_SLOPES = 1e-3
 """Scaled residual below which derivatives of the films by the bulk states are not computed anew."""
-MAX_SHARE_ROUNDS = 4
-SHARE_TOLERANCE = 1e-3
+REFRESH_SHARES = 1e-3
+"""Scaled residual below which the shares of the entering states follow the iterate; above it they are held."""
 LARGEST_SEGMENT = 2.0
 """Transfer units of a packed segment above which a warning is given."""
 
@@ -102,20 +104,24 @@ def solve_ratebased(column: Column, properties: PropertyModel, contactor: Contac
     are left out of the Jacobian.
     """
     if column.search is not None:
+        check_start(column, properties, start)
         return with_search(column, lambda trial, last: solve_ratebased(
-            trial, properties, contactor, vapor=vapor, liquid=liquid, start=last, area_factor=area_factor))
+            trial, properties, contactor, vapor=vapor, liquid=liquid, start=last, area_factor=area_factor,
+            progress=progress), start)
+    check_start(column, properties, start)
     packed = column.segment_height is not None
     default: FlowPattern = Averaged() if packed else Mixed()
-    problem = make_problem(column, properties, None if start is None else start.P)
-    setup = RateSetup(problem, layout(contactor, column), vapor or default, liquid or default,
-                      positive_scalar("area_factor", area_factor))
+    own_pressure = isinstance(column.pressure, ContactorPressure)
+    problem = make_problem(column, properties, start.P if start is not None and own_pressure else None)
+    setup = RateSetup(problem, layout(contactor, column), _pattern("vapor", vapor, default),
+                      _pattern("liquid", liquid, default), positive_scalar("area_factor", area_factor))
     state = _given_start(setup, start) if start is not None else None
     path, outcome = _solve(setup, state, progress)
-    setup, outcome = _settle_shares(setup, outcome, progress)
-    if isinstance(column.pressure, ContactorPressure):
+    if own_pressure:
         setup, outcome = _with_pressure_drop(setup, outcome, progress)
         problem = setup.problem
     positive = _lifted(problem, outcome.state)
+    setup = replace(setup, shares=outcome.shares)
     system = rate_system(setup, positive, outcome.films)
     _warn_coarse(setup, positive, system)
     record = _record(setup, positive, system)
@@ -124,19 +130,12 @@ def solve_ratebased(column: Column, properties: PropertyModel, contactor: Contac
                         record, float(system.blocks.films.size.max()))
 
 
-def _settle_shares(setup: RateSetup, outcome: RateOutcome, progress: Progress | None
-                   ) -> tuple[RateSetup, RateOutcome]:
-    """Shares of the entering states that go with the answer: solved again until they agree."""
-    used = outcome.shares
-    for _ in range(MAX_SHARE_ROUNDS):
-        shares = flow_shares(setup, _lifted(setup.problem, outcome.state))
-        if used is not None and shares.distance(used) < SHARE_TOLERANCE:
-            break
-        trial = newton(replace(setup, shares=shares), _lifted(setup.problem, outcome.state), progress=progress)
-        if not trial.converged:
-            break
-        outcome, used = replace(trial, iterations=outcome.iterations + trial.iterations), shares
-    return replace(setup, shares=used), outcome
+def _pattern(name: str, given: FlowPattern | None, default: FlowPattern) -> FlowPattern:
+    if given is None:
+        return default
+    if isinstance(given, type) or not isinstance(given, FlowPattern):
+        raise InputError(f"{name} = {given!r}: expected a flow pattern, Mixed(), Averaged() or Plug()")
+    return given
 
 
 def _warn_coarse(setup: RateSetup, state: RateState, system: RateSystem) -> None:
@@ -240,10 +239,9 @@ def newton(setup: RateSetup, state: RateState, *, tolerance: float = TOLERANCE, 
     problem = setup.problem
     S, n = problem.S, problem.n
     m = 2 * n + 2
-    if setup.shares is None:
-        setup = replace(setup, shares=flow_shares(setup, state))
-    assert setup.shares is not None
-    width = 3 * n + 2 if setup.shares.any() else 2 * n + 1
+    means = bool(short_shares(setup).any())
+    shares = flow_shares(setup, state)
+    width = 3 * n + 2 if means else 2 * n + 1
     band = block_tridiagonal(S, m, n + 1, n + 1, width, width)
     reason, residual, worst, iteration = "the iteration limit", np.inf, "", 0
     floor = 1e2 * np.finfo(float).eps
@@ -251,7 +249,9 @@ def newton(setup: RateSetup, state: RateState, *, tolerance: float = TOLERANCE, 
     films: InterfaceBlocks | None = None
     for iteration in range(1, limit + 1):
         try:
-            system = rate_system(setup, state, films if residual < HOLD_SLOPES else None)
+            if means and residual < REFRESH_SHARES:
+                shares = flow_shares(setup, state)
+            system = rate_system(replace(setup, shares=shares), state, films if residual < HOLD_SLOPES else None)
         except np.linalg.LinAlgError:
             reason = "a singular interface"
             break
@@ -285,7 +285,7 @@ def newton(setup: RateSetup, state: RateState, *, tolerance: float = TOLERANCE, 
                             z=state.z + dz, y_I=system.blocks.films.y_I)
             least = min(final.v.min(), final.l.min()) / problem.F
             if least > -1e-10 and final.z[:, n:2 * n].min() > -1e-9:
-                return RateOutcome(final, True, iteration, residual, worst, shares=setup.shares, films=films)
+                return RateOutcome(final, True, iteration, residual, worst, shares=shares, films=films)
         largest = max(float(np.abs(dT_V).max()), float(np.abs(dT_L).max()))
         f = min(1.0, LARGEST_TEMPERATURE_STEP / largest) if largest > 0 else 1.0
         z = state.z + f * dz

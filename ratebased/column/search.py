@@ -8,6 +8,7 @@ from __future__ import annotations
 
 import warnings
 from collections.abc import Callable
+from dataclasses import dataclass
 
 import numpy as np
 from scipy.optimize import brentq, minimize_scalar
@@ -23,7 +24,6 @@ from .specifications import (
     DistillateRate,
     Product,
     ProductPurity,
-    ReboilerDuty,
     RefluxRatio,
     Searched,
     Specification,
@@ -36,85 +36,120 @@ TOLERANCE = 1e-9
 Solver = Callable[[Column, Profile | None], Profile]
 
 
-def with_search(column: Column, solve: Solver) -> Profile:
-    """The column solved with its searched specification met.
+@dataclass(frozen=True)
+class _Trial:
+    profile: Profile
+    gap: float
+    doubts: tuple[Warning, ...]
 
-    `solve(column, previous)` solves a column without one; `previous` is the last profile found, a possible start.
+
+def with_search(column: Column, solve: Solver, start: Profile | None = None) -> Profile:
+    """The column solved with its searched specification met; warnings are those of the column returned.
+
+    `solve(column, previous)` solves a column without one; `previous` is the last profile found (`start` at first), a
+    possible start.
 
     Raises
     ------
     NoSolutionError : the value is not reached within the bounds; the message tells the best found and where.
+    InputError : of the first trial column, when none could be made.
     """
     wanted = column.search
     assert wanted is not None
-    rest = tuple(s for s in column.specifications if s is not wanted)
-    vary, bounds = search_handle(column, wanted, rest)
-    found: dict[float, Profile] = {}
-    problems: list[str] = []
+    chosen = _Search(column, wanted, solve, start).run()
+    for doubt in chosen.doubts:
+        warnings.warn(doubt, stacklevel=3)
+    return chosen.profile
 
-    def gap(log_value: float) -> float:
-        with warnings.catch_warnings():                # doubts about a trial are no doubts about the answer
-            warnings.simplefilter("ignore", RateBasedWarning)
-            profile = solve(column.with_(specifications=(*rest, vary(float(np.exp(log_value))))),
-                            next(reversed(found.values()), None))
-        found[log_value] = profile
-        return measured(profile, wanted) - wanted.value
 
-    grid = np.linspace(np.log(bounds[0]), np.log(bounds[1]), GRID)
-    gaps: list[tuple[float, float]] = []
-    for point in grid:
+class _Search:
+    """Trial columns by the logarithm of the quantity varied."""
+
+    def __init__(self, column: Column, wanted: Searched, solve: Solver, start: Profile | None) -> None:
+        self.column, self.wanted, self.solve, self.last = column, wanted, solve, start
+        self.rest = tuple(s for s in column.specifications if s is not wanted)
+        self.vary, self.bounds = search_handle(column, wanted, self.rest)
+        self.found: dict[float, _Trial] = {}
+
+    def run(self) -> _Trial:
+        wanted, (low, high) = self.wanted, self.bounds
+        points: list[float] = []
+        problems: list[tuple[float, Exception]] = []
+        for point in np.linspace(np.log(low), np.log(high), GRID):
+            try:
+                self.gap(float(point))
+            except (ConvergenceError, InputError) as error:
+                problems.append((float(np.exp(point)), error))
+                continue
+            points.append(float(point))
+            if self._met(points[-1]):
+                return self.found[points[-1]]
+            if len(points) > 1 and self.gap(points[-1]) * self.gap(points[-2]) < 0:
+                return self._refine(points[-2], points[-1])
+        if not points:
+            if all(isinstance(error, InputError) for _, error in problems):
+                raise problems[0][1]
+            raise NoSolutionError(f"{wanted.name} = {wanted.value:g}: no column was solved between {low:g} and "
+                                  f"{high:g}. {problems[0][0]:.4g}: {problems[0][1]}")
+        crossing = self._around_the_best(points)
+        if crossing is not None:
+            return self._refine(*crossing)
+        best = min(self.found, key=lambda p: abs(self.found[p].gap))
+        name = self.vary(1.0).name
+        raise NoSolutionError(
+            f"{wanted.name} = {wanted.value:g} is not reached with {name} from {low:g} to {high:g}: the best is "
+            f"{wanted.value + self.found[best].gap:.6g} at {name} = {np.exp(best):.4g}"
+            + (f"; {len(problems)} of {GRID} trial columns were not solved" if problems else ""),
+            best=self.found[best].profile)
+
+    def gap(self, point: float) -> float:
+        """What is measured minus what is wanted."""
+        if point not in self.found:
+            specifications = (*self.rest, self.vary(float(np.exp(point))))
+            with warnings.catch_warnings(record=True) as caught:
+                warnings.simplefilter("always")
+                profile = self.solve(self.column.with_(specifications=specifications), self.last)
+            doubts = []
+            for warning in caught:                    # doubts about a trial are no doubts about the answer
+                if issubclass(warning.category, RateBasedWarning):
+                    doubts.append(warning.message)
+                else:
+                    warnings.warn(warning.message, stacklevel=2)
+            gap = measured(profile, self.wanted) - self.wanted.value
+            self.found[point] = _Trial(profile, gap, tuple(d for d in doubts if isinstance(d, Warning)))
+            self.last = profile
+        return self.found[point].gap
+
+    def _met(self, point: float) -> bool:
+        return abs(self.gap(point)) <= TOLERANCE * abs(self.wanted.value)
+
+    def _around_the_best(self, points: list[float]) -> tuple[float, float] | None:
+        """A maximum or minimum between grid points may still cross the value wanted."""
+        sign = float(np.sign(self.gap(points[0])))
+        k = int(np.argmin([abs(self.gap(p)) for p in points]))
+        low, high = points[max(k - 1, 0)], points[min(k + 1, len(points) - 1)]
+        if low == high:
+            return None
         try:
-            gaps.append((float(point), gap(float(point))))
-        except ConvergenceError as error:
-            problems.append(f"{np.exp(point):.4g}: {error}")
-            continue
-        if len(gaps) > 1 and gaps[-1][1] * gaps[-2][1] <= 0:
-            return _refine(gap, gaps[-2][0], gaps[-1][0], found, wanted)
-    if not gaps:
-        raise NoSolutionError(f"{wanted.name} = {wanted.value:g}: no column was solved between {bounds[0]:g} and "
-                              f"{bounds[1]:g}. {problems[0]}")
-    crossing = _around_the_best(gap, gaps, wanted)
-    if crossing is not None:
-        return _refine(gap, *crossing, found, wanted)
-    best = min(found, key=lambda p: abs(measured(found[p], wanted) - wanted.value))
-    name = vary(1.0).name
-    raise NoSolutionError(
-        f"{wanted.name} = {wanted.value:g} is not reached with {name} from {bounds[0]:g} to {bounds[1]:g}: the best is "
-        f"{measured(found[best], wanted):.6g} at {name} = {np.exp(best):.4g}"
-        + (f"; {len(problems)} of {GRID} trial columns were not solved" if problems else ""), best=found[best])
+            best = minimize_scalar(lambda p: sign * self.gap(float(p)), bounds=(low, high), method="bounded",
+                                   options={"xatol": 1e-3})
+        except (ConvergenceError, InputError):
+            return None
+        return (low, float(best.x)) if best.fun <= 0 else None
 
-
-def _around_the_best(gap: Callable[[float], float], gaps: list[tuple[float, float]], wanted: Searched
-                     ) -> tuple[float, float] | None:
-    """A maximum or minimum between grid points may still cross the value wanted."""
-    points = np.array([p for p, _ in gaps])
-    signs = np.sign(gaps[0][1])
-    k = int(np.argmin([abs(g) for _, g in gaps]))
-    if len(points) < 2:
-        return None
-    low, high = points[max(k - 1, 0)], points[min(k + 1, len(points) - 1)]
-    if low == high:
-        return None
-    try:
-        best = minimize_scalar(lambda p: signs * gap(float(p)), bounds=(low, high), method="bounded",
-                               options={"xatol": 1e-3})
-    except ConvergenceError:
-        return None
-    if best.fun <= 0:
-        return float(low), float(best.x)
-    return None
-
-
-def _refine(gap: Callable[[float], float], low: float, high: float, found: dict[float, Profile],
-            wanted: Searched) -> Profile:
-    try:
-        root = brentq(gap, low, high, xtol=1e-14, rtol=1e-14)
-    except ConvergenceError as error:
-        raise NoSolutionError(f"{wanted.name} = {wanted.value:g}: bracketed, but a column inside the bracket was not "
-                              f"solved. {error}") from error
-    if root not in found:
-        gap(root)
-    return found[root]
+    def _refine(self, low: float, high: float) -> _Trial:
+        wanted = self.wanted
+        try:
+            root = float(brentq(self.gap, low, high, xtol=1e-14, rtol=1e-14))
+        except (ConvergenceError, InputError) as error:
+            raise NoSolutionError(f"{wanted.name} = {wanted.value:g}: bracketed, but a column inside the bracket was "
+                                  f"not solved. {error}") from error
+        best = min((root, low, high), key=lambda p: abs(self.gap(p)))
+        if not self._met(best):
+            raise NoSolutionError(f"{wanted.name} = {wanted.value:g}: the column jumps across it at "
+                                  f"{self.vary(1.0).name} = {np.exp(root):.6g}, to "
+                                  f"{wanted.value + self.gap(best):.6g} at the nearest", best=self.found[best].profile)
+        return self.found[best]
 
 
 def search_handle(column: Column, wanted: Searched, rest: tuple[Specification, ...]
@@ -129,9 +164,7 @@ def search_handle(column: Column, wanted: Searched, rest: tuple[Specification, .
         return BoilupRatio, wanted.bounds or (0.05, 20.0)
     if any(isinstance(s, RefluxRatio) for s in rest):
         return DistillateRate, rate
-    if any(isinstance(s, DistillateRate | BottomsRate | BoilupRatio | ReboilerDuty) for s in rest) or not rest:
-        return RefluxRatio, ratio
-    raise InputError(f"specifications: nothing is left to vary for {wanted.name}")
+    return RefluxRatio, ratio
 
 
 def measured(profile: Profile, wanted: Searched) -> float:
@@ -140,9 +173,6 @@ def measured(profile: Profile, wanted: Searched) -> float:
         return profile.duties["condenser"]
     assert isinstance(wanted, ProductPurity | ComponentRecovery)
     flows = profile.products["top" if wanted.product is Product.TOP else "bottom"].flows
-    if not 0 <= wanted.component < flows.shape[0]:
-        raise InputError(f"{wanted.name}.component = {wanted.component}: expected an index from 0 to "
-                         f"{flows.shape[0] - 1}")
     part = float(flows[wanted.component])
     if isinstance(wanted, ProductPurity):
         return part / float(flows.sum())

@@ -1,6 +1,7 @@
 """Equilibrium columns: specifications, ends, draws, duties, masked components, closures."""
 from __future__ import annotations
 
+from dataclasses import replace
 from typing import Any
 
 import numpy as np
@@ -29,6 +30,7 @@ from ratebased.column import (
     VaporFeed,
     solve_equilibrium,
 )
+from ratebased.column.search import with_search
 from ratebased.efficiency_set import EfficiencyBasis, EfficiencyKind, EfficiencySet
 from ratebased.errors import ConvergenceError, InputError, NoSolutionError, PlausibilityWarning
 from ratebased.properties import bubble_point
@@ -219,6 +221,13 @@ def test_a_gas_that_condenses_needs_another_start() -> None:
     assert profile.V[0] > 1.0
 
 
+def test_the_path_is_told() -> None:
+    """Only a set with values far from one is approached by way of tame ones."""
+    assert solve_equilibrium(distillation(), ternary(), 0.7).report.path == "direct"
+    odd = solve_equilibrium(distillation(), ternary(), 1.6)
+    assert odd.report.path == "from the column with odd efficiencies replaced"
+
+
 @pytest.mark.parametrize("arguments, words", [
     ({"kind": "Murphree vapour"}, "kind = 'Murphree vapour': expected EfficiencyKind"),
     ({"basis": "bubble point"}, "basis = 'bubble point': expected EfficiencyBasis"),
@@ -246,3 +255,41 @@ def test_a_cooler_feeds_a_draw_above_the_reflux() -> None:
     profile = solve_equilibrium(column, ternary())
     closed(profile)
     assert profile.L[3] > 0.0
+
+
+@pytest.mark.parametrize("R, bounds", [(0.5, (0.5, 20.0)), (20.0, (0.5, 20.0)), (40.0, None)])
+def test_a_target_at_a_bound_of_the_search(R: float, bounds: tuple[float, float] | None) -> None:
+    target = solve_equilibrium(distillation(R=R), ternary()).purity(0)
+    column = distillation().with_(specifications=[DistillateRate(40.0), ProductPurity(target, 0, bounds=bounds)])
+    assert solve_equilibrium(column, ternary()).L[0] / 40.0 == pytest.approx(R, rel=1e-6)
+
+
+def test_a_jump_across_the_target_is_no_solution() -> None:
+    def jumping(trial: Column, last: Profile | None) -> Profile:
+        R = next(s.value for s in trial.specifications if isinstance(s, RefluxRatio))
+        top = replace(BASE.products["top"], flows=40.0 * np.array([0.7, 0.2, 0.1] if R < 3.3 else [0.9, 0.05, 0.05]))
+        return replace(BASE, products={**BASE.products, "top": top})
+
+    column = distillation().with_(specifications=[DistillateRate(40.0), ProductPurity(0.8, 0)])
+    with pytest.raises(NoSolutionError, match="the column jumps across it at RefluxRatio = 3.3"):
+        with_search(column, jumping)
+
+
+def test_a_search_uses_progress_and_start() -> None:
+    column = distillation().with_(specifications=[DistillateRate(40.0), ProductPurity(0.8, 0)])
+    seen: list[int] = []
+    solve_equilibrium(column, ternary(), progress=lambda i, r: seen.append(i))
+    assert len(seen) > 20
+    with pytest.raises(InputError, match="start: a profile of 20 stages"):
+        solve_equilibrium(column, ternary(), start=solve_equilibrium(distillation(20), ternary()))
+
+
+def test_trials_that_cannot_be_made_are_passed_over() -> None:
+    """Distillates above 70 mol/s leave nothing for the bottoms beside a draw: the search goes on without them."""
+    column = distillation().with_(draws=[LiquidDraw(4, 30.0)], specifications=[
+        RefluxRatio(2.5), ProductPurity(0.9, 1, bounds=(20.0, 90.0))])
+    with pytest.raises(NoSolutionError, match=r"the best is .* trial columns were not solved"):
+        solve_equilibrium(column, ternary())
+    column = column.with_(specifications=[RefluxRatio(2.5), ProductPurity(0.9, 1, bounds=(75.0, 90.0))])
+    with pytest.raises(InputError, match="nothing of the feed"):
+        solve_equilibrium(column, ternary())

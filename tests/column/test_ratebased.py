@@ -9,6 +9,7 @@ import pytest
 from columns import absorber, absorber_mixture, absorber_trays, distillation, ternary, trays
 
 from ratebased.column import (
+    Averaged,
     Column,
     ContactorPressure,
     LiquidFeed,
@@ -264,8 +265,76 @@ def test_hetp_of_a_binary_bed_at_constant_slope() -> None:
         BASE.hetp()
 
 
-@pytest.mark.parametrize("contactor, words", [(object(), "hardware|contactor|iterable"), ({(1, 1): trays()}, "stage "
-                                                                                                             "2")])
+@pytest.mark.parametrize("contactor, words", [
+    (object(), "contactor = <object .*expected"), ([trays()], r"contactor\[0\] = .*expected a Section"),
+    ({(1, 1): trays()}, "stage 2"), ({(2, 11): "tray"}, "contactor: 'tray' has no methods transfer and hydraulics")])
 def test_what_is_no_contactor(contactor: Any, words: str) -> None:
-    with pytest.raises((InputError, TypeError), match=words):
+    with pytest.raises(InputError, match=words):
         solve_ratebased(distillation(), ternary(), contactor)
+
+
+@pytest.mark.parametrize("pattern", ["plug", Mixed])
+def test_what_is_no_flow_pattern(pattern: Any) -> None:
+    with pytest.raises(InputError, match="vapor = .*expected a flow pattern"):
+        solve_ratebased(distillation(), ternary(), trays(), vapor=pattern)
+
+
+def test_a_start_at_another_pressure_keeps_the_columns_own() -> None:
+    column = distillation().with_(pressure=3e5)
+    cold, warm = (solve_ratebased(column, ternary(), trays(), start=start) for start in (None, BASE))
+    assert (warm.P == 3e5).all() and warm.report.path == "from the profile given"
+    np.testing.assert_allclose(warm.x, cold.x, atol=1e-10)
+
+
+def test_a_start_of_other_components_is_refused() -> None:
+    model = ternary()
+    other = ConstantVolatility(["p", "q", "r"], model.volatility, model.latent_heat, a=22.5, b=4000.0)
+    with pytest.raises(InputError, match="start: a profile of p, q, r, the mixture is light, middle, heavy"):
+        solve_ratebased(distillation(), model, trays(), start=solve_equilibrium(distillation(), other))
+
+
+@pytest.mark.parametrize("pattern, area, stages", [(Plug(), 150.0, 12), (Averaged(), 150.0, 12), (None, 400.0, 8)],
+                         ids=["plug", "averaged", "bed of long segments"])
+@pytest.mark.filterwarnings("ignore::ratebased.errors.ApproximationWarning")
+def test_the_answer_does_not_depend_on_the_start(pattern: Any, area: float, stages: int) -> None:
+    """The shares of the entering states belong to the solution, not to where the iteration came from."""
+    height = 1.0 if pattern is None else None
+    column = distillation(stages).with_(segment_height=height)
+    far = solve_ratebased(distillation(stages, R=8.0).with_(segment_height=height), ternary(), trays(area))
+    cold, warm = (solve_ratebased(column, ternary(), trays(area), vapor=pattern, liquid=pattern, start=start)
+                  for start in (None, far))
+    assert warm.report.path == "from the profile given"
+    np.testing.assert_allclose(warm.x, cold.x, atol=1e-10)
+    np.testing.assert_allclose(warm.T_L, cold.T_L, atol=1e-8)
+
+
+def test_pressures_do_not_depend_on_the_start() -> None:
+    column = distillation().with_(pressure=ContactorPressure(101325.0, estimate=500.0))
+    cold = solve_ratebased(column, ternary(), FlowDependent())
+    far = solve_ratebased(column.with_(pressure=ContactorPressure(2e5)), ternary(), FlowDependent())
+    warm = solve_ratebased(column, ternary(), FlowDependent(), start=far)
+    np.testing.assert_allclose(warm.P, cold.P, rtol=1e-10)
+    np.testing.assert_allclose(warm.x, cold.x, atol=1e-10)
+
+
+def test_purity_with_the_vapor_in_plug_flow() -> None:
+    """Targets that lie on a column of the search's own grid, or within rounding of it."""
+    reflux = float(np.exp(np.linspace(np.log(0.5), np.log(20.0), 13))[3])
+    purity = solve_ratebased(distillation(R=reflux), ternary(), trays(), vapor=Plug(), liquid=Mixed()).purity(0)
+    for target in (purity, purity + 1e-7):
+        column = distillation().with_(specifications=[DistillateRate(40.0), ProductPurity(target, 0,
+                                                                                          bounds=(0.5, 20.0))])
+        found = solve_ratebased(column, ternary(), trays(), vapor=Plug(), liquid=Mixed())
+        assert found.purity(0) == pytest.approx(target, rel=1e-9)
+        assert found.L[0] / 40.0 == pytest.approx(reflux, rel=1e-4)
+
+
+def test_doubts_about_the_column_found_by_a_search_are_told() -> None:
+    """Warnings of the trials are dropped, those of the answer come through."""
+    bed = distillation(6).with_(segment_height=1.0)
+    with pytest.warns(ApproximationWarning):
+        purity = solve_ratebased(bed, ternary(), trays(2000.0)).purity(0)
+    searched = bed.with_(specifications=[DistillateRate(40.0), ProductPurity(purity, 0)])
+    with pytest.warns(ApproximationWarning, match="transfer units in one segment") as told:
+        solve_ratebased(searched, ternary(), trays(2000.0))
+    assert len(told) == 1
