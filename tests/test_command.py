@@ -273,10 +273,11 @@ def test_a_pipe_that_closes(tmp_path: Path) -> None:
 
 def test_progress_on_a_terminal_only(tmp_path: Path) -> None:
     """On a terminal a line tells what is under way; it goes to standard error and is wiped when done."""
-    pty = pytest.importorskip("pty")
+    pty, termios = pytest.importorskip("pty"), pytest.importorskip("termios")
     case = tmp_path / "case.toml"
     case.write_text((TEMPLATES / "flux.toml").read_text())
     master, slave = pty.openpty()
+    termios.tcsetwinsize(slave, (24, 80))
     run = subprocess.Popen([sys.executable, "-m", "ratebased.command", "flux", str(case), "--format", "csv"],
                            stdout=subprocess.PIPE, stderr=slave, text=True)
     text, _ = run.communicate(timeout=60)
