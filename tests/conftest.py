@@ -1,5 +1,9 @@
-"""The option `--references DIR` and the count it prints."""
+"""The option `--references DIR` and the count it prints; one thread for linear algebra: the matrices are small."""
 from __future__ import annotations
+
+import os
+
+os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")  # before anything imports numpy
 
 from pathlib import Path
 

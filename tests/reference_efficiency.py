@@ -38,8 +38,9 @@ class Comparison:
 
 def mixture(data: Mapping[str, Any]) -> ConstantVolatility:
     """The property model of a case."""
-    return ConstantVolatility([f"c{i + 1}" for i in range(len(data["alpha"]))], data["alpha"], data["latent"], a=data["a"],
-                              b=data["b"], vapor_heat_capacity=data["cp_V"], liquid_heat_capacity=data["cp_L"],
+    names = [f"c{i + 1}" for i in range(len(data["alpha"]))]
+    return ConstantVolatility(names, data["alpha"], data["latent"], a=data["a"], b=data["b"],
+                              vapor_heat_capacity=data["cp_V"], liquid_heat_capacity=data["cp_L"],
                               reference_temperature=data["T_ref"], vapor_molar_density=data["c_V"],
                               liquid_molar_density=data["c_L"])
 
@@ -74,7 +75,7 @@ def compare(case: Mapping[str, Any]) -> Iterator[Comparison]:
     for key in case:
         if key.startswith("pools_"):
             tray = pools_in_series(entering, np.array(L), model, int(key[6:]),
-                                   method=partial(integral, rtol=1e-9))
+                                   method=partial(integral, rtol=1e-8))
             yield from _leaving(key, case[key], entering, model, tray.y, tray.x[-1], tray.T_V, tray.T_L[-1])
 
 

@@ -1,4 +1,4 @@
-"""Makes profile.csv: an equilibrium-stage calculation of the absorber over `thermo`, each stage standing for 0.6 m of bed.
+"""Makes profile.csv: an equilibrium-stage calculation of the absorber over `thermo`, each stage for 0.6 m of bed.
 
 All balances of all stages at once by Newton's method (Naphtali & Sandholm, AIChE J. 17 (1971) 148) with a
 Jacobian by differences. Air does not dissolve. The plant is invented.

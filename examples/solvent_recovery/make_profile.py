@@ -66,7 +66,9 @@ def solve() -> dict[str, np.ndarray]:
     V[0] = 0.0
     x = np.tile(COMPOSITION, (S, 1))
     T = np.linspace(330.0, 372.0, S)
-    for sweep in range(2000):
+    sweeps = 0
+    while sweeps < 2000:
+        sweeps += 1
         L = np.array([(V[j + 1] if j + 1 < S else 0.0) + feed[:j + 1].sum() - DISTILLATE for j in range(S)])
         K = np.stack([mixture.k_value(t, p, z) for t, p, z in zip(T, P, x)])
         flows = np.empty((S, n))
@@ -96,7 +98,7 @@ def solve() -> dict[str, np.ndarray]:
     else:
         raise RuntimeError(f"not converged: {moved:.1e}")
     L = np.array([(V[j + 1] if j + 1 < S else 0.0) + feed[:j + 1].sum() - DISTILLATE for j in range(S)])
-    print(f"{sweep + 1} sweeps; distillate {x[0].round(4)}, bottoms {x[-1].round(6)}", file=sys.stderr)
+    print(f"{sweeps} sweeps; distillate {x[0].round(4)}, bottoms {x[-1].round(6)}", file=sys.stderr)
     return {"T": T, "P": P, "L": L, "V": V, "x": x, "y": y, "T_feed": np.array([T_feed])}
 
 

@@ -1,4 +1,4 @@
-"""Efficiencies: the fast froth step against the integral, the table against its property evaluations, samples against runs.
+"""Efficiencies: fast froth step against the integral, table against its property evaluations, samples against runs.
 
     python tests/benchmarks/efficiency_speed.py [stages of the accuracy check, default 200]
 
@@ -35,9 +35,10 @@ def random_point(rng: np.random.Generator) -> tuple[FrothPoint, ConstantVolatili
     """A ternary or quaternary froth: unequal pairs, either film in control, a vapour up to 80 K superheated."""
     n = int(rng.integers(3, 5))
     latent = rng.uniform(2.8e4, 4.2e4, n)
-    model = ConstantVolatility([f"c{i}" for i in range(n)], np.exp(rng.uniform(-1.2, 1.2, n)), latent, a=22.6, b=4000.0,
-                               vapor_heat_capacity=rng.uniform(50, 120, n), liquid_heat_capacity=rng.uniform(90, 200, n),
-                               reference_temperature=350.0, vapor_molar_density=35.0, liquid_molar_density=1.1e4)
+    model = ConstantVolatility(
+        [f"c{i}" for i in range(n)], np.exp(rng.uniform(-1.2, 1.2, n)), latent, a=22.6, b=4000.0,
+        vapor_heat_capacity=rng.uniform(50, 120, n), liquid_heat_capacity=rng.uniform(90, 200, n),
+        reference_temperature=350.0, vapor_molar_density=35.0, liquid_molar_density=1.1e4)
     x, y = rng.dirichlet(np.ones(n)), rng.dirichlet(np.ones(n))
     T, star = bubble_point(model, PRESSURE, x)
     y_in = 0.6 * star + 0.4 * y
@@ -45,7 +46,8 @@ def random_point(rng: np.random.Generator) -> tuple[FrothPoint, ConstantVolatili
     kappa_l = np.exp(rng.uniform(-1, 1, (n, n)))
     c = TransferCoefficients(
         (0.012 * (kappa_v + kappa_v.T))[None], (10 ** rng.uniform(-4.3, -3) * (kappa_l + kappa_l.T))[None],
-        np.full(1, rng.uniform(20, 80)), np.full(1, rng.uniform(500, 3000)), np.full(1, rng.uniform(0.5, 3.0)), "random")
+        np.full(1, rng.uniform(20, 80)), np.full(1, rng.uniform(500, 3000)), np.full(1, rng.uniform(0.5, 3.0)),
+        "random")
     superheat = rng.uniform(0, 3) if rng.random() < 0.5 else rng.uniform(20, 80)
     point = FrothPoint(np.ones(1), y_in[None], np.full(1, float(T) + superheat), x[None], np.full(1, float(T)),
                        np.full(1, PRESSURE), c, np.full(1, 35.0), np.full(1, 1.1e4))
