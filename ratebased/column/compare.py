@@ -11,6 +11,7 @@ import numpy as np
 
 from correlations.overall import oconnell, oconnell_absorber
 
+from ..arguments import finite_scalar
 from ..errors import ConvergenceError, InputError
 from ..properties.protocol import Array, PropertyModel
 from ..show import Shown
@@ -21,6 +22,7 @@ from .equilibrium import solve_equilibrium
 from .profile import Profile
 from .ratebased import solve_ratebased
 from .resize import resized, resized_efficiency, resized_layout, stage_map
+from .specifications import ComponentRecovery, ProductPurity
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -39,8 +41,8 @@ class Comparison(Shown):
     profiles: by model name, in the order one efficiency, component efficiencies, rate-based. efficiency: the one
     Murphree efficiency and where it comes from. table: back-calculated component efficiencies. differences: the largest
     ones, in words, largest first. purity: component name and product that the stage counts are for, with the mole
-    fraction. contact stages needed by each model for it; None where it is not reached with up to three times the
-    stages.
+    fraction. stages_needed: contact stages with which each model reaches it while one less does not; None where it is
+    not reached with up to three times the stages; empty where a purity or recovery is specified.
     """
 
     profiles: dict[str, Profile]
@@ -92,13 +94,19 @@ def compare(column: Column, properties: PropertyModel, contactor: ContactorLayou
         components (the absorber form without condenser and reboiler); for a packed bed the median of the segments' own.
     component, product, purity : what the stage counts are for; None: the light key in the top product (of an absorber
         the component that it removes most of), at the mole fraction of the rate-based column.
-    count_stages : False leaves the counts out (about twenty more solutions).
+    count_stages : False leaves the counts out (about twenty more solutions). They are left out too where the column is
+        searched for a purity or a recovery: every number of stages reaches it then.
 
     Raises
     ------
-    InputError, ConvergenceError : as for the two solvers. A model other than the rate-based one that finds no solution
-        for a given number of stages counts as not reaching the purity.
+    InputError, ConvergenceError : as for the two solvers; a product that is no end product, a purity outside 0..1. A
+        model other than the rate-based one that finds no solution for a given number of stages counts
+        as not reaching the purity.
     """
+    if product not in ("top", "bottom"):
+        raise InputError(f"product = {product!r}: expected 'top' or 'bottom'")
+    if purity is not None and not 0.0 < finite_scalar("purity", purity) < 1.0:
+        raise InputError(f"purity = {purity}: expected a number between 0 and 1")
     rate = solve_ratebased(column, properties, contactor, vapor=vapor, liquid=liquid)
     fixed = column.with_(pressure=rate.P)
     table = rate.efficiency()
@@ -106,14 +114,14 @@ def compare(column: Column, properties: PropertyModel, contactor: ContactorLayou
     if efficiency is None:
         value, source = _rule_of_thumb(rate, table, properties, light, heavy)
     else:
-        value, source = float(efficiency), "given"
+        value, source = finite_scalar("efficiency", efficiency), "given"
     fed = table.vaporization_set()
     profiles = {ONE_EFFICIENCY: solve_equilibrium(fixed, properties, value),
                 FED_BACK: solve_equilibrium(fixed, properties, fed), RATE_BASED: rate}
     i = light if component is None else rate._component(component)
     target = rate.purity(i, product) if purity is None else float(purity)
     needed: dict[str, int | None] = {}
-    if count_stages:
+    if count_stages and not isinstance(column.search, ProductPurity | ComponentRecovery):
         def with_fed(n: int) -> Profile:
             return solve_equilibrium(resized(fixed, n), properties, resized_efficiency(fed, fixed, n))
 
@@ -132,13 +140,14 @@ def compare(column: Column, properties: PropertyModel, contactor: ContactorLayou
 
 def key_components(profile: Profile) -> tuple[int, int]:
     """Light and heavy key: of the components in order of their K, the neighbours whose recoveries at the top lie
-    furthest apart; of an absorber or a stripper without ends twice the component that changes phase most. Masked ones
-    take no part.
+    furthest apart; of an absorber or a stripper without ends twice the component of whose own feed the largest share
+    changes phase. Masked ones take no part.
     """
     model = profile.model_or(None)
     ordinary = np.flatnonzero(model.condensable & model.volatile)
     if not profile.duties:
-        removed = np.abs(profile.feeds.vapor.sum(0) - profile.products["top"].flows)[ordinary]
+        fed = (profile.feeds.vapor + profile.feeds.liquid).sum(0)
+        removed = (np.abs(profile.feeds.vapor.sum(0) - profile.products["top"].flows) / fed)[ordinary]
         k = int(ordinary[np.argmax(removed)])
         return k, k
     if ordinary.size == 1:
@@ -162,56 +171,79 @@ def _rule_of_thumb(profile: Profile, table: ColumnEfficiencies, properties: Prop
     viscosity = float(np.mean(transport.viscosity))
     if "condenser" in profile.duties or "reboiler" in profile.duties:
         alpha = float(np.exp(np.mean(np.log(K[:, light] / K[:, heavy]))))
-        value = oconnell.silent(max(alpha, 1.0), viscosity)
-        return float(value), "O'Connell (1946), key components at the mean of the stages"
+        volatility = max(alpha, 1.0)
+        words = "O'Connell (1946), key components at the mean of the stages"
+        if alpha < 1.0:
+            words += f"; their relative volatility of {alpha:.3g} taken as one"
+        return float(oconnell(volatility, viscosity)), words
     molar_mass = float(np.mean(x @ properties.molar_mass))
     density = float(np.mean(transport.mass_density))
-    value = oconnell_absorber.silent(float(np.mean(K[:, light])), molar_mass, viscosity, density)
+    value = oconnell_absorber(float(np.mean(K[:, light])), molar_mass, viscosity, density)
     return float(value), "O'Connell (1946) for absorbers, key component at the mean of the stages"
 
 
 def stages_for_purity(solve: Callable[[int], Profile], known: Profile, component: int, product: str,
                       target: float) -> int | None:
-    """Fewest contact stages with which a column reaches a mole fraction in a product; None: not up to three times the
-    stages of `known`.
+    """Contact stages with which a column reaches a mole fraction in a product while one stage less does not.
 
-    The side of the target that counts as reached is that of many stages. `solve(n)` gives the column of n contact
-    stages.
+    The search goes out from the stages of `known`: downwards from a column that reaches it, else upwards (to three
+    times the stages), then downwards, since a purity need not rise with the stages. None: not reached, or not solved,
+    anywhere. A target above the component's fraction in what is fed counts as reached from above, one below it from
+    below. `solve(n)` gives the column of n contact stages.
     """
     now = int(known.contact_index.size)
-    values = {now: known.purity(component, product)}
+    values: dict[int, float | None] = {now: known.purity(component, product)}
+    sign = 1.0 if target >= _fed_fraction(known, component, product) else -1.0
 
-    def at(n: int) -> float | None:
+    def reached(n: int) -> bool:
         if n not in values:
             try:
                 values[n] = solve(n).purity(component, product)
-            except ConvergenceError:
-                return None
-        return values[n]
-
-    low, high = max(1, now // 8), 3 * now
-    few, many = at(low), at(high)
-    while many is None and high > now:
-        high -= max(1, now // 4)
-        many = at(high)
-    if few is None or many is None:
-        return None
-    sign = 1.0 if many >= few else -1.0
-
-    def reached(value: float | None) -> bool:
+            except (ConvergenceError, InputError):
+                values[n] = None
+        value = values[n]
         return value is not None and sign * (value - target) >= -1e-9
 
-    if not reached(many):
-        return None
-    if reached(few):
-        return low
-    while high - low > 1:
-        middle = (low + high) // 2
-        if reached(at(middle)):
-            high = middle
+    if reached(now):
+        return _fewest(reached, now)
+    for step, end in ((1, 3 * now), (-1, 1)):
+        stride, last, n = 1, now, now
+        while n != end:
+            last, n = n, min(n + stride, end) if step > 0 else max(n - stride, end)
+            if reached(n):
+                return _bisected(reached, n, last) if step > 0 else _fewest(reached, n)
+            stride *= 2
+    return None
+
+
+def _fewest(reached: Callable[[int], bool], good: int) -> int:
+    """Downwards from a number that reaches, in growing strides, to the last before one that does not."""
+    stride = 1
+    while good > 1:
+        n = max(good - stride, 1)
+        if not reached(n):
+            return _bisected(reached, good, n)
+        good, stride = n, 2 * stride
+    return good
+
+
+def _bisected(reached: Callable[[int], bool], good: int, bad: int) -> int:
+    """`good` reaches, `bad` does not: a number that does with a neighbour towards `bad` that does not."""
+    while abs(good - bad) > 1:
+        middle = (good + bad) // 2
+        if reached(middle):
+            good = middle
         else:
-            low = middle
-    return high
+            bad = middle
+    return good
+
+
+def _fed_fraction(profile: Profile, component: int, product: str) -> float:
+    """In all feeds; without condenser and reboiler in the feeds of the product's own phase."""
+    feeds = profile.feeds.vapor + profile.feeds.liquid
+    if not profile.duties:
+        feeds = profile.feeds.vapor if profile.products[product].phase == "vapor" else profile.feeds.liquid
+    return float(feeds[:, component].sum() / feeds.sum())
 
 
 def _differences(profiles: dict[str, Profile]) -> list[str]:

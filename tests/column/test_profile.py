@@ -1,16 +1,31 @@
 """Profiles: tables, files without loss, entropy, comparison."""
 from __future__ import annotations
 
-from dataclasses import fields
+from dataclasses import dataclass, fields
 from pathlib import Path
+from typing import Any, cast
 
 import numpy as np
 import pandas as pd
 import pytest
 from columns import absorber, absorber_mixture, absorber_trays, distillation, ternary, trays
 
-from ratebased.column import Averaged, LiquidDraw, Plug, Profile, VaporDraw, compare, solve_equilibrium, solve_ratebased
-from ratebased.column.compare import FED_BACK, ONE_EFFICIENCY, RATE_BASED, stages_for_purity
+from ratebased.column import (
+    Averaged,
+    Column,
+    DistillateRate,
+    LiquidDraw,
+    LiquidFeed,
+    Plug,
+    ProductPurity,
+    Profile,
+    VaporDraw,
+    VaporFeed,
+    compare,
+    solve_equilibrium,
+    solve_ratebased,
+)
+from ratebased.column.compare import FED_BACK, ONE_EFFICIENCY, RATE_BASED, key_components, stages_for_purity
 from ratebased.efficiency_set import EfficiencySet
 from ratebased.errors import InputError
 from ratebased.properties import ConstantVolatility
@@ -162,3 +177,80 @@ def test_rounded_set_keeps_its_shape() -> None:
     efficiency = RATE.efficiency().murphree_set().rounded(3, 2)
     assert isinstance(efficiency, EfficiencySet)
     np.testing.assert_allclose(efficiency.values * 1e3, np.round(efficiency.values * 1e3), atol=1e-6)
+
+
+def test_fewest_stages_that_reach_a_purity() -> None:
+    """Few stages of a long column are enough; the count does not stop at an eighth of them."""
+    def solve(n: int) -> Profile:
+        return solve_equilibrium(distillation(n + 2), ternary())
+
+    assert stages_for_purity(solve, solve(40), 0, "top", solve(3).purity(0)) == 3
+    assert stages_for_purity(solve, solve(4), 0, "top", solve(9).purity(0)) == 9
+
+
+@dataclass(frozen=True)
+class _Known:
+    """As much of a profile as the count asks for: a purity that need not rise with the stages."""
+
+    stages: int
+    purities: dict[int, float]
+    contact_index: np.ndarray
+    feeds: object
+    duties: dict[str, float]
+
+    def purity(self, component: int, product: str) -> float:
+        return self.purities[self.stages]
+
+
+def test_stage_count_of_a_purity_with_a_maximum() -> None:
+    """The column's own purity is reached by the column itself, and a lower one with fewer stages is found too."""
+    purities = {n: 0.9 - 0.01 * (n - 6) ** 2 for n in range(1, 40)}
+
+    def column(n: int) -> Profile:
+        return cast(Profile, _Known(n, purities, np.arange(n), RATE.feeds, RATE.duties))
+
+    assert stages_for_purity(column, column(6), 0, "top", 0.9) == 6
+    assert stages_for_purity(column, column(9), 0, "top", 0.9) == 6
+    assert stages_for_purity(column, column(8), 0, "top", 0.86) == 4
+    assert stages_for_purity(column, column(4), 0, "top", 0.88) == 5
+    assert stages_for_purity(column, column(8), 0, "top", 0.95) is None
+
+
+def test_comparison_of_a_column_with_sections() -> None:
+    """Stage counts move the sections with the column."""
+    result = compare(distillation(), ternary(), {(2, 6): trays(), (7, 11): trays(200.0)})
+    assert result.stages_needed[RATE_BASED] == 10 and result.stages_needed[FED_BACK] == 10
+
+
+def test_comparison_of_a_column_searched_for_a_purity() -> None:
+    """Every number of stages meets the purity: no counts."""
+    column = distillation().with_(specifications=[DistillateRate(40.0), ProductPurity(0.8, 0)])
+    result = compare(column, ternary(), trays(400.0))
+    assert result.stages_needed == {}
+    for profile in result.profiles.values():
+        assert profile.purity(0) == pytest.approx(0.8, rel=1e-8)
+
+
+def test_comparison_of_one_stage() -> None:
+    result = compare(absorber(1), absorber_mixture(), absorber_trays())
+    assert result.stages_needed[RATE_BASED] == 1
+
+
+def test_key_of_a_steam_stripper_is_what_is_stripped() -> None:
+    """Much steam condenses, but it is the solute of which most changes phase."""
+    model = ConstantVolatility(["solute", "water"], [40.0, 1.0], [35e3, 41e3], a=24.5, b=4850.0,
+                               vapor_heat_capacity=[90.0, 34.0], liquid_heat_capacity=[150.0, 75.0],
+                               reference_temperature=350.0, vapor_molar_density=35.0, liquid_molar_density=4e4)
+    column = Column(8, [LiquidFeed(1, [1.0, 99.0], 350.0), VaporFeed(8, [0.0, 20.0], 375.0)], 101325.0)
+    profile = solve_equilibrium(column, model)
+    condensed = 20.0 - profile.products["top"].flows[1]
+    assert condensed > 1.0 > profile.products["top"].flows[0] > 0.9
+    assert key_components(profile) == (0, 0)
+
+
+@pytest.mark.parametrize("arguments, words", [
+    ({"product": "side"}, "product = 'side'"), ({"purity": 2.0}, "purity = 2.0: expected a number between 0 and 1"),
+    ({"efficiency": float("nan")}, "efficiency")])
+def test_what_cannot_be_compared(arguments: dict[str, Any], words: str) -> None:
+    with pytest.raises(InputError, match=words):
+        compare(distillation(), ternary(), trays(), **arguments)

@@ -12,6 +12,7 @@ from ratebased.column import (
     Averaged,
     Column,
     ContactorPressure,
+    Feed,
     LiquidFeed,
     Mixed,
     Plug,
@@ -25,6 +26,7 @@ from ratebased.column import (
     solve_equilibrium,
     solve_ratebased,
 )
+from ratebased.column.resize import resized_layout, stage_map
 from ratebased.column.specifications import DistillateRate
 from ratebased.efficiency_set import EfficiencyBasis
 from ratebased.equipment import ContactState, FixedCoefficients, Hydraulics, Section, TransferCoefficients
@@ -338,3 +340,60 @@ def test_doubts_about_the_column_found_by_a_search_are_told() -> None:
     with pytest.warns(ApproximationWarning, match="transfer units in one segment") as told:
         solve_ratebased(searched, ternary(), trays(2000.0))
     assert len(told) == 1
+
+
+def test_an_area_that_does_not_follow_the_height_is_refused() -> None:
+    """Fixed coefficients hold an area of a segment: halved segments would double the bed."""
+    with pytest.raises(InputError, match=r"area of the bed goes from 24 to 48 m2 when its 8 segments are halved"):
+        refine_grid(absorber(8, packed=True), absorber_mixture(), absorber_trays(3.0))
+
+
+@dataclass(frozen=True)
+class Bed:
+    """A packing: area and pressure drop follow the height of the segment."""
+
+    drop: float = 1e4
+
+    def transfer(self, state: ContactState) -> TransferCoefficients:
+        fixed = trays(60.0).transfer(state)
+        return TransferCoefficients(fixed.kappa_vapor, fixed.kappa_liquid, fixed.h_vapor, fixed.h_liquid,
+                                    100.0 * state.height, "interfacial area", {})
+
+    def hydraulics(self, state: ContactState) -> Hydraulics:
+        return Hydraulics(flooding=state.V / 250.0, pressure_drop=self.drop * state.height)
+
+
+def test_order_of_a_bed_with_its_own_pressure_drop() -> None:
+    """The feed is flashed at the pressure found, on every grid the same; else its phases jump from the first grid to
+    the second.
+    """
+    column = Column(10, [Feed(5, [35.0, 35.0, 30.0], temperature=355.0)], ContactorPressure(101325.0),
+                    condenser=TotalCondenser(), reboiler=Reboiler(),
+                    specifications=[RefluxRatio(2.5), DistillateRate(40.0)], segment_height=0.3)
+    study = refine_grid(column, ternary(), Bed(), grids=4)
+    vapor = np.array([p.feeds.vapor.sum() for p in study.profiles])
+    np.testing.assert_allclose(vapor, vapor[0], rtol=1e-9)
+    assert vapor[0] > 1.0
+    assert study.order[-1] == pytest.approx(2.0, abs=0.3)
+
+
+@pytest.mark.filterwarnings("ignore::ratebased.errors.ApproximationWarning")
+def test_richardson_takes_the_order_of_the_flow_patterns() -> None:
+    """One phase mixed: first order, though the last ratio of differences of these coarse grids looks like 2.3."""
+    column = absorber(4, packed=True)
+    for vapor, liquid, p in ((None, None, 2), (Plug(), None, 2), (Mixed(), None, 1), (None, Mixed(), 1)):
+        study = refine_grid(column, absorber_mixture(), absorber_trays(60.0), grids=3, area_follows_height=False,
+                            vapor=vapor, liquid=liquid)
+        step = study.products[-1] - study.products[-2]
+        np.testing.assert_allclose(study.extrapolated - study.products[-1], step / (2 ** p - 1), atol=1e-9)
+
+
+def test_sections_keep_every_stage_when_the_column_is_resized() -> None:
+    """No stage between two sections is left out, more stages or fewer."""
+    column = distillation()
+    sections = [Section(2, 4, trays()), Section(5, 6, trays(200.0)), Section(7, 11, trays(300.0))]
+    for n in (1, 2, 3, 7, 9, 10, 13, 30):
+        new = resized_layout(sections, stage_map(column, n))
+        assert isinstance(new, list)
+        covered = [j for s in new for j in range(s.first, s.last + 1)]
+        assert covered == list(range(2, n + 2)), n
