@@ -7,7 +7,7 @@ of its ends.
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass, field, fields
+from dataclasses import dataclass, field, fields, replace
 from typing import Protocol
 
 import numpy as np
@@ -374,14 +374,14 @@ class Collected:
         self.flux[member] = result.transferred / coefficients.area[..., None]
         self.L[member] = group.bulk.L
         interface = result.point.middle if isinstance(result, TrayResult) else result.interface
-        tray = isinstance(result, TrayResult)
-        self.films[member] = result.interface_residual if tray else result.interface.residual
-        self.heat[member] = result.energy_residual if tray else result.interface.energy_residual
         if isinstance(result, TrayResult):
+            self.films[member], self.heat[member] = result.interface_residual, result.energy_residual
             self.energy_closure[member] = result.point.energy_closure
             if result.unmixed.any():
                 self.notes.setdefault(UNMIXED, np.zeros(self.V.size, bool))[member] = result.unmixed
-        elif result.long.any():
+        else:
+            self.films[member], self.heat[member] = interface.residual, interface.energy_residual
+        if isinstance(result, SegmentResult) and result.long.any():
             self.notes.setdefault(LONG, np.zeros(self.V.size, bool))[member] = result.long
         self.share[member] = interface.vapor_entropy_share
         self.interfaces.append((member, interface))
@@ -397,7 +397,10 @@ class Collected:
 
     def hydraulics(self) -> Hydraulics:
         """Limits of all rows; a row whose contactor has no method for one holds NaN there (an empty cell)."""
-        return Hydraulics(**{"flooding": None, **self.limits})
+        found = Hydraulics(flooding=None)
+        for name, values in self.limits.items():
+            found = replace(found, **{name: values})  # type: ignore[arg-type]
+        return found
 
 
 def packed_rows(position: NDArray[np.int64], group: RowGroup, x_out: Array, T_out: Array, result: SegmentResult,
@@ -434,8 +437,8 @@ def packed_rows(position: NDArray[np.int64], group: RowGroup, x_out: Array, T_ou
     # Nothing over nothing (an absent component) is no unit and an infinite height; a pole is infinite.
     units = [np.where(np.isnan(value), 0.0, value) for value in (N_OV, N_V, N_L)]
     heights = [np.where(np.isnan(value), np.inf, value) for value in heights]
-    return PackedRows(position, Z, *units, *heights, np.where(np.isfinite(S), S, 0.0),
-                      np.where(undefined, np.inf, HETP), undefined)
+    return PackedRows(position, Z, units[0], units[1], units[2], heights[0], heights[1], heights[2],
+                      np.where(np.isfinite(S), S, 0.0), np.where(undefined, np.inf, HETP), undefined)
 
 
 def _joined(parts: list[PackedRows]) -> PackedRows | None:

@@ -170,13 +170,14 @@ def _vapor_maps(E: Array, flip: Array, trays: int, P: int, m: int) -> list[tuple
     size = trays * P * m
     turn = np.kron(flip, np.eye(m))
     maps: list[tuple[Array, Array]] = [(np.zeros((0, 0)), np.zeros((0, 0)))] * (trays + 1)
-    maps[trays] = (np.zeros((P * m, size)), np.kron(np.ones((P, 1)), np.eye(m)))
+    maps[trays] = (np.zeros((P * m, size)), np.asarray(np.kron(np.ones((P, 1)), np.eye(m)), float))
     pass_through, pick = np.kron(np.eye(P), np.eye(m) - E), np.kron(np.eye(P), E)
     for k in range(trays - 1, -1, -1):
         below, constant = maps[k + 1]
         own = np.zeros((P * m, size))
         own[:, k * P * m:(k + 1) * P * m] = pick
-        maps[k] = (turn @ (pass_through @ below + own), turn @ (pass_through @ constant))
+        maps[k] = (np.asarray(turn @ (pass_through @ below + own), float),
+                   np.asarray(turn @ (pass_through @ constant), float))
     return maps
 
 

@@ -40,7 +40,7 @@ class Calls:
         for variable, mask in function.record.outside(**arguments).items():
             mask = np.asarray(mask)
             if pair_axes and mask.ndim >= pair_axes:
-                mask = mask.any((-2, -1))
+                mask = np.asarray(mask.any((-2, -1)))
             text = f"{function.__name__}: {variable} outside its published range"
             old = self.notes.get(text, np.zeros(self.batch, bool))
             self.notes[text] = old | np.broadcast_to(mask, self.batch)

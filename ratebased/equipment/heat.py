@@ -4,8 +4,9 @@ from __future__ import annotations
 import numpy as np
 
 from ..errors import InputError
+from ..properties.protocol import LiquidTransport, VaporTransport
 from .calls import pair_mean
-from .protocol import Array, LiquidTransport, VaporTransport
+from .protocol import Array
 
 
 def analogy(kappa: Array, bulk: VaporTransport | LiquidTransport, exponent: float) -> Array:

@@ -19,6 +19,8 @@ from .protocol import Array, ContactState
 if TYPE_CHECKING:
     from .trays import CrossFlowTray
 
+Correlations = Mapping[str, Correlation[..., Any]]
+
 
 @dataclass(frozen=True)
 class TrayOperation:
@@ -47,7 +49,7 @@ class TrayTransferMethod(Protocol):
     liquid_exponent: float
     """p of kappa ~ D^p in each phase, for the heat-transfer analogy."""
 
-    correlations: Mapping[str, Correlation[..., Any]]
+    correlations: Correlations
     """The correlations used, by what for; "vapor" and "liquid" carry the scatter of the coefficients."""
 
     def __call__(self, tray: CrossFlowTray, operation: TrayOperation, state: ContactState,
@@ -84,7 +86,7 @@ class _AIChEMixing:
 class _AIChE(_AIChEMixing):
     """The vapour units of the manual with the liquid units and the clear liquid of one kind of tray."""
 
-    correlations: Mapping[str, Correlation[..., Any]]
+    correlations: Correlations
 
     def clear_liquid(self, tray: CrossFlowTray, operation: TrayOperation, state: ContactState, calls: Calls) -> Array:
         """Clear liquid height by the manual's own equation, m."""
@@ -109,25 +111,28 @@ class _AIChE(_AIChEMixing):
 class AIChESieve(_AIChE):
     """Two-film transfer units of sieve trays, AIChE Bubble-Tray Design Manual (1958)."""
 
-    correlations = {"vapor": tray_transfer.aiche_vapor_units, "liquid": tray_transfer.aiche_sieve_liquid_units,
-                    "clear liquid": tray_hydraulics.aiche_sieve_clear_liquid,
-                    "eddy diffusivity": mixing.aiche_eddy_diffusivity}
+    correlations: Correlations = {
+        "vapor": tray_transfer.aiche_vapor_units, "liquid": tray_transfer.aiche_sieve_liquid_units,
+        "clear liquid": tray_hydraulics.aiche_sieve_clear_liquid,
+        "eddy diffusivity": mixing.aiche_eddy_diffusivity}
 
 
 class AIChEBubbleCap(_AIChE):
     """Two-film transfer units of bubble-cap trays, AIChE Bubble-Tray Design Manual (1958)."""
 
-    correlations = {"vapor": tray_transfer.aiche_vapor_units, "liquid": tray_transfer.aiche_bubble_cap_liquid_units,
-                    "clear liquid": tray_hydraulics.aiche_bubble_cap_clear_liquid,
-                    "eddy diffusivity": mixing.aiche_eddy_diffusivity}
+    correlations: Correlations = {
+        "vapor": tray_transfer.aiche_vapor_units, "liquid": tray_transfer.aiche_bubble_cap_liquid_units,
+        "clear liquid": tray_hydraulics.aiche_bubble_cap_clear_liquid,
+        "eddy diffusivity": mixing.aiche_eddy_diffusivity}
 
 
 class ChanFair(_AIChEMixing):
     """Transfer units of sieve trays, Chan & Fair (1984), on the clear liquid of Bennett, Agrawal & Cook (1983)."""
 
-    correlations = {"vapor": tray_transfer.chan_fair_vapor, "liquid": tray_transfer.chan_fair_liquid,
-                    "clear liquid": tray_hydraulics.bennett_clear_liquid,
-                    "eddy diffusivity": mixing.aiche_eddy_diffusivity}
+    correlations: Correlations = {
+        "vapor": tray_transfer.chan_fair_vapor, "liquid": tray_transfer.chan_fair_liquid,
+        "clear liquid": tray_hydraulics.bennett_clear_liquid,
+        "eddy diffusivity": mixing.aiche_eddy_diffusivity}
 
     def __call__(self, tray: CrossFlowTray, operation: TrayOperation, state: ContactState,
                  calls: Calls) -> tuple[Array, Array]:
@@ -145,9 +150,10 @@ class ChanFair(_AIChEMixing):
 class ChenChuang(_AIChEMixing):
     """Transfer units of sieve trays in the froth regime, Chen & Chuang (1993)."""
 
-    correlations = {"vapor": tray_transfer.chen_chuang_vapor_units, "liquid": tray_transfer.chen_chuang_liquid_units,
-                    "clear liquid": tray_hydraulics.bennett_clear_liquid,
-                    "eddy diffusivity": mixing.aiche_eddy_diffusivity}
+    correlations: Correlations = {
+        "vapor": tray_transfer.chen_chuang_vapor_units, "liquid": tray_transfer.chen_chuang_liquid_units,
+        "clear liquid": tray_hydraulics.bennett_clear_liquid,
+        "eddy diffusivity": mixing.aiche_eddy_diffusivity}
 
     def __call__(self, tray: CrossFlowTray, operation: TrayOperation, state: ContactState,
                  calls: Calls) -> tuple[Array, Array]:
@@ -169,11 +175,12 @@ class Zuiderweg(_AIChEMixing):
     """Coefficients and area of sieve trays, Zuiderweg (1982); spray or mixed regime below, emulsion flow above 3."""
 
     vapor_exponent, liquid_exponent = 0.0, 0.25
-    correlations = {"vapor": tray_transfer.zuiderweg_vapor, "liquid": tray_transfer.zuiderweg_liquid,
-                    "area": tray_transfer.zuiderweg_spray_area,
-                    "area in emulsion flow": tray_transfer.zuiderweg_emulsion_area,
-                    "clear liquid": tray_hydraulics.hofhuis_zuiderweg_clear_liquid,
-                    "eddy diffusivity": mixing.aiche_eddy_diffusivity}
+    correlations: Correlations = {
+        "vapor": tray_transfer.zuiderweg_vapor, "liquid": tray_transfer.zuiderweg_liquid,
+        "area": tray_transfer.zuiderweg_spray_area,
+        "area in emulsion flow": tray_transfer.zuiderweg_emulsion_area,
+        "clear liquid": tray_hydraulics.hofhuis_zuiderweg_clear_liquid,
+        "eddy diffusivity": mixing.aiche_eddy_diffusivity}
 
     def clear_liquid(self, tray: CrossFlowTray, operation: TrayOperation, state: ContactState, calls: Calls) -> Array:
         """Clear liquid height by Hofhuis & Zuiderweg (1979), m."""

@@ -127,8 +127,8 @@ def _linear(point: FrothPoint, properties: PropertyModel) -> _Linear:
     latent = (properties.vapor_enthalpy(T_b, point.P, y_star) - properties.liquid_enthalpy(T_b, point.P, point.x))
     c = point.coefficients
     gamma = properties.thermodynamic_factor(T_b, point.P, point.x)
-    k_vapor = np.linalg.inv(resistance_matrix(y_ref, c.kappa_vapor))
-    k_liquid = np.linalg.inv(resistance_matrix(point.x, c.kappa_liquid)) @ gamma
+    k_vapor = np.asarray(np.linalg.inv(resistance_matrix(y_ref, c.kappa_vapor)), float)
+    k_liquid = np.asarray(np.linalg.inv(resistance_matrix(point.x, c.kappa_liquid)) @ gamma, float)
     return _Linear(y_star, T_b, y_ref, k_vapor, k_liquid, line.equilibrium_matrix, tau[..., :-1] - tau[..., -1:],
                    latent)
 

@@ -63,7 +63,8 @@ def pools_in_series(entering: FrothPoint, L_in: Array, properties: PropertyModel
             * properties.vapor_enthalpy(entering.T_V_in, entering.P, entering.y_in)).sum(-1)
     T_V = vapor_temperature(properties, entering.P, g, H_in - gained, guess_T)
     V = g.sum(-1)
-    return PoolsResult(V, g / V[..., None], T_V, *(np.stack(part) for part in zip(*liquids)), totals)
+    L, x, T_L = (np.stack(part) for part in zip(*liquids))
+    return PoolsResult(V, g / V[..., None], T_V, L, x, T_L, totals)
 
 
 def _one_pool(entering: FrothPoint, l_in: Array, T_in: Array, properties: PropertyModel, count: int,

@@ -61,4 +61,5 @@ def segment_between_ends(V_in: Array, y_in: Array, T_V_in: Array, vapor: tuple[A
     T_V = vapor_temperature(properties, P, g_out, H_in - energy, vapor[1])
     V = g_out.sum(-1)
     slope = -area[..., None] * (answer.N - vapor[0] * answer.N.sum(-1, keepdims=True))
-    return SegmentResult(V, g_out / V[..., None], T_V, transferred, energy, slope, answer, long.any(-1))
+    return SegmentResult(V, g_out / V[..., None], T_V, transferred, energy, slope, answer,
+                         np.asarray(long.any(-1)))
