@@ -161,19 +161,19 @@ def test_the_templates_run_unspoiled() -> None:
         assert run(kind, document(template(kind)), PROFILE) == DONE
 
 
-@settings(max_examples=150 * TIMES, **COMMON)  # type: ignore[arg-type]
+@settings(max_examples=100 * TIMES, **COMMON)  # type: ignore[arg-type]
 @given(spoiled("rate"))
 def test_rate_case(data: dict[str, Any]) -> None:
     run("rate", document(data), PROFILE)
 
 
-@settings(max_examples=60 * TIMES, **COMMON)  # type: ignore[arg-type]
+@settings(max_examples=40 * TIMES, **COMMON)  # type: ignore[arg-type]
 @given(spoiled("column"))
 def test_column_case(data: dict[str, Any]) -> None:
     run("column", document(data))
 
 
-@settings(max_examples=150 * TIMES, **COMMON)  # type: ignore[arg-type]
+@settings(max_examples=100 * TIMES, **COMMON)  # type: ignore[arg-type]
 @given(spoiled("flux"))
 def test_flux_case(data: dict[str, Any]) -> None:
     run("flux", document(data))
@@ -206,7 +206,7 @@ def spoiled_profile(draw: st.DrawFn) -> str:
     return "\n".join(",".join(row) for row in rows)
 
 
-@settings(max_examples=150 * TIMES, **COMMON)  # type: ignore[arg-type]
+@settings(max_examples=100 * TIMES, **COMMON)  # type: ignore[arg-type]
 @given(spoiled_profile())
 def test_profile(text: str) -> None:
     run("rate", document(template("rate")), text)
