@@ -5,7 +5,7 @@ import numpy as np
 import pytest
 
 from ratebased import ConstantVolatility, bubble_point, dew_point
-from ratebased.efficiency import hausen, murphree_liquid, murphree_vapor, vaporization
+from ratebased.efficiency import equilibrium_vapor, hausen, murphree_liquid, murphree_vapor, vaporization
 from ratebased.equipment import TransferCoefficients
 from ratebased.stage.equilibrium_stage import equilibrium_stage
 from ratebased.stage.mixed import mixed_tray_from_feeds
@@ -85,3 +85,22 @@ def test_equilibrium_stage_with_a_gas_that_does_not_condense() -> None:
 def test_a_pole_is_infinite_and_nothing_over_nothing_is_zero() -> None:
     y_in, y_out, star = np.array([0.2, 0.3]), np.array([0.3, 0.3]), np.array([0.2, 0.3])
     assert murphree_vapor(y_in, y_out, star).tolist() == [np.inf, 0.0]
+
+
+def test_vapor_at_the_liquids_temperature_is_not_scaled() -> None:
+    """Without a gas y* = K(T_L) x: above one in sum where the liquid is superheated; K belongs to the vapour told."""
+    m = ConstantVolatility(["a", "b", "oil"], [3.0, 0.5, 1.0], 3e4, a=22.6, b=4000.0, volatile=[True, True, False])
+    P, T, x, y_in = np.full(1, 1e5), np.full(1, 390.0), np.array([[0.4, 0.5, 0.1]]), np.array([[0.7, 0.3, 0.0]])
+    star = equilibrium_vapor(m, P, x, T, y_in)
+    K = m.k_value(T, P, x, y_in)
+    np.testing.assert_allclose(star.composition[:, :2], (K * x)[:, :2], rtol=1e-15)
+    assert star.composition.sum() > 1.5 and star.composition[0, 2] == 0.0
+
+    class FollowsVapor(ConstantVolatility):
+        def k_value(self, T, P, x, y):  # type: ignore[no-untyped-def]
+            return super().k_value(T, P, x, y) * (1.0 + y)
+
+    n = FollowsVapor(["a", "b", "oil"], [3.0, 0.5, 1.0], 3e4, a=22.6, b=4000.0, volatile=[True, True, False])
+    y_out = np.array([[0.8, 0.2, 0.0]])
+    found = equilibrium_vapor(n, P, x, T, y_in, y_out=y_out)
+    np.testing.assert_allclose(found.composition[:, :2], (n.k_value(T, P, x, y_out) * x)[:, :2], rtol=1e-15)

@@ -9,7 +9,8 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
-from ..efficiency.definitions import murphree_vapor, small_driving_force, vaporization
+from ..arguments import finite_scalar
+from ..efficiency.definitions import equilibrium_vapor, murphree_vapor, small_driving_force, vaporization
 from ..efficiency_set import EfficiencyBasis, EfficiencyKind, EfficiencySet
 from ..errors import InputError
 from ..properties.protocol import Array, Mask, PropertyModel
@@ -61,8 +62,17 @@ class ColumnEfficiencies(Shown):
                              vapor_offset=self._spread(self.superheat, 0.0), given=self._given())
 
     def murphree_set(self) -> EfficiencySet:
-        """Murphree efficiencies with the temperature offsets that go with their basis."""
-        values = self._spread(np.nan_to_num(self.exact_murphree, posinf=1e12, neginf=-1e12), 1.0)
+        """Murphree efficiencies with the temperature offsets that go with their basis.
+
+        Raises
+        ------
+        InputError : a component whose efficiency has a pole, y* = y_in: no Murphree set holds that column.
+        """
+        poles = ~np.isfinite(self.exact_murphree) & (np.arange(len(self.names)) != self.dependent[:, None])
+        for k, i in np.argwhere(poles)[:1]:
+            raise InputError(f"stage {self.stage[k]}: the Murphree efficiency of {self.names[i]} has a pole, y* = "
+                             "y_in; feed vaporisation efficiencies back")
+        values = self._spread(np.where(np.isfinite(self.exact_murphree), self.exact_murphree, 1.0), 1.0)
         at_bubble = self.basis is EfficiencyBasis.BUBBLE_POINT
         dependent = np.full(self.stages, -1)
         if at_bubble:
@@ -98,25 +108,17 @@ def equilibrium_state(profile: Profile, properties: PropertyModel, at_liquid_tem
                       ) -> tuple[EfficiencyBasis, Array, Array]:
     """Basis, y* and its temperature for the liquids leaving the contact stages.
 
-    At the bubble point; with a masked component, or on request, at T_L: K_i(T_L) x_i for the components in both phases,
-    what is left of one shared by the non-condensing ones as in the entering vapour.
-    """
+    See `equilibrium_vapor`; K belongs to the vapour that leaves."""
     c = profile.contact_index
     P, x, T_L = profile.P[c], profile.x[c], profile.T_L[c]
     ordinary = properties.condensable & properties.volatile
     own = not ordinary.all() if at_liquid_temperature is None else at_liquid_temperature
-    if not own:
-        if not properties.condensable.all():
-            raise InputError("at_liquid_temperature = False: the bubble point of a liquid under a gas means nothing")
-        T, y = bubble_point(properties, P, x, T_L)
-        return EfficiencyBasis.BUBBLE_POINT, y, T
-    K = properties.k_value(T_L, P, x, profile.y[c])
-    y = np.where(ordinary, K * x, 0.0)
+    if not own and not properties.condensable.all():
+        raise InputError("at_liquid_temperature = False: the bubble point of a liquid under a gas means nothing")
     v_in = profile.entering_vapor()[c]
-    gas = np.where(properties.condensable, 0.0, v_in)
-    share = gas.sum(-1, keepdims=True)
-    y = y + gas / np.where(share > 0, share, 1.0) * (1.0 - y.sum(-1, keepdims=True))
-    return EfficiencyBasis.LIQUID_TEMPERATURE, y, T_L
+    star = equilibrium_vapor(properties, P, x, T_L, v_in / v_in.sum(-1, keepdims=True), y_out=profile.y[c],
+                             at_liquid_temperature=own)
+    return EfficiencyBasis(star.basis), star.composition, star.temperature
 
 
 def column_efficiencies(profile: Profile, *, limit: float = 0.01, at_liquid_temperature: bool | None = None,
@@ -131,12 +133,14 @@ def column_efficiencies(profile: Profile, *, limit: float = 0.01, at_liquid_temp
 
     Raises
     ------
-    InputError : no model, a model of other components.
+    InputError : no model, a model of other components, a limit below zero.
 
     Sources: Murphree, Ind. Eng. Chem. 17 (1925) 747; vaporisation efficiencies of Holland (1963), with K at the
     temperature of the leaving liquid.
     """
     model = profile.model_or(properties)
+    if finite_scalar("limit", limit) < 0:
+        raise InputError(f"limit = {limit}: expected zero or a positive number")
     c = profile.contact_index
     ordinary = model.condensable & model.volatile
     basis, y_star, T = equilibrium_state(profile, model, at_liquid_temperature)

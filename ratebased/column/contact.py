@@ -55,10 +55,11 @@ class Averaged:
     entering composition has the share 1/N, so that a phase leaves at the interface's composition at most and no
     fraction turns negative. The temperature may overshoot a little: its share is 3/N from N = 6 on, where it passes the
     interface by half of the way, and by less for larger N. Shorter segments are untouched. (Heat passes the film of a
-    liquid ten times as easily as mass, so the liquid's temperature is often so limited.)
+    liquid ten times as easily as mass, so the liquid's temperature is often so limited.) The column warns of stages
+    where the limit is at work: there it is of first order in the height.
     """
 
-    words: str = "mean of entering and leaving state"
+    words: str = "mean of entering and leaving state (entering share at most 1/N, of the temperature 3/N)"
 
     def weight(self, transfer_units: Array) -> Array:
         return 1.0 / np.maximum(transfer_units, 2.0)

@@ -57,6 +57,8 @@ REFRESH_SHARES = 1e-3
 """Scaled residual below which the shares of the entering states follow the iterate; above it they are held."""
 LARGEST_SEGMENT = 2.0
 """Transfer units of a packed segment above which a warning is given."""
+LARGEST_OFFSET = 0.1
+"""K between a bulk temperature of limited share and the mean of both ends, above which a warning is given."""
 
 
 @dataclass(frozen=True)
@@ -123,7 +125,7 @@ def solve_ratebased(column: Column, properties: PropertyModel, contactor: Contac
     positive = _lifted(problem, outcome.state)
     setup = replace(setup, shares=outcome.shares)
     system = rate_system(setup, positive, outcome.films)
-    _warn_coarse(setup, positive, system)
+    _warn_coarse(setup, positive, system, outcome.shares)
     record = _record(setup, positive, system)
     s = outcome.state
     return make_profile(problem, s.v, s.T_V, s.l, s.T_L, "rate-based", outcome.iterations, outcome.residual, path,
@@ -138,15 +140,29 @@ def _pattern(name: str, given: FlowPattern | None, default: FlowPattern) -> Flow
     return given
 
 
-def _warn_coarse(setup: RateSetup, state: RateState, system: RateSystem) -> None:
-    """A stage whose bulk is a mean of both ends overshoots when it is too long."""
-    if not isinstance(setup.vapor, Averaged):
+def _warn_coarse(setup: RateSetup, state: RateState, system: RateSystem, shares: Shares | None) -> None:
+    """A stage whose bulk is a mean of both ends overshoots when it is too long: its share is limited then."""
+    if shares is None:
         return
-    units = np.maximum(*overall_transfer_units(setup.problem, state, system.transfer))
-    if (units > LARGEST_SEGMENT).any():
-        j = int(np.argmax(units))
-        warnings.warn(f"stage {int(setup.problem.contact[j]) + 1}: {units[j]:.2g} transfer units in one segment, keep "
-                      f"them below {LARGEST_SEGMENT:g}: use more segments", ApproximationWarning, stacklevel=3)
+    units = overall_transfer_units(setup.problem, state, system.transfer)
+    c, blocks = setup.problem.contact, system.blocks
+    for phase, pattern, number, share, heat, T, T_bulk in (
+            ("vapour", setup.vapor, units[0], shares.y, shares.T_V, state.T_V[c], blocks.T_V_bulk),
+            ("liquid", setup.liquid, units[1], shares.x, shares.T_L, state.T_L[c], blocks.T_L_bulk)):
+        if not isinstance(pattern, Averaged):
+            continue
+        holds_heat = heat > 1e-8                     # a phase without heat capacity has the interface's temperature
+        off = np.where(holds_heat, np.abs((0.5 - heat) * (T_bulk - T)) / np.where(holds_heat, heat, 1.0), 0.0)
+        if (share < 0.5).any():
+            j = int(np.argmin(share))
+            warnings.warn(f"stage {int(c[j]) + 1}: {number[j]:.2g} transfer units in one segment, keep them below "
+                          f"{LARGEST_SEGMENT:g}: use more segments (the share of the entering {phase} is limited to "
+                          f"{share[j]:.2g})", ApproximationWarning, stacklevel=3)
+        elif (off > LARGEST_OFFSET).any():
+            j = int(np.argmax(off))
+            warnings.warn(f"stage {int(c[j]) + 1}: the share of the entering {phase}'s temperature is limited to "
+                          f"{heat[j]:.2g}, {off[j]:.2g} K from the mean of its ends: more than six heat transfer units "
+                          "in one segment, use more segments", ApproximationWarning, stacklevel=3)
 
 
 # ---------------------------------------------------------------------------------------------------- start

@@ -16,8 +16,8 @@ NEAR_EQUILIBRIUM = 0.01
 class EquilibriumVapor:
     """The vapour y* that a Murphree efficiency is measured against.
 
-    composition: y*, (..., n), sums to one. temperature: where it was taken, K, (...). basis: "bubble point" or
-    "liquid temperature".
+    composition: y*, (..., n); sums to one, but at the liquid's own temperature without a gas to sum K_i x_i.
+    temperature: where it was taken, K, (...). basis: "bubble point" or "liquid temperature".
     """
 
     composition: Array
@@ -26,28 +26,28 @@ class EquilibriumVapor:
 
 
 def equilibrium_vapor(properties: PropertyModel, P: Array, x: Array, T_L: Array, y_in: Array, *,
-                      at_liquid_temperature: bool | None = None) -> EquilibriumVapor:
+                      y_out: Array | None = None, at_liquid_temperature: bool | None = None) -> EquilibriumVapor:
     """The vapour in equilibrium with the liquid that leaves a stage.
 
     At the bubble point of that liquid and the pressure of the stage, so that sum y* = 1. With a masked component, or
     where `at_liquid_temperature` is set, at the liquid's own temperature: y*_i = K_i(T_L) x_i for the components in
-    both phases; the non-condensing ones share the rest of one in the proportion of y_in (without any of them y* is
-    scaled to one). A bubble point means nothing in an absorber.
+    both phases; the non-condensing ones share the rest of one in the proportion of y_in. Without any of them sum y* is
+    not one: above it the liquid is superheated. That is what the equilibrium rows of a column ask of Murphree
+    efficiencies at the liquid's temperature. A bubble point means nothing in an absorber.
+
+    y_out: the vapour that K belongs to where it depends on one and no bubble point is taken; None: y_in.
     """
     ordinary = properties.condensable & properties.volatile
     own = not ordinary.all() if at_liquid_temperature is None else at_liquid_temperature
     if not own:
         T, y = bubble_point(properties, P, x, T_L)
         return EquilibriumVapor(y, T, "bubble point")
-    K = properties.k_value(T_L, P, x, y_in)
+    K = properties.k_value(T_L, P, x, y_in if y_out is None else y_out)
     y = np.where(ordinary, K * x, 0.0)
     gas = np.where(properties.condensable, 0.0, y_in)
     share = gas.sum(-1, keepdims=True)
     rest = 1.0 - y.sum(-1, keepdims=True)
-    with_gas = y + gas / np.where(share > 0, share, 1.0) * rest
-    total = y.sum(-1, keepdims=True)
-    scaled = y / np.where(total > 0, total, 1.0)
-    return EquilibriumVapor(np.where(share > 0, with_gas, scaled), T_L, "liquid temperature")
+    return EquilibriumVapor(y + gas / np.where(share > 0, share, 1.0) * rest, T_L, "liquid temperature")
 
 
 def small_driving_force(y_in: Array, y_star: Array, limit: float = NEAR_EQUILIBRIUM) -> Mask:

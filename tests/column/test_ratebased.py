@@ -334,12 +334,12 @@ def test_purity_with_the_vapor_in_plug_flow() -> None:
 def test_doubts_about_the_column_found_by_a_search_are_told() -> None:
     """Warnings of the trials are dropped, those of the answer come through."""
     bed = distillation(6).with_(segment_height=1.0)
-    with pytest.warns(ApproximationWarning):
+    with pytest.warns(ApproximationWarning) as once:
         purity = solve_ratebased(bed, ternary(), trays(2000.0)).purity(0)
     searched = bed.with_(specifications=[DistillateRate(40.0), ProductPurity(purity, 0)])
     with pytest.warns(ApproximationWarning, match="transfer units in one segment") as told:
         solve_ratebased(searched, ternary(), trays(2000.0))
-    assert len(told) == 1
+    assert len(told) == len(once) <= 2          # one a phase
 
 
 def test_an_area_that_does_not_follow_the_height_is_refused() -> None:
@@ -397,3 +397,15 @@ def test_sections_keep_every_stage_when_the_column_is_resized() -> None:
         assert isinstance(new, list)
         covered = [j for s in new for j in range(s.first, s.last + 1)]
         assert covered == list(range(2, n + 2)), n
+
+
+def test_limited_shares_are_named() -> None:
+    """A long segment of one phase alone, of liquid compositions and of temperatures."""
+    bed = distillation(8).with_(segment_height=1.0)
+    with pytest.warns(ApproximationWarning, match="share of the entering liquid is limited"):
+        profile = solve_ratebased(bed, ternary(), trays(600.0), vapor=Plug(), liquid=Averaged())
+    assert "entering share at most 1/N" in profile.record().pattern
+    kappa = absorber_trays().kappa_vapor
+    hot = FixedCoefficients(kappa, 5e-3 * kappa, 5.0, h_vapor=60.0, h_liquid=3e4)
+    with pytest.warns(ApproximationWarning, match="entering liquid's temperature is limited"):
+        solve_ratebased(absorber(2, packed=True), absorber_mixture(), hot)
