@@ -51,8 +51,8 @@ class Feed:
             vapor_fraction = finite_scalar("vapor_fraction", vapor_fraction)
             if not 0.0 <= vapor_fraction <= 1.0:
                 raise InputError(f"vapor_fraction = {vapor_fraction}: expected a number from 0 to 1")
-        _set(self, stage=_feed_stage(stage), flows=_feed_flows(stage, flows), temperature=temperature,
-             vapor_fraction=vapor_fraction)
+        _set(self, stage=_feed_stage(stage), flows=feed_flows(f"flows of the feed to stage {stage}", flows),
+             temperature=temperature, vapor_fraction=vapor_fraction)
 
 
 @dataclass(frozen=True, eq=False)
@@ -64,7 +64,7 @@ class LiquidFeed:
     temperature: float
 
     def __init__(self, stage: int, flows: ArrayLike, temperature: float) -> None:
-        _set(self, stage=_feed_stage(stage), flows=_feed_flows(stage, flows),
+        _set(self, stage=_feed_stage(stage), flows=feed_flows(f"flows of the feed to stage {stage}", flows),
              temperature=positive_scalar("temperature", temperature))
 
 
@@ -77,7 +77,7 @@ class VaporFeed:
     temperature: float
 
     def __init__(self, stage: int, flows: ArrayLike, temperature: float) -> None:
-        _set(self, stage=_feed_stage(stage), flows=_feed_flows(stage, flows),
+        _set(self, stage=_feed_stage(stage), flows=feed_flows(f"flows of the feed to stage {stage}", flows),
              temperature=positive_scalar("temperature", temperature))
 
 
@@ -379,15 +379,15 @@ def _set(record: object, **values: Any) -> None:
         object.__setattr__(record, name, value)
 
 
-def _feed_flows(stage: int, flows: ArrayLike) -> Array:
-    array = finite_array(f"flows of the feed to stage {stage}", flows)
+def feed_flows(name: str, flows: ArrayLike) -> Array:
+    """Component flows, (n,), checked and copied: none negative, not all zero."""
+    array = finite_array(name, flows)
     if array.ndim != 1 or array.size < 1:
-        raise InputError(f"flows of the feed to stage {stage}: expected one number a component, got shape "
-                         f"{array.shape}")
+        raise InputError(f"{name}: expected one number a component, got shape {array.shape}")
     for i in np.flatnonzero(array < 0):
-        raise InputError(f"flows of the feed to stage {stage}[{i}] = {array[i]}: a flow cannot be negative")
+        raise InputError(f"{name}[{i}] = {array[i]}: a flow cannot be negative")
     if array.sum() <= 0:
-        raise InputError(f"flows of the feed to stage {stage}: all zero")
+        raise InputError(f"{name}: all zero")
     return array.copy()
 
 

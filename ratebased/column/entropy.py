@@ -3,8 +3,12 @@
 The entropy flux through a film is (E - sum N_i mu_i)/T with the energy flux E and the fluxes N constant across it, so a
 film produces E (1/T_d - 1/T_0) - sum N_i [mu_i/T]_0^d. mu_i/T comes from the property model itself: the vapour as an
 ideal mixture, mu_i/T = g_i(T) + R ln(y_i P) with g_i' = -H_V,i/T^2 (Gibbs and Helmholtz), the liquid by equilibrium
-with it, mu_i/T = g_i(T) + R ln(K_i x_i P). Entropies of streams follow as s = (H - mu)/T, so the balance of a stage
-closes for any model; whether the model belongs to one Gibbs energy is what the inconsistency term shows.
+with it, mu_i/T = g_i(T) + R ln(K_i x_i P). Entropies of streams follow as s = (H - mu)/T.
+
+Fluxes and flows enter apart from each other: films and interface produce what N and E say, the bulks what the streams
+that enter and leave say, each against mu_b/T and 1/T of the bulk. Their sum is the entropy that the streams carry off
+only if component and energy balances of both phases hold: that is the closure. It closes for any model; whether the
+model belongs to one Gibbs energy is what the inconsistency term shows.
 """
 from __future__ import annotations
 
@@ -31,9 +35,9 @@ class EntropyProduction(Shown):
 
     vapor_diffusion, liquid_diffusion: R sum N_i ln(a_0/a_d) of the films. vapor_conduction, liquid_conduction: of the
     heat conducted in them. vapor_mixing, liquid_mixing: entering streams against the bulk. inconsistency: what is left
-    over, zero when K, enthalpies and heat capacities of the model belong to one Gibbs energy. total: their sum.
-    streams: the same from the entropies of the streams of the stage and its duty; closure: |total - streams| over the
-    turnover.
+    over, zero when K, enthalpies and heat capacities of the model belong to one Gibbs energy. total: their sum, films
+    and interface by the fluxes, bulks by the flows. streams: the entropies of the streams of the stage and its duty
+    alone; closure: |total - streams| over the turnover, zero when the fluxes are those of the flows.
     """
 
     stage: NDArray[np.int64]
@@ -143,9 +147,7 @@ def entropy_production(profile: Profile, *, properties: PropertyModel | None = N
     v = _Phase(profile, mu, True, y_b, T_V)
     l = _Phase(profile, mu, False, x_b, T_L)
     duty = profile.duty[c] / T_L
-    gone = A[:, None] * N
-    bulk = v.against_bulk(vapor_b, gone, A * q_V) + l.against_bulk(liquid_b, -gone, -A * q_L) - duty
-    total = vapor_film + liquid_film + interface + bulk
+    total = vapor_film + liquid_film + interface + v.against_bulk(vapor_b) + l.against_bulk(liquid_b)
     vapor_mixing, liquid_mixing = v.mixing(), l.mixing()
     inconsistency = total - (vapor_diffusion + liquid_diffusion + vapor_conduction + liquid_conduction + vapor_mixing
                              + liquid_mixing)
@@ -171,7 +173,7 @@ def _conduction(q_0: Array, flow_cp: Array, T_0: Array, T_1: Array) -> Array:
 class _Phase:
     """The streams of one phase at the contact stages: two that enter (neighbour, feed) and one that leaves.
 
-    Each carries the entropy of its own state at the pressure of the stage.
+    Each carries the enthalpy that it has where it leaves and the entropy of its own state at the pressure of the stage.
     """
 
     def __init__(self, profile: Profile, mu: _Potentials, vapor: bool, z_b: Array, T_b: Array) -> None:
@@ -187,8 +189,8 @@ class _Phase:
         place = c + (1 if vapor else -1)
         near = np.clip(place, 0, S - 1)
         coming = np.where(((place >= 0) & (place < S))[:, None], (total[:, None] * z)[near], 0.0)
-        self.going = (((total + draw)[:, None] * z)[c], T[c])
-        self.coming = ((coming, T[near]), (feed[c], T_feed[c]))
+        self.going = (((total + draw)[:, None] * z)[c], T[c], self.P)
+        self.coming = ((coming, T[near], profile.P[near]), (feed[c], T_feed[c], self.P))
         self.entering = sum((self._entropy(*stream) for stream in self.coming), np.zeros(c.size))
         self.leaving = self._entropy(*self.going)
 
@@ -203,15 +205,20 @@ class _Phase:
             return self.mu.vapor(T, self.P, z)
         return self.mu.liquid(T, self.P, z, np.broadcast_to(self.mu.y_0, z.shape))
 
-    def _entropy(self, flows: Array, T: Array) -> Array:
+    def _entropy(self, flows: Array, T: Array, P: Array) -> Array:
         z, T = self._state(flows, T)
-        H = np.asarray(self.enthalpy(T, self.P, z))
+        H = np.asarray(self.enthalpy(T, P, z))
         return np.asarray((flows * (H / T[..., None] - self._potential(T, z))).sum(-1))
 
-    def against_bulk(self, mu_b: Array, gone: Array, heat_gone: Array) -> Array:
-        """Production between the streams and the bulk that gives `gone` mol/s and heat to the film."""
-        s_b = np.asarray(self.enthalpy(self.T_b, self.P, self.z_b)) / self.T_b[..., None] - mu_b
-        return np.asarray(self.leaving - self.entering + (gone * s_b).sum(-1) + heat_gone / self.T_b)
+    def against_bulk(self, mu_b: Array) -> Array:
+        """Production between the streams and the bulk: sum flow (H/T_b - s - mu_b/T_b), entering minus leaving."""
+        def against(flows: Array, T: Array, P: Array) -> Array:
+            z, T = self._state(flows, T)
+            H = np.asarray(self.enthalpy(T, P, z))
+            potential = self._potential(T, z) - mu_b
+            return np.asarray((flows * (H * (1.0 / self.T_b - 1.0 / T)[..., None] + potential)).sum(-1))
+
+        return sum((against(*stream) for stream in self.coming), np.zeros(self.T_b.size)) - against(*self.going)
 
     def mixing(self) -> Array:
         """The same by its two causes: heat between unequal temperatures and diffusion at the temperature of the bulk.
@@ -221,7 +228,7 @@ class _Phase:
         return sum((self._toward_bulk(*stream) for stream in self.coming), np.zeros(self.T_b.size)
                    ) - self._toward_bulk(*self.going)
 
-    def _toward_bulk(self, flows: Array, T: Array) -> Array:
+    def _toward_bulk(self, flows: Array, T: Array, _: Array) -> Array:
         z, T = self._state(flows, T)
         heat = np.asarray(self.enthalpy(self.T_b, self.P, z)) - np.asarray(self.enthalpy(T, self.P, z))
         ratio = self.T_b / T

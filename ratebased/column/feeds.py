@@ -7,11 +7,11 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 from scipy.optimize import brentq
 
-from ..arguments import finite_array, positive_scalar
+from ..arguments import finite_scalar, positive_scalar
 from ..errors import ConvergenceError, InputError
 from ..properties.protocol import Array, PropertyModel
 from ..properties.saturation import bubble_point, dew_point
-from .definition import AnyFeed, Feed, LiquidFeed, VaporFeed
+from .definition import AnyFeed, Feed, LiquidFeed, VaporFeed, feed_flows
 
 FLASH_TOLERANCE = 1e-13
 MAX_SUBSTITUTIONS = 500
@@ -44,14 +44,19 @@ def flash(properties: PropertyModel, flows: ArrayLike, P: float, *, temperature:
     InputError : bad arguments; a vapour fraction that the masked components make impossible.
     ConvergenceError : substitution or the search in temperature failed.
     """
-    z = finite_array("flows", flows)
+    z = feed_flows("flows", flows)
+    if z.shape != (len(properties.names),):
+        raise InputError(f"flows: {z.shape[0]} components, the property model has {len(properties.names)}")
     P = positive_scalar("P", P)
     if (temperature is None) == (vapor_fraction is None):
         raise InputError("flash: give either temperature or vapor_fraction")
     if temperature is not None:
         return _at_temperature(properties, z, P, positive_scalar("temperature", temperature))
     assert vapor_fraction is not None
-    return _at_vapor_fraction(properties, z, P, float(vapor_fraction))
+    fraction = finite_scalar("vapor_fraction", vapor_fraction)
+    if not 0.0 <= fraction <= 1.0:
+        raise InputError(f"vapor_fraction = {fraction}: expected a number from 0 to 1")
+    return _at_vapor_fraction(properties, z, P, fraction)
 
 
 def _at_temperature(properties: PropertyModel, flows: Array, P: float, T: float) -> FlashResult:
@@ -60,7 +65,11 @@ def _at_temperature(properties: PropertyModel, flows: Array, P: float, T: float)
     gas, heavy = ~properties.condensable, ~properties.volatile
     ordinary = ~(gas | heavy)
     x, y = _first_phases(z, gas, heavy)
-    K = properties.k_value(np.asarray(T), np.asarray(P), x, y)
+
+    def k_at(x: Array, y: Array) -> Array:
+        return np.where(ordinary, properties.k_value(np.asarray(T), np.asarray(P), x, y), 1.0)
+
+    K = k_at(x, y)
     for _ in range(MAX_SUBSTITUTIONS):
         beta = _rachford_rice(z, K, ordinary, float(z[gas].sum()), float(z[heavy].sum()))
         x = np.where(ordinary, z / (1.0 + beta * (K - 1.0)), 0.0)
@@ -68,8 +77,8 @@ def _at_temperature(properties: PropertyModel, flows: Array, P: float, T: float)
         x = np.where(heavy, z / max(1.0 - beta, 1e-300), x) if heavy.any() else x
         y = np.where(gas, z / max(beta, 1e-300), y) if gas.any() else y
         x, y = x / x.sum(), y / y.sum()
-        new = properties.k_value(np.asarray(T), np.asarray(P), x, y)
-        change = np.abs(np.log(np.where(ordinary, new / np.where(ordinary, K, 1.0), 1.0))).max()
+        new = k_at(x, y)
+        change = np.abs(np.log(new / K)).max()
         K = new
         if change < FLASH_TOLERANCE:
             break
@@ -129,6 +138,9 @@ def _at_vapor_fraction(properties: PropertyModel, flows: Array, P: float, wanted
     found = _two_phase(properties, flows, P, wanted, low + wanted * (high - low))
     if found is not None:
         return found
+    if wanted in (0.0, 1.0):
+        raise ConvergenceError(f"flash at vapor_fraction = {wanted:g}, P = {P:g} Pa: no temperature found between "
+                               f"{low:g} and {high:g} K; give the temperature")
     T = brentq(lambda t: _at_temperature(properties, flows, P, t).vapor_fraction - wanted, low, high, xtol=1e-11,
                rtol=8.9e-16)
     return _at_temperature(properties, flows, P, float(T))
@@ -140,6 +152,7 @@ def _two_phase(properties: PropertyModel, flows: Array, P: float, beta: float, T
     gas, heavy = ~properties.condensable, ~properties.volatile
     ordinary = ~(gas | heavy)
     x, y = _first_phases(z, gas, heavy)
+    gas_share, heavy_share = float(z[gas].sum()), float(z[heavy].sum())
     low, high = getattr(properties, "T_range", (1.0, 1e5))
     pressure = np.asarray(P)
 
@@ -151,16 +164,18 @@ def _two_phase(properties: PropertyModel, flows: Array, P: float, beta: float, T
         slope = (k_at(T + step, x, y) - K) / step
         rest = 1.0 + beta * (K - 1.0)
         excess = float(np.where(ordinary, z * (K - 1.0) / rest, 0.0).sum())
-        excess += float(z[gas].sum()) / beta - float(z[heavy].sum()) / (1.0 - beta)
+        excess += gas_share / beta if gas_share else 0.0
+        excess -= heavy_share / (1.0 - beta) if heavy_share else 0.0
         change = float(np.clip(-excess / (z * slope / rest ** 2)[ordinary].sum(), -20.0, 20.0))
         T = min(max(T + change, low), high)
-        new_x = np.where(gas, 0.0, np.where(heavy, z / (1.0 - beta), z / rest))
-        new_y = np.where(heavy, 0.0, np.where(gas, z / beta, K * z / rest))
+        new_x, new_y = np.where(gas, 0.0, z / rest), np.where(heavy, 0.0, K * z / rest)
+        new_x[heavy] = z[heavy] / (1.0 - beta) if heavy_share else 0.0
+        new_y[gas] = z[gas] / beta if gas_share else 0.0
         new_x, new_y = new_x / new_x.sum(), new_y / new_y.sum()
         moved = max(float(np.abs(new_x - x).max()), float(np.abs(new_y - y).max()), abs(change) / T)
         x, y = new_x, new_y
         if moved < FLASH_TOLERANCE * 10.0:
-            share = beta * np.where(ordinary, K / rest, np.where(gas, 1.0 / beta, 0.0))
+            share = np.where(ordinary, beta * K / rest, np.where(gas, 1.0, 0.0))
             vapor = flows * share
             return FlashResult(T, vapor, flows - vapor)
     return None
@@ -171,7 +186,8 @@ def _bracket(properties: PropertyModel, flows: Array, P: float, wanted: float) -
     temperatures = np.linspace(low, high, 25)
     below = None
     for T in temperatures:
-        if _at_temperature(properties, flows, P, float(T)).vapor_fraction >= wanted:
+        fraction = _at_temperature(properties, flows, P, float(T)).vapor_fraction
+        if fraction > 0.0 and fraction >= wanted - 1e-12:
             if below is None:
                 break
             return below, float(T)

@@ -17,13 +17,17 @@
     phase = "liquid"                     # "liquid" or "vapor": no flash, T_K needed
 
     [[column.draw]]
-    stage = 5, phase = "liquid", flow_mol_s = 15.0
+    stage = 5
+    phase = "liquid"                     # "liquid" or "vapor"
+    flow_mol_s = 15.0
 
     [[column.duty]]
-    stage = 3, duty_W = -2.0e4           # heat added to a contact stage
+    stage = 3
+    duty_W = -2.0e4                      # heat added to a contact stage
 
     [column.specifications]              # as many as condenser and reboiler leave degrees of freedom
-    reflux_ratio, distillate_mol_s, bottoms_mol_s, boilup_ratio, reboiler_duty_W, condenser_duty_W
+    reflux_ratio = 2.5                   # or distillate_mol_s, bottoms_mol_s, boilup_ratio, reboiler_duty_W,
+                                         # condenser_duty_W
     purity = {component = "ethanol", product = "top", fraction = 0.95, bounds = [0.5, 10.0]}
     recovery = {component = "ethanol", product = "top", fraction = 0.99}
 

@@ -70,7 +70,29 @@ def test_against_thermo() -> None:
     np.testing.assert_allclose(found.vapor / found.vapor.sum(), listed.gas.zs, atol=1e-6)
 
 
+def test_dew_point_of_a_gas_and_boiling_point_of_a_solution() -> None:
+    """A gas with vapours at its dew point, with an absent oil beside it; an oil's solution at its boiling point."""
+    model = ConstantVolatility(["gas", "a", "b", "oil"], [1.0, 2.0, 0.5, 1.0], 30e3, a=22.5, b=4000.0,
+                               condensable=[False, True, True, True], volatile=[True, True, True, False])
+    z, P = np.array([0.5, 0.3, 0.2, 0.0]), 1e5
+    dew = flash(model, z, P, vapor_fraction=1.0)
+    K = model.k_value(np.asarray(dew.temperature), np.asarray(P), z, z)
+    assert (z[1:3] / K[1:3]).sum() == pytest.approx(1.0, rel=1e-9) and dew.liquid.sum() == pytest.approx(0.0, abs=1e-12)
+    x = np.array([0.0, 0.4, 0.3, 0.3])
+    boiling = flash(model, x, P, vapor_fraction=0.0)
+    K = model.k_value(np.asarray(boiling.temperature), np.asarray(P), x, x)
+    assert (K * x)[1:3].sum() == pytest.approx(1.0, rel=1e-9) and boiling.vapor.sum() == pytest.approx(0.0, abs=1e-12)
+
+
+@pytest.mark.parametrize("flows, words", [
+    ([-1.0, 2.0], r"flows\[0\] = -1.0"), ([0.0, 0.0], "flows: all zero"), ([1.0], "flows: 1 components, .* has 2")])
+def test_flows(flows: list[float], words: str) -> None:
+    with pytest.raises(InputError, match=words):
+        flash(BINARY, flows, 1e5, temperature=350.0)
+
+
 @pytest.mark.parametrize("arguments, words", [
+    ({"vapor_fraction": float("nan")}, "vapor_fraction"), ({"vapor_fraction": 2.0}, "expected a number from 0 to 1"),
     ({}, "either temperature or vapor_fraction"), ({"temperature": -3.0}, "temperature"),
     ({"temperature": 300.0, "vapor_fraction": 0.5}, "either")])
 def test_arguments(arguments: dict[str, Any], words: str) -> None:

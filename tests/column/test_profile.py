@@ -1,7 +1,7 @@
 """Profiles: tables, files without loss, entropy, comparison."""
 from __future__ import annotations
 
-from dataclasses import dataclass, fields
+from dataclasses import dataclass, fields, replace
 from pathlib import Path
 from typing import Any, cast
 
@@ -132,6 +132,25 @@ def test_entropy_balance_closes(pattern: Averaged | Plug | None) -> None:
     assert np.abs(production.inconsistency).max() < 1e-9 * production.total.max()
     assert production.closure.max() < 1e-12
     assert len(production.to_frame()) == 10
+
+
+def test_entropy_of_one_gibbs_energy() -> None:
+    """All that is produced has a cause: nothing left over, no cause below zero; fluxes that are not those of the flows
+    break the balance.
+    """
+    profile = solve_ratebased(distillation(), one_gibbs_energy(), trays(60.0))
+    production = profile.entropy_production()
+    turnover = 1e-12 * np.abs(profile.V[:, None] * profile.y)[profile.contact_index].sum(1) * 100.0     # 100 J/(mol K)
+    assert (np.abs(production.inconsistency) < turnover).all()
+    for part in ("vapor_diffusion", "liquid_diffusion", "vapor_conduction", "liquid_conduction", "vapor_mixing",
+                 "liquid_mixing"):
+        assert (getattr(production, part) >= -turnover).all(), part
+    record = profile.record()
+    assert production.closure.max() < 1e-12
+    for changed in ({"N": 1.01 * record.N}, {"energy_flux": 1.01 * record.energy_flux}):
+        wrong = replace(profile, contact=replace(record, **changed)).entropy_production()
+        assert wrong.closure.max() > 1e-7, changed
+    assert replace(profile, V=1.01 * profile.V).entropy_production().closure.max() > 1e-7
 
 
 def test_inconsistent_properties_show() -> None:
