@@ -152,8 +152,12 @@ def _indices(dependent: ArrayLike) -> NDArray[np.int64]:
     return array.astype(np.int64)
 
 
-def uniform_murphree(value: float, stages: int, n: int, basis: EfficiencyBasis, given: ArrayLike) -> EfficiencySet:
-    """One Murphree vapour efficiency for every component and stage in `given`; no temperature offsets."""
-    at_bubble = basis is EfficiencyBasis.BUBBLE_POINT
-    return EfficiencySet(EfficiencyKind.MURPHREE_VAPOR, np.full((stages, n), float(value)),
-                         np.full(stages, n - 1 if at_bubble else -1), basis=basis, given=given)
+def uniform_murphree(value: float, y: Array, basis: EfficiencyBasis, given: ArrayLike) -> EfficiencySet:
+    """One Murphree vapour efficiency for every component and stage in `given`; no temperature offsets.
+
+    y: estimate of the vapours, (S, n): the most abundant component of a stage follows from the others. All have the
+    same efficiency whichever it is; a trace would drown in the rounding of the sum.
+    """
+    dependent = y.argmax(-1) if basis is EfficiencyBasis.BUBBLE_POINT else np.full(y.shape[0], -1)
+    return EfficiencySet(EfficiencyKind.MURPHREE_VAPOR, np.full(y.shape, float(value)), dependent, basis=basis,
+                         given=given)

@@ -343,7 +343,8 @@ def _efficiency_set(problem: Problem, efficiency: EfficiencySet | float | None) 
         raise InputError(f"efficiency = {efficiency}: expected a finite number other than zero")
     masked = not problem.ordinary.all()
     basis = EfficiencyBasis.LIQUID_TEMPERATURE if masked else EfficiencyBasis.BUBBLE_POINT
-    return uniform_murphree(value, problem.S, problem.n, basis, problem.column.contact)
+    v = starting_state(problem).v
+    return uniform_murphree(value, v / v.sum(1, keepdims=True), basis, problem.column.contact)
 
 
 def check_start(column: Column, properties: PropertyModel, start: Profile | None) -> None:

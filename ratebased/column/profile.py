@@ -10,10 +10,11 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 from numpy.typing import NDArray
 
+from ..arguments import whole_number
 from ..errors import InputError
 from ..properties.protocol import Array, PropertyModel
 from ..show import Shown
-from .feeds import StageFeeds
+from .feeds import FlashResult, StageFeeds
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -131,19 +132,27 @@ class Profile(Shown):
 
     def purity(self, component: int | str, product: str = "top") -> float:
         """Mole fraction of a component in a product."""
-        return float(self.products[product].composition[self._component(component)])
+        return float(self._product(product).composition[self._component(component)])
 
     def recovery(self, component: int | str, product: str = "top") -> float:
         """Share of a component's feed that leaves in a product."""
         i = self._component(component)
-        return float(self.products[product].flows[i] / (self.feeds.vapor + self.feeds.liquid)[:, i].sum())
+        return float(self._product(product).flows[i] / (self.feeds.vapor + self.feeds.liquid)[:, i].sum())
 
     def _component(self, component: int | str) -> int:
         if isinstance(component, str):
             if component not in self.names:
                 raise InputError(f"component {component!r}: the profile holds {', '.join(self.names)}")
             return self.names.index(component)
-        return component
+        index = whole_number("component", component)
+        if not 0 <= index < len(self.names):
+            raise InputError(f"component = {component}: expected an index from 0 to {len(self.names) - 1}")
+        return index
+
+    def _product(self, product: str) -> ProductStream:
+        if product not in self.products:
+            raise InputError(f"product {product!r}: the column has {', '.join(self.products)}")
+        return self.products[product]
 
     def entering_vapor(self) -> Array:
         """Component flows of the vapour that enters each stage from below, its feed included, mol/s, (S, n)."""
@@ -230,18 +239,35 @@ class Profile(Shown):
 
     @classmethod
     def load(cls, path: str | Path) -> Profile:
-        """A profile written by `save`; `path` without or with its ending .json. It holds no property model."""
+        """A profile written by `save`; `path` without or with its ending .json. It holds no property model.
+
+        Raises `InputError` for a file that is missing, broken or another's.
+        """
         base = Path(path)
         record = base if base.suffix == ".json" else base.with_name(base.name + ".json")
-        data = json.loads(record.read_text(encoding="utf-8"))
-        if data.pop("format", None) != FORMAT:
+        try:
+            data = json.loads(record.read_text(encoding="utf-8"))
+        except (OSError, ValueError) as error:
+            raise InputError(f"{record}: cannot be read, {error}") from error
+        if not isinstance(data, dict) or data.pop("format", None) != FORMAT:
             raise InputError(f"{record}: not a column profile ({FORMAT!r} expected in its field `format`)")
+        try:
+            return cls._from_record(data)
+        except KeyError as error:
+            raise InputError(f"{record}: the field {error} is missing") from error
+        except (TypeError, ValueError, AttributeError) as error:
+            raise InputError(f"{record}: a field is not what a column profile holds, {error}") from error
+
+    @classmethod
+    def _from_record(cls, data: dict[str, Any]) -> Profile:
         for name in ("T_L", "T_V", "P", "L", "V", "x", "y", "liquid_draw", "vapor_draw", "duty"):
             data[name] = np.array(data[name], float)
         data["height"] = None if data["height"] is None else np.array(data["height"], float)
         data["names"], data["kinds"] = tuple(data["names"]), tuple(data["kinds"])
         feeds = {k: np.array(v, float) for k, v in data["feeds"].items() if k != "streams"}
-        data["feeds"] = StageFeeds(**feeds, streams=())
+        streams = tuple(FlashResult(s["temperature"], np.array(s["vapor"], float), np.array(s["liquid"], float))
+                        for s in data["feeds"]["streams"])
+        data["feeds"] = StageFeeds(**feeds, streams=streams)
         data["products"] = {k: ProductStream(v["phase"], np.array(v["flows"], float), v["temperature"], v["enthalpy"])
                             for k, v in data["products"].items()}
         data["report"] = SolutionReport(**data["report"])
@@ -261,9 +287,9 @@ def _plain(value: Any) -> Any:
         return value.tolist()
     if isinstance(value, Mapping):
         return {k: _plain(v) for k, v in value.items()}
-    if isinstance(value, StageFeeds):
-        return {k: _plain(getattr(value, k)) for k in value.__dataclass_fields__ if k != "streams"}
-    if isinstance(value, ProductStream | ContactRecord):
+    if isinstance(value, tuple):
+        return [_plain(item) for item in value]
+    if isinstance(value, StageFeeds | FlashResult | ProductStream | ContactRecord):
         return {k: _plain(getattr(value, k)) for k in value.__dataclass_fields__}
     if isinstance(value, SolutionReport):
         return asdict(value)

@@ -431,11 +431,13 @@ def _record(setup: RateSetup, state: RateState, system: RateSystem) -> ContactRe
     numbers = problem.contact + 1
     notes = {note: numbers[np.broadcast_to(where, numbers.shape)] for note, where in k.notes.items()
              if np.asarray(where).any()}
+    films = blocks.films
+    x_I, y_I = (np.where(never, 0.0, np.maximum(z, 0.0)) for z, never in ((films.x_I, problem.gas),
+                                                                         (films.y_I, problem.heavy)))
     return ContactRecord(
-        stage=numbers, T_I=state.z[:, 2 * n], x_I=np.maximum(blocks.films.x_I, 0.0), y_I=np.maximum(blocks.films.y_I,
-                                                                                                    0.0),
-        N=state.z[:, :n], energy_flux=blocks.films.E_L, area=np.broadcast_to(k.area, numbers.shape).copy(),
-        y_bulk=blocks.y_bulk, T_V_bulk=blocks.T_V_bulk, x_bulk=blocks.x_bulk, T_L_bulk=blocks.T_L_bulk,
+        stage=numbers, T_I=state.z[:, 2 * n], x_I=x_I, y_I=y_I, N=np.where(problem.ordinary, state.z[:, :n], 0.0),
+        energy_flux=films.E_L, area=np.broadcast_to(k.area, numbers.shape).copy(),
+        y_bulk=np.where(problem.heavy, 0.0, blocks.y_bulk), T_V_bulk=blocks.T_V_bulk,
+        x_bulk=np.where(problem.gas, 0.0, blocks.x_bulk), T_L_bulk=blocks.T_L_bulk,
         hydraulics=_hydraulics(setup, state), notes=notes, basis=k.basis,
         pattern=f"vapour {setup.vapor.words}, liquid {setup.liquid.words}")
-

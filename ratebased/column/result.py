@@ -12,7 +12,7 @@ from ..properties.saturation import bubble_point, smallest_gamma_eigenvalue
 from .ends import bubble_vapor
 from .problem import Problem
 from .profile import ContactRecord, ProductStream, Profile, SolutionReport
-from .start import State
+from .start import State, masked
 
 if TYPE_CHECKING:
     from .equilibrium import StageRows
@@ -27,9 +27,9 @@ def equilibrium_profile(problem: Problem, rows: StageRows, state: State, iterati
 
 def make_profile(problem: Problem, v: Array, T_V: Array, l: Array, T_L: Array, model: str, iterations: int,
                  residual: float, path: str, contact: ContactRecord | None = None, rate_factor: float = 0.0) -> Profile:
-    """Profile from component flows before draws; rounding below zero is zero."""
+    """Profile from component flows before draws; rounding below zero is zero, and so is what is never in a phase."""
     column, properties = problem.column, problem.properties
-    v, l = np.maximum(v, 0.0), np.maximum(l, 0.0)
+    v, l = masked(problem, np.maximum(v, 0.0), np.maximum(l, 0.0))
     V, L = v.sum(1), l.sum(1)
     x = l / L[:, None]
     y = v / np.where(V > 0, V, 1.0)[:, None]
@@ -37,8 +37,7 @@ def make_profile(problem: Problem, v: Array, T_V: Array, l: Array, T_L: Array, m
     T_V = T_V.copy()
     if problem.total_condenser:
         T_bubble = T_L[:1] + problem.subcooling
-        if column.condenser is not None:
-            y[0] = _condensate_vapor(problem, T_bubble, l[:1])
+        y[0] = _condensate_vapor(problem, T_bubble, l[:1])
         T_V[0] = T_bubble[0]
         products["top"] = _stream(problem, "liquid", v[0], T_L[0], 0)
     else:

@@ -1,6 +1,7 @@
 """Columns from parsed TOML tables."""
 from __future__ import annotations
 
+import textwrap
 import tomllib
 
 import numpy as np
@@ -19,6 +20,7 @@ from ratebased.column import (
     TotalCondenser,
     VaporFeed,
     column_from_mapping,
+    from_table,
 )
 from ratebased.errors import InputError
 
@@ -104,3 +106,11 @@ def test_pressures_and_searches() -> None:
 def test_errors_name_file_and_key(old: str, new: str, words: str) -> None:
     with pytest.raises(InputError, match=words):
         read(CASE.replace(old, new))
+
+
+def test_the_layout_in_the_docstring_is_a_table() -> None:
+    text = from_table.__doc__
+    assert text is not None
+    layout = tomllib.loads(textwrap.dedent(text[text.index("    [column]"):text.index("`bounds` limit")]))["column"]
+    assert layout["draw"] == [{"stage": 5, "phase": "liquid", "flow_mol_s": 15.0}]
+    assert layout["duty"] == [{"stage": 3, "duty_W": -2.0e4}]

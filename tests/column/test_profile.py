@@ -1,6 +1,7 @@
 """Profiles: tables, files without loss, entropy, comparison."""
 from __future__ import annotations
 
+import json
 from dataclasses import dataclass, fields, replace
 from pathlib import Path
 from typing import Any, cast
@@ -39,8 +40,9 @@ def equal(a: object, b: object) -> bool:
     if isinstance(a, np.ndarray):
         return isinstance(b, np.ndarray) and np.array_equal(a, b)
     if hasattr(a, "__dataclass_fields__"):
-        return all(equal(getattr(a, f.name), getattr(b, f.name)) for f in fields(a) if f.name not in ("streams",
-                                                                                                      "properties"))
+        return all(equal(getattr(a, f.name), getattr(b, f.name)) for f in fields(a) if f.name != "properties")
+    if isinstance(a, tuple):
+        return isinstance(b, tuple) and len(a) == len(b) and all(equal(i, j) for i, j in zip(a, b))
     if isinstance(a, dict):
         return isinstance(b, dict) and a.keys() == b.keys() and all(equal(a[k], b[k]) for k in a)
     return bool(a == b)
@@ -68,6 +70,21 @@ def test_load_refuses_other_files(tmp_path: Path) -> None:
     (tmp_path / "other.json").write_text("{}")
     with pytest.raises(InputError, match="not a column profile"):
         Profile.load(tmp_path / "other")
+    with pytest.raises(InputError, match="nope.json: cannot be read"):
+        Profile.load(tmp_path / "nope")
+    _, record = RATE.save(tmp_path / "broken")
+    whole = json.loads(record.read_text())
+    for change, words in (({"report": None}, "a field is not what"), ({"x": "abc"}, "a field is not what")):
+        record.write_text(json.dumps(whole | change))
+        with pytest.raises(InputError, match=words):
+            Profile.load(record)
+    del whole["products"]
+    record.write_text(json.dumps(whole))
+    with pytest.raises(InputError, match="the field 'products' is missing"):
+        Profile.load(record)
+    record.write_text("{")
+    with pytest.raises(InputError, match="cannot be read"):
+        Profile.load(record)
 
 
 def test_frame() -> None:
@@ -85,6 +102,23 @@ def test_other_models_are_refused() -> None:
         solve_equilibrium(distillation(), ternary()).entropy_production()
     with pytest.raises(InputError, match="component 'water'"):
         RATE.purity("water")
+    for component in (7, -1):
+        with pytest.raises(InputError, match="component = .*0 to 2"):
+            RATE.purity(component)
+    with pytest.raises(InputError, match="product 'side': the column has top, bottom"):
+        RATE.recovery(0, "side")
+    for limit in (-1.0, float("nan")):
+        with pytest.raises(InputError, match="limit"):
+            RATE.efficiency(limit=limit)
+
+
+def test_a_pole_of_murphree_is_no_number_to_feed_back() -> None:
+    table = RATE.efficiency()
+    i = (int(table.dependent[2]) + 1) % 3
+    y_in = table.y_in.copy()
+    y_in[2, i] = table.y_star[2, i]
+    with pytest.raises(InputError, match=rf"stage 4: the Murphree efficiency of {RATE.names[i]} has a pole"):
+        replace(table, y_in=y_in).murphree_set()
 
 
 def one_gibbs_energy() -> ConstantVolatility:

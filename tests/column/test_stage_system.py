@@ -7,7 +7,7 @@ from pathlib import Path
 
 import numpy as np
 import pytest
-from columns import absorber, absorber_mixture, absorber_trays, distillation, ternary, trays
+from columns import absorber, absorber_mixture, absorber_trays, ternary, trays
 
 from ratebased.column import Entering, StageUnknowns, solve_ratebased, stage_residuals
 from ratebased.equipment import contact_state
@@ -100,4 +100,3 @@ def test_example_for_a_column_script_of_ones_own() -> None:
     found = runpy.run_path(str(script))
     assert found["solution"].success
     assert found["difference"] < 1e-8
-    assert distillation().stages == 12

@@ -26,7 +26,7 @@ def test_roots() -> None:
     np.testing.assert_allclose(THETA, [1.215119965796, 2.743213367537], atol=1e-11)
 
 
-@pytest.mark.parametrize("trays, defect", [(60, 8.6e-4), (120, 1.0e-7)])
+@pytest.mark.parametrize("trays, defect", [(60, 8.6e-4), (120, 1.0e-7), (240, 1e-13)])
 def test_all_components_distribute(trays: int, defect: float) -> None:
     """D 45, R 0.6: both roots hold, D_i = 32.55, 11.55, 0.90."""
     D, R = 45.0, 0.6
@@ -36,7 +36,7 @@ def test_all_components_distribute(trays: int, defect: float) -> None:
     assert np.abs(top(trays, D, R) - limit).max() / 100.0 < 1.3 * defect
 
 
-@pytest.mark.parametrize("trays, defect", [(60, 5.7e-4), (120, 3.9e-8)])
+@pytest.mark.parametrize("trays, defect", [(60, 5.7e-4), (120, 3.9e-8), (240, 1e-12)])
 def test_light_component_does_not_distribute(trays: int, defect: float) -> None:
     """D 50, R 0.6: all the light component goes up, the root between the others holds."""
     D, R = 50.0, 0.6
