@@ -12,12 +12,20 @@ SUM_TOLERANCE = 1e-9
 """Mole fractions whose sum is off by no more than this are renormalised; anything worse is an error."""
 
 
-def finite_array(name: str, value: ArrayLike) -> Array:
-    """`value` as a float array without NaN or infinity."""
+def _numbers(name: str, value: ArrayLike) -> Array:
+    """`value` as a float array; words and complex numbers are refused, not read or cut."""
     try:
-        array = np.asarray(value, dtype=float)
+        array = np.asarray(value)
+        if array.dtype.kind in "USc":
+            raise TypeError
+        return np.asarray(array, dtype=float)
     except (TypeError, ValueError) as error:
         raise InputError(f"{name}: expected numbers, got {value!r}") from error
+
+
+def finite_array(name: str, value: ArrayLike) -> Array:
+    """`value` as a float array without NaN or infinity."""
+    array = _numbers(name, value)
     if not np.isfinite(array).all():
         where = tuple(int(i) for i in np.argwhere(~np.isfinite(array))[0])
         raise InputError(f"{name}{list(where) if where else ''} = {array[where]}: expected a finite number")
@@ -76,6 +84,34 @@ def mole_fractions(name: str, value: ArrayLike, n: int | None = None) -> Array:
     return np.asarray(x / total)
 
 
+def component_array(name: str, value: ArrayLike, n: int, *, one_for_all: bool = False) -> Array:
+    """`value` as a finite array (..., n); with `one_for_all` a single number stands for all components."""
+    array = finite_array(name, value)
+    if one_for_all and array.ndim == 0:
+        return np.full(n, float(array))
+    if array.shape[-1:] != (n,):
+        raise InputError(f"{name}: expected {n} components on the last axis, got shape {array.shape}")
+    return array
+
+
+def component_index(name: str, component: int, n: int | None = None) -> int:
+    """`component` as the index of one of n components, counted from the end where negative."""
+    if isinstance(component, bool) or not isinstance(component, (int, np.integer)):
+        raise InputError(f"{name} = {component!r}: expected the index of one component")
+    if n is not None and not -n <= component < n:
+        raise InputError(f"{name} = {component}: expected an index of one of {n} components")
+    return int(component)
+
+
+def batch_shape(**shapes: tuple[int, ...]) -> tuple[int, ...]:
+    """The common batch shape of arguments with the batch shapes given."""
+    try:
+        return np.broadcast_shapes(*shapes.values())
+    except ValueError as error:
+        given = ", ".join(f"{name} {shape}" for name, shape in shapes.items() if shape)
+        raise InputError(f"batch shapes do not broadcast: {given}") from error
+
+
 def component_vector(name: str, value: ArrayLike, n: int, *, positive: bool = False) -> Array:
     """`value` as (n,), one number standing for all components."""
     array = positive_array(name, value) if positive else finite_array(name, value)
@@ -89,7 +125,7 @@ def pair_matrix(name: str, value: ArrayLike, n: int) -> Array:
 
     One number stands for all pairs.
     """
-    array = np.asarray(value, dtype=float)
+    array = _numbers(name, value)
     if array.ndim == 0:
         array = np.full((n, n), float(array))
     if array.shape[-2:] != (n, n):

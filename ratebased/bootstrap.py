@@ -10,7 +10,7 @@ from typing import Protocol
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from .arguments import finite_array
+from .arguments import component_index, finite_array
 from .errors import InputError
 
 Array = NDArray[np.float64]
@@ -30,12 +30,10 @@ class Bootstrap(Protocol):
 
 
 def _index(name: str, component: int, n: int | None = None) -> int:
-    if isinstance(component, bool) or not isinstance(component, (int, np.integer)):
+    if np.ndim(component):
         raise InputError(f"{name} = {component!r}: expected the index of one component. Ratios of all components "
                          "together with the compositions at both faces are more equations than unknowns")
-    if n is not None and not -n <= component < n:
-        raise InputError(f"{name} = {component}: expected an index of one of {n} components")
-    return int(component)
+    return component_index(name, component, n)
 
 
 @dataclass(frozen=True)

@@ -18,13 +18,20 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from .arguments import finite_array, mole_fractions, pair_matrix, positive_array
+from correlations.constants import GAS_CONSTANT
+
+from .arguments import (
+    batch_shape,
+    component_array,
+    component_index,
+    finite_array,
+    mole_fractions,
+    pair_matrix,
+    positive_array,
+)
 from .errors import InputError
 
 Array = NDArray[np.float64]
-
-GAS_CONSTANT = 8.314462618
-"""J/(mol K)."""
 
 RECIPROCITY_TOLERANCE = 1e-6
 """Relative departure from symmetry, from zero row sums or below zero that a matrix given by the user may show."""
@@ -73,7 +80,9 @@ def resistance_matrix(x: ArrayLike, kappa: ArrayLike) -> Array:
     Raises InputError. Source: Krishna and Standart (1976).
     """
     x = mole_fractions("x", x)
-    return reduced(film_matrix(x, resistances(pair_matrix("kappa", kappa, x.shape[-1]), 1.0)))
+    kappa = pair_matrix("kappa", kappa, x.shape[-1])
+    batch_shape(x=x.shape[:-1], kappa=kappa.shape[:-2])
+    return reduced(film_matrix(x, resistances(kappa, 1.0)))
 
 
 def rate_factor_matrix(N: ArrayLike, c_t: ArrayLike, kappa: ArrayLike) -> Array:
@@ -84,8 +93,16 @@ def rate_factor_matrix(N: ArrayLike, c_t: ArrayLike, kappa: ArrayLike) -> Array:
     (..., n-1, n-1), dimensionless. Raises InputError. Source: Krishna and Standart (1976).
     """
     N = finite_array("N", N)
-    K = resistances(pair_matrix("kappa", kappa, N.shape[-1]), positive_array("c_t", c_t))
-    return reduced(film_matrix(N, K))
+    if N.ndim < 1:
+        raise InputError(f"N = {N}: expected components on the last axis")
+    return reduced(film_matrix(N, _checked_resistances("kappa", kappa, c_t, N.shape[-1], N=N.shape[:-1])))
+
+
+def _checked_resistances(name: str, pairs: ArrayLike, c_t: ArrayLike, n: int, **others: tuple[int, ...]) -> Array:
+    """1/(c_t kappa) of pair quantities given by the user; `others`: batch shapes it must broadcast with."""
+    pairs, c_t = pair_matrix(name, pairs, n), positive_array("c_t", c_t)
+    batch_shape(**others, **{name: pairs.shape[:-2], "c_t": c_t.shape})
+    return resistances(pairs, c_t)
 
 
 def thermodynamic_factor(x: ArrayLike, dlngamma_dx: ArrayLike) -> Array:
@@ -101,6 +118,7 @@ def thermodynamic_factor(x: ArrayLike, dlngamma_dx: ArrayLike) -> Array:
         slope = reduced(slope)
     if slope.shape[-2:] != (n - 1, n - 1):
         raise InputError(f"dlngamma_dx: expected shape (..., {n - 1}, {n - 1}) or (..., {n}, {n}), got {slope.shape}")
+    batch_shape(x=x.shape[:-1], dlngamma_dx=slope.shape[:-2])
     return np.eye(n - 1) + x[..., :-1, None] * slope
 
 
@@ -111,8 +129,9 @@ def fick_matrix(x: ArrayLike, D: ArrayLike, gamma: ArrayLike | None = None) -> A
     if left out. Raises InputError. Source: Taylor and Krishna (1993) eq. 3.2.5 (from memory).
     """
     x = mole_fractions("x", x)
-    B = resistance_matrix(x, D)
-    return solve(B, _gamma(gamma, x.shape[-1]))
+    B, gamma = resistance_matrix(x, D), _gamma(gamma, x.shape[-1])
+    batch_shape(x_D=B.shape[:-2], gamma=gamma.shape[:-2])
+    return solve(B, gamma)
 
 
 def _gamma(gamma: ArrayLike | None, n: int) -> Array:
@@ -156,7 +175,9 @@ def onsager_matrix(x: ArrayLike, D: ArrayLike, c_t: ArrayLike) -> Array:
     """
     x = mole_fractions("x", x)
     c_t = positive_array("c_t", c_t)
-    L = _extend(solve(resistance_matrix(x, D), _mixing_block(x))) * c_t[..., None, None]
+    R = resistance_matrix(x, D)
+    batch_shape(x_D=R.shape[:-2], c_t=c_t.shape)
+    L = _extend(solve(R, _mixing_block(x))) * c_t[..., None, None]
     return 0.5 * (L + np.swapaxes(L, -1, -2))             # the two differ by rounding
 
 
@@ -170,6 +191,8 @@ def _checked_onsager(L: ArrayLike, n: int) -> Array:
     _refuse("L", np.abs(L.sum(-1)).max(-1) > limit, "rows do not sum to zero")
     eigenvalues = np.linalg.eigvalsh(L)
     _refuse("L", eigenvalues[..., 0] < -limit, "not positive semi-definite")
+    _refuse("L", eigenvalues[..., 1:].min(-1, initial=np.inf) <= 0, "a mixture that does not diffuse: singular beyond "
+            "its zero row sums")
     return L
 
 
@@ -196,15 +219,23 @@ def diffusivities_from_fick(x: ArrayLike, fick: ArrayLike, gamma: ArrayLike | No
     """Maxwell-Stefan pair diffusivities, m2/s, (..., n, n), diagonal zero, of a given Fick matrix.
 
     The inverse of `fick_matrix`; every x_i must be positive. [D] has (n-1)^2 entries and there are n(n-1)/2 pairs:
-    raises InputError where [Gamma][D]^-1 belongs to no symmetric set of pairs (reciprocal relations broken).
+    raises InputError where [Gamma][D]^-1 belongs to no symmetric set of pairs (reciprocal relations broken), or where
+    diffusion would consume entropy (an eigenvalue of [Gamma][D]^-1 that is not positive).
     """
     x = _interior(x)
     n = x.shape[-1]
     fick = finite_array("fick", fick)
     if fick.shape[-2:] != (n - 1, n - 1):
         raise InputError(f"fick: expected shape (..., {n - 1}, {n - 1}), got {fick.shape}")
-    B = solve(np.swapaxes(fick, -1, -2), np.swapaxes(_gamma(gamma, n), -1, -2))
-    return _pairs(x, np.swapaxes(B, -1, -2))
+    gamma = _gamma(gamma, n)
+    batch_shape(x=x.shape[:-1], fick=fick.shape[:-2], gamma=gamma.shape[:-2])
+    singular = np.linalg.svd(fick, compute_uv=False)
+    _refuse("fick", singular[..., -1] <= 1e-14 * singular[..., 0], "a singular matrix, a mixture that does not diffuse")
+    B = np.swapaxes(solve(np.swapaxes(fick, -1, -2), np.swapaxes(gamma, -1, -2)), -1, -2)
+    pairs = _pairs(x, B)
+    _refuse("fick", np.linalg.eigvals(B).real.min(-1) <= 0, "diffusion would consume entropy: an eigenvalue of "
+            "[Gamma][D]^-1 is not positive")
+    return pairs
 
 
 def _pairs(x: Array, B: Array) -> Array:
@@ -282,32 +313,38 @@ def driving_force(x: ArrayLike, T: ArrayLike, c_t: ArrayLike, *, grad_x: ArrayLi
     c = positive_array("c_t", c_t)[..., None]
     if (grad_x is None) == (grad_mu is None):
         raise InputError("grad_x, grad_mu: give one of the two")
+    slopes = np.shape(grad_x if grad_mu is None else grad_mu)
+    batch_shape(x=x.shape[:-1], T=RT.shape[:-1], c_t=c.shape[:-1], grad_P=np.shape(grad_P), gradient=slopes[:-1],
+                gamma=np.shape(gamma)[:-2], partial_molar_volume=np.shape(partial_molar_volume)[:-1],
+                molar_mass=np.shape(molar_mass)[:-1], body_force=np.shape(body_force)[:-1])
     if grad_x is not None:
-        slope = finite_array("grad_x", grad_x)
+        slope = component_array("grad_x", grad_x, n)
         _refuse("grad_x", np.abs(slope.sum(-1)) > 1e-9 * np.abs(slope).max(-1), "gradients do not sum to zero")
         part = (_gamma(gamma, n) @ slope[..., :-1, None])[..., 0]
         chemical = np.concatenate((part, -part.sum(-1, keepdims=True)), axis=-1)
     else:
         if gamma is not None:
             raise InputError("gamma: belongs to grad_x, not to grad_mu")
-        terms = x * finite_array("grad_mu", grad_mu if grad_mu is not None else 0.0) / RT
+        terms = x * component_array("grad_mu", grad_mu if grad_mu is not None else 0.0, n) / RT
         _refuse("grad_mu", np.abs(terms.sum(-1)) > 1e-9 * np.abs(terms).max(-1),
                 "sum x_i grad mu_i is not zero (Gibbs and Duhem)")
         chemical = terms
     pressure = body = np.zeros_like(chemical)
     gradient = finite_array("grad_P", grad_P)[..., None]
     if molar_mass is not None:
-        mass = x * positive_array("molar_mass", molar_mass)
+        mass = x * positive_array("molar_mass", component_array("molar_mass", molar_mass, n, one_for_all=True))
         omega = mass / mass.sum(-1, keepdims=True)
     elif gradient.any() or body_force is not None:
         raise InputError("molar_mass: needed for the pressure and body-force parts")
     if gradient.any():
         if partial_molar_volume is None:
             raise InputError("partial_molar_volume: needed for the pressure part")
-        volume = x * finite_array("partial_molar_volume", partial_molar_volume)
-        pressure = (volume / volume.sum(-1, keepdims=True) - omega) * gradient / (c * RT)
+        volume = x * component_array("partial_molar_volume", partial_molar_volume, n, one_for_all=True)
+        total = volume.sum(-1, keepdims=True)
+        _refuse("partial_molar_volume", total[..., 0] <= 0, "the volume of the mixture is not above zero")
+        pressure = (volume / total - omega) * gradient / (c * RT)
     if body_force is not None:
-        force = finite_array("body_force", body_force)
+        force = component_array("body_force", body_force, n, one_for_all=True)
         body = -mass * (force - (omega * force).sum(-1, keepdims=True)) / RT
     return DrivingForce(*np.broadcast_arrays(chemical, pressure, body))
 
@@ -318,8 +355,8 @@ def friction(x: ArrayLike, N: ArrayLike, D: ArrayLike, c_t: ArrayLike) -> Array:
     N mol/(m2 s), (..., n), against any one common velocity; D m2/s, (..., n, n). Raises InputError.
     """
     x = mole_fractions("x", x)
-    N = finite_array("N", N)
-    K = resistances(pair_matrix("D", D, x.shape[-1]), positive_array("c_t", c_t))
+    N = component_array("N", N, x.shape[-1])
+    K = _checked_resistances("D", D, c_t, x.shape[-1], x=x.shape[:-1], N=N.shape[:-1])
     return (film_matrix(N, K) @ x[..., None])[..., 0]
 
 
@@ -330,8 +367,9 @@ def relative_fluxes(N: ArrayLike, x: ArrayLike, weight: ArrayLike) -> Array:
     volume-average, one at a single component for that component's own velocity. sum_k w_k J_k = 0. Raises InputError.
     """
     x = mole_fractions("x", x)
-    N = finite_array("N", N)
-    w = finite_array("weight", weight)
+    N = component_array("N", N, x.shape[-1])
+    w = component_array("weight", weight, x.shape[-1], one_for_all=True)
+    batch_shape(N=N.shape[:-1], x=x.shape[:-1], weight=w.shape[:-1])
     mean = (w * x).sum(-1, keepdims=True)
     _refuse("weight", mean[..., 0] == 0, "sum of weight times x is zero: no velocity is defined")
     relative: Array = N - x * (w * N).sum(-1, keepdims=True) / mean
@@ -347,7 +385,7 @@ def effective_diffusivity_wilke(x: ArrayLike, D: ArrayLike) -> Array:
     others. Raises InputError. Source: Wilke (1950).
     """
     x = mole_fractions("x", x)
-    return 1.0 / wilke_resistance(x, resistances(pair_matrix("D", D, x.shape[-1]), 1.0))
+    return 1.0 / wilke_resistance(x, _checked_resistances("D", D, 1.0, x.shape[-1], x=x.shape[:-1]))
 
 
 def wilke_resistance(x: Array, K: Array) -> Array:
@@ -365,7 +403,7 @@ def effective_diffusivity_stefan(x: ArrayLike, N: ArrayLike, D: ArrayLike) -> Ar
     Source: Stefan (1871), as in Taylor and Krishna (1993) sec. 6.1 (from memory).
     """
     x = mole_fractions("x", x)
-    N = finite_array("N", N)
+    N = component_array("N", N, x.shape[-1])
     friction_terms = -friction(x, N, D, 1.0)
     K = resistances(pair_matrix("D", D, x.shape[-1]), 1.0)
     size = np.abs(N) * (K @ x[..., None])[..., 0] + x * (K @ np.abs(N)[..., None])[..., 0]
@@ -380,13 +418,12 @@ def effective_diffusivity_dilute(D: ArrayLike, solvent: int) -> Array:
 
     D m2/s, (..., n, n); solvent: index of the solvent. The limit of Wilke's rule. Raises InputError.
     """
-    shape = np.shape(D)
-    if len(shape) < 2:
-        raise InputError(f"D: expected shape (..., n, n), got {shape}")
-    n = shape[-1]
-    if not -n <= solvent < n:
-        raise InputError(f"solvent = {solvent}: expected an index of one of {n} components")
+    try:
+        n = np.shape(D)[-1]
+    except (ValueError, IndexError) as error:
+        raise InputError(f"D: expected shape (..., n, n), got {D!r}") from error
     D = pair_matrix("D", D, n)
+    solvent = component_index("solvent", solvent, n)
     column: Array = D[..., solvent]
     return np.where(np.arange(n) == solvent % n, 0.0, column)
 
@@ -400,8 +437,8 @@ def dissipation(x: ArrayLike, N: ArrayLike, kappa: ArrayLike, c_t: ArrayLike) ->
     component moves. Raises InputError.
     """
     x = mole_fractions("x", x)
-    N = finite_array("N", N)
-    K = resistances(pair_matrix("kappa", kappa, x.shape[-1]), positive_array("c_t", c_t))
+    N = component_array("N", N, x.shape[-1])
+    K = _checked_resistances("kappa", kappa, c_t, x.shape[-1], x=x.shape[:-1], N=N.shape[:-1])
     return pair_dissipation(x, N, K)
 
 
@@ -424,9 +461,13 @@ def entropy_production(N: ArrayLike, x0: ArrayLike, xd: ArrayLike, *, ln_gamma0:
     the film equations; then never negative for a stable mixture, zero at equilibrium. Infinite where a component that
     moves is absent at one face. Raises InputError. Source: Bird, Stewart and Lightfoot (2002) sec. 24.1 (from memory).
     """
-    x0, xd = mole_fractions("x0", x0), mole_fractions("xd", xd)
-    N = finite_array("N", N)
-    return face_entropy(N, x0, xd, finite_array("ln_gamma0", ln_gamma0) - finite_array("ln_gammad", ln_gammad))
+    x0 = mole_fractions("x0", x0)
+    n = x0.shape[-1]
+    xd, N = mole_fractions("xd", xd, n), component_array("N", N, n)
+    at0 = component_array("ln_gamma0", ln_gamma0, n, one_for_all=True)
+    atd = component_array("ln_gammad", ln_gammad, n, one_for_all=True)
+    batch_shape(N=N.shape[:-1], x0=x0.shape[:-1], xd=xd.shape[:-1], ln_gamma0=at0.shape[:-1], ln_gammad=atd.shape[:-1])
+    return face_entropy(N, x0, xd, at0 - atd)
 
 
 def face_entropy(N: Array, x0: Array, xd: Array, ln_gamma_difference: Array | float = 0.0) -> Array:

@@ -285,7 +285,8 @@ def test_batch_shapes() -> None:
         assert found.derivatives().dkappa.shape == (2, 5, n, n, n)
         one = krishna_standart(x0[1, 3], xd[3], kappa, 2.0, TotalFlux(0.5))
         assert_allclose(found.N[1, 3], one.N, rtol=1e-11)
-        assert krishna_standart(np.empty((0, n)), np.empty((0, n)), kappa, 1.0, Equimolar()).N.shape == (0, n)
+        for method in METHODS:
+            assert method(np.empty((2, 0, n)), np.full(n, 1 / n), kappa, 1.0, Equimolar()).N.shape == (2, 0, n)
     frame = found.to_frame()
     assert len(frame) == 40 and list(frame.index.names) == ["batch_0", "batch_1", "component"]
 
@@ -308,7 +309,13 @@ def test_fractions_off_by_rounding() -> None:
     (dict(kappa=np.array([[1.0, 2, 3], [4, 1, 5], [3, 5, 1]])), "symmetric"),
     (dict(c_t=0.0), "c_t"),
     (dict(gamma=np.eye(3)), "gamma: expected shape"),
-    (dict(xd=np.full((4, 3), 1 / 3), c_t=np.ones(3)), "do not broadcast"),
+    (dict(xd=np.full((4, 3), 1 / 3), c_t=np.ones(3)), r"do not broadcast: .*xd \(4,\), c_t \(3,\)"),
+    (dict(x0=np.full((2, 3), 1 / 3), xd=np.full((4, 3), 1 / 3), gamma=lambda x: np.eye(2)), r"x0 \(2,\), xd \(4,\)"),
+    (dict(c_t="1"), "c_t: expected numbers, got '1'"),
+    (dict(kappa="fast"), "kappa: expected numbers, got 'fast'"),
+    (dict(bootstrap=Equimolar), r"bootstrap: expected an object of `ratebased.bootstrap`, Equimolar\(\) say"),
+    (dict(bootstrap="equimolar"), "bootstrap: expected an object"),
+    (dict(bootstrap=None), "bootstrap: expected an object"),
 ])
 @pytest.mark.parametrize("method", METHODS, ids=lambda f: f.__name__)
 def test_bad_input(method: Callable[..., FilmFlux], change: dict, words: str) -> None:

@@ -58,3 +58,5 @@ def test_bad_input() -> None:
         solutions(*faces, 1.0, 1.0, Equimolar(), gamma=[[-1.0]])
     with pytest.raises(InputError, match="starts"):
         solutions(*faces, 1.0, 1.0, Equimolar(), starts=0)
+    with pytest.raises(InputError, match="starts = 2.5"):
+        solutions(*faces, 1.0, 1.0, Equimolar(), starts=2.5)

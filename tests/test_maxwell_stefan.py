@@ -110,6 +110,12 @@ def test_matrices_that_belong_to_no_mixture() -> None:
         ms.diffusivities_from_fick(x, fick)
     with pytest.raises(InputError, match="absent"):
         ms.diffusivities_from_fick([0.0, 0.5, 0.5], fick)
+    with pytest.raises(InputError, match="does not diffuse"):
+        ms.diffusivities_from_onsager(x, np.zeros((3, 3)), 1.0)
+    with pytest.raises(InputError, match="does not diffuse"):
+        ms.diffusivities_from_fick(x, np.ones((2, 2)))
+    with pytest.raises(InputError, match="consume entropy"):
+        ms.diffusivities_from_fick(x, -ms.fick_matrix(x, D))
 
 
 @settings(max_examples=40, deadline=None)
@@ -229,6 +235,23 @@ def test_dissipation_of_an_absent_component() -> None:
     (lambda: ms.fick_matrix([0.2, 0.3, 0.5], 1.0, np.eye(3)), "gamma"),
     (lambda: ms.thermodynamic_factor([0.2, 0.3, 0.5], np.eye(4)), "dlngamma_dx"),
     (lambda: ms.onsager_matrix([0.5, 0.5], 1.0, -1.0), "c_t"),
+    (lambda: ms.resistance_matrix([0.5, 0.5], "fast"), "kappa: expected numbers, got 'fast'"),
+    (lambda: ms.resistance_matrix([0.5, 0.5], [[1, 2], [3]]), "kappa: expected numbers"),
+    (lambda: ms.resistance_matrix([0.5, 0.5], np.ones((2, 2)) * (1 + 1j)), "kappa: expected numbers"),
+    (lambda: ms.resistance_matrix(np.full((2, 2), 0.5), np.ones((3, 2, 2))), r"do not broadcast: x \(2,\), kappa \(3,\)"),
+    (lambda: ms.rate_factor_matrix(1.0, 1.0, 1.0), "N = 1.0"),
+    (lambda: ms.friction([0.5, 0.5], [1.0, 2.0, 3.0], 1.0, 1.0), "N: expected 2 components"),
+    (lambda: ms.friction([0.5, 0.5], 1.0, 1.0, 1.0), "N: expected 2 components"),
+    (lambda: ms.relative_fluxes([1.0, 2.0], [0.5, 0.5], [1.0, 1.0, 1.0]), "weight: expected 2 components"),
+    (lambda: ms.dissipation([0.5, 0.5], [1.0], 1.0, 1.0), "N: expected 2 components"),
+    (lambda: ms.entropy_production([1.0, 1.0], [0.5, 0.5], [0.2, 0.3, 0.5]), "xd: expected 2 components"),
+    (lambda: ms.driving_force([0.5, 0.5], 300.0, 1.0, grad_x=[0.0, 0.0, 0.0]), "grad_x: expected 2 components"),
+    (lambda: ms.driving_force([0.5, 0.5], [300.0, 310.0], np.ones(3), grad_x=[1.0, -1.0]), r"T \(2,\), c_t \(3,\)"),
+    (lambda: ms.driving_force([0.5, 0.5], 300.0, 1.0, grad_x=[1.0, -1.0], grad_P=1.0, molar_mass=[0.01, 0.02],
+                              partial_molar_volume=0.0), "partial_molar_volume: the volume"),
+    (lambda: ms.effective_diffusivity_dilute(1.0, 0), "D: expected shape"),
+    (lambda: ms.effective_diffusivity_dilute(np.ones((2, 2)), 0.5), "solvent = 0.5"),
+    (lambda: ms.effective_diffusivity_dilute(np.ones((2, 2)), 2), "solvent = 2"),
 ])
 def test_bad_input(call, words: str) -> None:
     """The message names the argument, the entry and the value."""

@@ -72,7 +72,7 @@ def numerical(x0: ArrayLike, xd: ArrayLike, kappa: ArrayLike | Composition, c_t:
         warnings.warn(f"numerical: estimated error up to {np.nanmax(error):.1e} of max|N|, "
                       f"{film_names(doubtful, problem.shape)}", ApproximationWarning, stacklevel=2)
     shape, n = problem.shape, problem.n
-    return replace(flux, inside=inside.reshape(*shape, -1, n), dissipated=dissipated.reshape(shape))
+    return replace(flux, inside=inside.reshape(*shape, inside.shape[1], n), dissipated=dissipated.reshape(shape))
 
 
 @dataclass(frozen=True)

@@ -1,7 +1,7 @@
 """The film solved the readable way: Newton on the coth form, restarted from zero flux, then by continuation.
 
-General (ideal films, films with a constant [Gamma], any flux); `fast` solves the bulk of a large ideal batch and is
-tested against this path.
+General (ideal films, films with a constant [Gamma], any flux); `ternary` and `taylor` solve the bulk of a large ideal
+batch and are tested against this path.
 """
 from __future__ import annotations
 

@@ -7,13 +7,12 @@ from collections.abc import Callable
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from ..arguments import finite_array
+from ..arguments import batch_shape, finite_array
 from ..bootstrap import Bootstrap
 from ..errors import (
     ApproximationWarning,
     ConvergenceError,
     HighFluxWarning,
-    InputError,
     NoSolutionError,
     OtherSolutionWarning,
     UnstableMixtureError,
@@ -102,10 +101,8 @@ def faces_and_mean(x0: ArrayLike, xd: ArrayLike) -> tuple[Array, Array, Array]:
     """x0, xd and the mean composition, of one shape. Raises InputError."""
     x0 = checked_fractions("x0", x0)
     xd = checked_fractions("xd", xd, x0.shape[-1])
-    try:
-        x0, xd = np.broadcast_arrays(x0, xd)
-    except ValueError as error:
-        raise InputError(f"batch shapes of x0 and xd do not broadcast: {x0.shape}, {xd.shape}") from error
+    batch_shape(x0=x0.shape[:-1], xd=xd.shape[:-1])
+    x0, xd = np.broadcast_arrays(x0, xd)
     return x0, xd, 0.5 * (x0 + xd)
 
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import ArrayLike
 
+from ..arguments import whole_number
 from ..bootstrap import Bootstrap
 from ..errors import InputError, UnstableMixtureError
 from ..maxwell_stefan import film_matrix, reduced, solve
@@ -40,6 +41,7 @@ def solutions(x0: ArrayLike, xd: ArrayLike, kappa: ArrayLike | Composition, c_t:
     `status` is `OTHER_BRANCH` for those separated by a fold from the zero-flux film. Raises InputError,
     UnstableMixtureError.
     """
+    starts = whole_number("starts", starts)
     if starts < 1:
         raise InputError(f"starts = {starts}: expected one or more")
     x0, xd, mean = faces_and_mean(x0, xd)

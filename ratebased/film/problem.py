@@ -10,7 +10,7 @@ from typing import NamedTuple
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from ..arguments import finite_array, mole_fractions, pair_matrix, positive_array
+from ..arguments import batch_shape, finite_array, mole_fractions, pair_matrix, positive_array
 from ..bootstrap import Bootstrap
 from ..errors import InputError
 from ..maxwell_stefan import resistances
@@ -140,18 +140,17 @@ def pose(x0: ArrayLike, xd: ArrayLike, kappa: ArrayLike, c_t: ArrayLike, bootstr
     xd = checked_fractions("xd", xd, n)
     kappa = checked_pairs(kappa, n)
     c_t = positive_array("c_t", c_t)
+    if isinstance(bootstrap, type) or not hasattr(bootstrap, "linear_form"):
+        raise InputError(f"bootstrap: expected an object of `ratebased.bootstrap`, Equimolar() say, got {bootstrap!r}")
     nu, s = bootstrap.linear_form(n)
-    shapes = [x0.shape[:-1], xd.shape[:-1], kappa.shape[:-2], c_t.shape, nu.shape[:-1], s.shape]
+    shapes = {"x0": x0.shape[:-1], "xd": xd.shape[:-1], "kappa": kappa.shape[:-2], "c_t": c_t.shape,
+              "nu": nu.shape[:-1], "s": s.shape}
     if gamma is not None:
         gamma = finite_array("gamma", gamma)
         if gamma.shape[-2:] != (n - 1, n - 1):
             raise InputError(f"gamma: expected shape (..., {n - 1}, {n - 1}), got {gamma.shape}")
-        shapes.append(gamma.shape[:-2])
-    try:
-        shape = np.broadcast_shapes(*shapes)
-    except ValueError as error:
-        raise InputError("batch shapes of x0, xd, kappa, c_t, nu, s, gamma do not broadcast: "
-                         f"{', '.join(map(str, shapes))}") from error
+        shapes["gamma"] = gamma.shape[:-2]
+    shape = batch_shape(**shapes)
     return FilmProblem(flattened(x0, shape, 1), flattened(xd, shape, 1), flattened(kappa, shape, 2),
                        flattened(c_t, shape, 0), flattened(nu, shape, 1), flattened(s, shape, 0),
                        None if gamma is None else flattened(gamma, shape, 2), shape)

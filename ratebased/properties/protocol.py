@@ -10,11 +10,10 @@ from typing import Protocol, runtime_checkable
 import numpy as np
 from numpy.typing import NDArray
 
+from correlations.constants import GAS_CONSTANT as GAS_CONSTANT
+
 Array = NDArray[np.float64]
 Mask = NDArray[np.bool_]
-
-GAS_CONSTANT = 8.314462618
-"""J/(mol K), exact in the SI of 2019 to the digits given."""
 
 
 @dataclass(frozen=True)
