@@ -31,7 +31,7 @@ from ratebased.column import (
     solve_equilibrium,
 )
 from ratebased.column.search import with_search
-from ratebased.efficiency_set import EfficiencyBasis, EfficiencyKind, EfficiencySet
+from ratebased.efficiency_set import EfficiencyBasis, EfficiencyKind, EfficiencySet, uniform_murphree
 from ratebased.errors import ConvergenceError, InputError, NoSolutionError, PlausibilityWarning
 from ratebased.properties import bubble_point
 
@@ -293,3 +293,14 @@ def test_trials_that_cannot_be_made_are_passed_over() -> None:
     column = column.with_(specifications=[RefluxRatio(2.5), ProductPurity(0.9, 1, bounds=(75.0, 90.0))])
     with pytest.raises(InputError, match="nothing of the feed"):
         solve_equilibrium(column, ternary())
+
+
+def test_one_efficiency_lets_the_most_abundant_component_follow() -> None:
+    """Whichever component follows has the same efficiency; a trace as the last one must not be it."""
+    y = np.array([[0.7, 0.3, 1e-20], [0.2, 0.7, 0.1]])
+    at_bubble = uniform_murphree(0.7, y, EfficiencyBasis.BUBBLE_POINT, [True, True])
+    assert list(at_bubble.dependent) == [0, 1] and (at_bubble.values == 0.7).all()
+    own = uniform_murphree(0.7, y, EfficiencyBasis.LIQUID_TEMPERATURE, [True, True])
+    assert list(own.dependent) == [-1, -1]
+    free = solve_equilibrium(distillation(), ternary(), 0.7).efficiency().exact_murphree
+    np.testing.assert_allclose(free, 0.7, rtol=1e-9)
