@@ -6,7 +6,14 @@ from numpy.typing import NDArray
 
 
 class InputError(ValueError):
-    """Bad input: the message names the argument, the entry and the value."""
+    """Bad input: the message names the argument, the entry and the value.
+
+    entry : position in the array of the argument, for a caller with a better name for it; empty where there is none.
+    """
+
+    def __init__(self, message: str, entry: tuple[int, ...] = ()) -> None:
+        super().__init__(message)
+        self.entry = entry
 
 
 class NoPhysicalRootError(ArithmeticError):

@@ -135,7 +135,7 @@ def require(name: str, value: Array, holds: Mask, words: str) -> None:
     if not np.all(holds):
         where = tuple(int(i) for i in np.argwhere(~np.asarray(holds))[0])
         shown = np.broadcast_to(value, np.shape(holds))[where]
-        raise InputError(f"{name}{list(where) if where else ''} = {shown:.6g}: expected {words}")
+        raise InputError(f"{name}{list(where) if where else ''} = {shown:.6g}: expected {words}", where)
 
 
 def correlation(predicts: str, hardware: str, unit: str, validity: Validity, *, dimensional: bool = False,

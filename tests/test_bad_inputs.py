@@ -49,7 +49,7 @@ RATE = [
     ("case.toml", 'activity = "unifac-modified"', 'activity = "unifac modified"', "did you mean 'unifac-modified'?"),
     # numbers
     ("case.toml", "diameter_m = 1.1", "diameter_m = 0.0", "diameter_m = 0.0: expected a number above 0"),
-    ("case.toml", "diameter_m = 1.1", "diameter_m = 0.5", "expected a velocity low enough for positive transfer units"),
+    ("case.toml", "diameter_m = 1.1", "diameter_m = 0.5", "stage 2: active_velocity"),
     ("case.toml", "diameter_m = 1.1", "diameter_m = 1e154", "no such size in SI units"),
     ("case.toml", "diameter_m = 1.1", "diameter_m = nan", "diameter_m = nan: expected a finite number"),
     ("case.toml", "diameter_m = 1.1", "diameter_m = inf", "diameter_m = inf: expected a finite number"),

@@ -168,12 +168,13 @@ def check_specifications(given: Sequence[Specification], condenser: bool, reboil
     if condenser and reboiler and {"BoilupRatio", "ReboilerDuty"} <= set(names):
         raise InputError("specifications: BoilupRatio and ReboilerDuty both speak of the reboiler and leave the top "
                          "open; replace one of them by RefluxRatio, DistillateRate or BottomsRate")
+    freedom = f"{ends} {'leaves 1 degree' if need == 1 else f'leave {need} degrees'} of freedom"
     if len(given) < need:
         options = [t.__name__ for t in allowed[1:]] + [t.__name__ for t in (ProductPurity, ComponentRecovery)]
         options += ["CondenserDuty"] if condenser else []
         missing = ", ".join(o for o in options if o not in names)
-        raise InputError(f"specifications: {ends} leave {need} degree{'s' * (need > 1)} of freedom, {len(given)} given "
+        raise InputError(f"specifications: {freedom}, {len(given)} given "
                          f"({', '.join(names) or 'none'}); missing {need - len(given)} of: {missing}")
     if len(given) > need:
-        raise InputError(f"specifications: {ends} leave {need} degree{'s' * (need > 1)} of freedom, {len(given)} "
+        raise InputError(f"specifications: {freedom}, {len(given)} "
                          f"given: {', '.join(names[need:])} surplus")

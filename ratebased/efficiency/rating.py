@@ -316,7 +316,13 @@ class RowGroup:
         self.state: ContactState = contact_state(properties, b.V, b.L, b.T_V, b.T_L, self.P, b.y, b.x, height)
         if change is not None:
             self.state = change.state(self.state)
-        self.coefficients: TransferCoefficients = contactor.transfer(self.state)
+        try:
+            self.coefficients: TransferCoefficients = contactor.transfer(self.state)
+        except InputError as error:
+            if not error.entry:
+                raise
+            stage = profile.number[rows[member[error.entry[0]]]]
+            raise InputError(f"stage {stage}: {error}") from error
         if change is not None:
             self.coefficients = change.coefficients(self.coefficients)
 
