@@ -369,13 +369,13 @@ def test_order_of_a_bed_with_its_own_pressure_drop() -> None:
     """The feed is flashed at the pressure found, on every grid the same; else its phases jump from the first grid to
     the second.
     """
-    column = Column(10, [Feed(5, [35.0, 35.0, 30.0], temperature=355.0)], ContactorPressure(101325.0),
+    column = Column(10, [Feed(5, [35.0, 35.0, 30.0], temperature=344.0)], ContactorPressure(101325.0),
                     condenser=TotalCondenser(), reboiler=Reboiler(),
                     specifications=[RefluxRatio(2.5), DistillateRate(40.0)], segment_height=0.3)
     study = refine_grid(column, ternary(), Bed(), grids=4)
     vapor = np.array([p.feeds.vapor.sum() for p in study.profiles])
     np.testing.assert_allclose(vapor, vapor[0], rtol=1e-9)
-    assert vapor[0] > 1.0
+    assert 1.0 < vapor[0] < 99.0
     assert study.order[-1] == pytest.approx(2.0, abs=0.3)
 
 
