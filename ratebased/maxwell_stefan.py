@@ -18,7 +18,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from correlations.constants import GAS_CONSTANT
+from correlations.constants import GAS_CONSTANT as GAS_CONSTANT
 
 from .arguments import (
     batch_shape,
@@ -313,38 +313,46 @@ def driving_force(x: ArrayLike, T: ArrayLike, c_t: ArrayLike, *, grad_x: ArrayLi
     c = positive_array("c_t", c_t)[..., None]
     if (grad_x is None) == (grad_mu is None):
         raise InputError("grad_x, grad_mu: give one of the two")
-    slopes = np.shape(grad_x if grad_mu is None else grad_mu)
-    batch_shape(x=x.shape[:-1], T=RT.shape[:-1], c_t=c.shape[:-1], grad_P=np.shape(grad_P), gradient=slopes[:-1],
-                gamma=np.shape(gamma)[:-2], partial_molar_volume=np.shape(partial_molar_volume)[:-1],
-                molar_mass=np.shape(molar_mass)[:-1], body_force=np.shape(body_force)[:-1])
+    shapes = {"x": x.shape[:-1], "T": RT.shape[:-1], "c_t": c.shape[:-1]}
+
+    def component(name: str, value: ArrayLike, one_for_all: bool = True) -> Array:
+        array = component_array(name, value, n, one_for_all=one_for_all)
+        shapes[name] = array.shape[:-1]
+        batch_shape(**shapes)
+        return array
+
     if grad_x is not None:
-        slope = component_array("grad_x", grad_x, n)
+        slope = component("grad_x", grad_x, False)
         _refuse("grad_x", np.abs(slope.sum(-1)) > 1e-9 * np.abs(slope).max(-1), "gradients do not sum to zero")
-        part = (_gamma(gamma, n) @ slope[..., :-1, None])[..., 0]
+        factor = _gamma(gamma, n)
+        batch_shape(**shapes, gamma=factor.shape[:-2])
+        part = (factor @ slope[..., :-1, None])[..., 0]
         chemical = np.concatenate((part, -part.sum(-1, keepdims=True)), axis=-1)
     else:
         if gamma is not None:
             raise InputError("gamma: belongs to grad_x, not to grad_mu")
-        terms = x * component_array("grad_mu", grad_mu if grad_mu is not None else 0.0, n) / RT
+        terms = x * component("grad_mu", grad_mu if grad_mu is not None else 0.0, False) / RT
         _refuse("grad_mu", np.abs(terms.sum(-1)) > 1e-9 * np.abs(terms).max(-1),
                 "sum x_i grad mu_i is not zero (Gibbs and Duhem)")
         chemical = terms
     pressure = body = np.zeros_like(chemical)
     gradient = finite_array("grad_P", grad_P)[..., None]
+    shapes["grad_P"] = gradient.shape[:-1]
+    batch_shape(**shapes)
     if molar_mass is not None:
-        mass = x * positive_array("molar_mass", component_array("molar_mass", molar_mass, n, one_for_all=True))
+        mass = x * positive_array("molar_mass", component("molar_mass", molar_mass))
         omega = mass / mass.sum(-1, keepdims=True)
     elif gradient.any() or body_force is not None:
         raise InputError("molar_mass: needed for the pressure and body-force parts")
     if gradient.any():
         if partial_molar_volume is None:
             raise InputError("partial_molar_volume: needed for the pressure part")
-        volume = x * component_array("partial_molar_volume", partial_molar_volume, n, one_for_all=True)
+        volume = x * component("partial_molar_volume", partial_molar_volume)
         total = volume.sum(-1, keepdims=True)
         _refuse("partial_molar_volume", total[..., 0] <= 0, "the volume of the mixture is not above zero")
         pressure = (volume / total - omega) * gradient / (c * RT)
     if body_force is not None:
-        force = component_array("body_force", body_force, n, one_for_all=True)
+        force = component("body_force", body_force)
         body = -mass * (force - (omega * force).sum(-1, keepdims=True)) / RT
     return DrivingForce(*np.broadcast_arrays(chemical, pressure, body))
 

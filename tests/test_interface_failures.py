@@ -52,12 +52,34 @@ def test_bad_input_names_argument_and_entry(one):
         interface_flux(replace(vapor, temperature=np.full(3, 350.0)), liquid, model, P, start=first)
 
 
+@pytest.mark.parametrize("change, words", [
+    (dict(vapor=np.ones(3)), "vapor: expected a `Bulk`"),
+    (dict(liquid=None), "liquid: expected a `Bulk`"),
+    (dict(properties=None), "properties: expected a property model, got None"),
+    (dict(film="effective"), "film: expected a film method.*got 'effective'"),
+    (dict(start=3), "start: expected an `InterfaceFlux`, got 3"),
+    (dict(tolerance=0.0), "tolerance = 0.0: expected a number above zero"),
+    (dict(tolerance=np.nan), "tolerance = nan"),
+    (dict(P=[1e5, 1e5, 1e5, 1e5]), r"do not broadcast: P \(4,\), vapor.temperature \(3,\)"),
+])
+def test_things_of_another_kind(one, change, words):
+    model, vapor, liquid = one
+    vapor = replace(vapor, temperature=np.full(3, 350.0))
+    arguments = dict(vapor=vapor, liquid=liquid, properties=model, P=P) | change
+    with pytest.raises(InputError, match=words):
+        interface_flux(**arguments)
+
+
 def test_solutions_takes_one_interface(one):
     model, vapor, liquid = one
     with pytest.raises(InputError, match="takes one interface"):
         solutions(replace(vapor, temperature=np.full(3, 350.0)), liquid, model, P)
     with pytest.raises(InputError, match="starts = 1"):
         solutions(vapor, liquid, model, P, starts=1)
+    with pytest.raises(InputError, match="starts = 2.5"):
+        solutions(vapor, liquid, model, P, starts=2.5)
+    with pytest.raises(InputError, match="tolerance = -1"):
+        solutions(vapor, liquid, model, P, tolerance=-1.0)
     every = solutions(vapor, liquid, model, P, starts=60)
     r = interface_flux(vapor, liquid, model, P)
     assert every.N.shape == (1, 3)

@@ -238,7 +238,7 @@ def test_dissipation_of_an_absent_component() -> None:
     (lambda: ms.resistance_matrix([0.5, 0.5], "fast"), "kappa: expected numbers, got 'fast'"),
     (lambda: ms.resistance_matrix([0.5, 0.5], [[1, 2], [3]]), "kappa: expected numbers"),
     (lambda: ms.resistance_matrix([0.5, 0.5], np.ones((2, 2)) * (1 + 1j)), "kappa: expected numbers"),
-    (lambda: ms.resistance_matrix(np.full((2, 2), 0.5), np.ones((3, 2, 2))), r"do not broadcast: x \(2,\), kappa \(3,\)"),
+    (lambda: ms.resistance_matrix(np.full((2, 2), 0.5), np.ones((3, 2, 2))), r"broadcast: x \(2,\), kappa \(3,\)"),
     (lambda: ms.rate_factor_matrix(1.0, 1.0, 1.0), "N = 1.0"),
     (lambda: ms.friction([0.5, 0.5], [1.0, 2.0, 3.0], 1.0, 1.0), "N: expected 2 components"),
     (lambda: ms.friction([0.5, 0.5], 1.0, 1.0, 1.0), "N: expected 2 components"),

@@ -95,6 +95,7 @@ class InterfaceFlux(Shown):
     residual : largest scaled residual of film equations, sums and energy. equilibrium_residual : max |y_I - K x_I|.
     energy_residual : |E_V - E_L| relative to the sum of the absolute terms. iterations : Newton steps of the path that
     succeeded. status : `InterfaceStatus`. size : largest |A|_1 of the two films. NaN where nothing was found.
+    error : on request, estimated max|dN|/max|N| of one [Gamma] for each film, (...), else None.
     u : the unknowns x_I (y_I of a non-condensing component), (..., n). derivatives : on request, else None.
     """
 
@@ -117,6 +118,7 @@ class InterfaceFlux(Shown):
     names: tuple[str, ...]
     films: FilmState
     derivatives: InterfaceDerivatives | None = None
+    error: Array | None = None
 
     @property
     def solved(self) -> NDArray[np.bool_]:

@@ -4,7 +4,7 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from ..arguments import finite_array, mole_fractions, pair_matrix, positive_array
+from ..arguments import batch_shape, finite_array, mole_fractions, pair_matrix, positive_array
 from ..errors import ConvergenceError, InputError, NoSolutionError
 from ..film.blocks import coth_blocks, resistances, shoot
 from ..properties.differences import liquid_heat_capacity, vapor_heat_capacity
@@ -70,14 +70,19 @@ def bulks_from_interface(N: ArrayLike, properties: PropertyModel, P: ArrayLike, 
     k_V, k_L = pair_matrix("kappa_vapor", kappa_vapor, n), pair_matrix("kappa_liquid", kappa_liquid, n)
     h_V = positive_array("heat_transfer_vapor", heat_transfer_vapor)
     h_L = positive_array("heat_transfer_liquid", heat_transfer_liquid)
-    shape = np.broadcast_shapes(flux.shape[:-1], T.shape, k_V.shape[:-2], k_L.shape[:-2], c_V.shape, c_L.shape,
-                                h_V.shape, h_L.shape)
+    closing = np.asarray(0.0) if vapor_temperature is None else positive_array("vapor_temperature", vapor_temperature)
+    given = None if energy_flux is None else finite_array("energy_flux", energy_flux)
+    shape = batch_shape(N=flux.shape[:-1], P=pressure.shape, interface=T.shape, kappa_vapor=k_V.shape[:-2],
+                        kappa_liquid=k_L.shape[:-2], molar_density_vapor=c_V.shape, molar_density_liquid=c_L.shape,
+                        heat_transfer_vapor=h_V.shape, heat_transfer_liquid=h_L.shape,
+                        vapor_temperature=closing.shape, energy_flux=() if given is None else given.shape)
     flux, T = np.broadcast_to(flux, (*shape, n)), np.broadcast_to(T, shape)
     x_face, y_face = np.broadcast_to(x_face, (*shape, n)), np.broadcast_to(y_face, (*shape, n))
     T_V, T_L = T, T
-    if vapor_temperature is not None:
-        T_V = np.broadcast_to(positive_array("vapor_temperature", vapor_temperature), shape)
-    given = None if energy_flux is None else np.broadcast_to(finite_array("energy_flux", energy_flux), shape)
+    if given is None:
+        T_V = np.broadcast_to(closing, shape)
+    else:
+        given = np.broadcast_to(given, shape)
     # [Gamma] belongs to the mean temperature of a film, the bulk temperature to the composition: a few rounds
     for _ in range(MAX_STEPS):
         y = _walk(flux, resistances(k_V, c_V), y_face, -1, getattr(properties, "vapor_thermodynamic_factor", None),
@@ -130,7 +135,12 @@ def _interface_state(properties: PropertyModel, P: Array, x_I: ArrayLike | None,
 def _walk(N: Array, K: Array, face: Array, sign: int, factor: object, T: Array, P: Array, mask: Mask,
           properties: PropertyModel, phase: str) -> Array:
     """Bulk composition behind a film, from its interface composition; sign = 1: liquid, -1: vapour."""
-    bulk, _ = shoot(N, K, face, sign)
+    with np.errstate(over="ignore", invalid="ignore"):
+        bulk, _ = shoot(N, K, face, sign)
+    if not np.isfinite(bulk).all():
+        where = tuple(int(i) for i in np.argwhere(~np.isfinite(bulk).all(-1))[0])
+        raise NoSolutionError(f"{phase}{list(where) if where else ''}: far more flux than the film can carry, no bulk "
+                              "composition gives it", failed=np.asarray(~np.isfinite(bulk).all(-1)))
     if callable(factor) and not _ideal(factor, T, P, face, bulk):
         bulk = _walk_nonideal(N, K, face, bulk, sign, factor, T, P, mask, properties)
     bulk = np.where(mask, bulk, 0.0)
@@ -167,7 +177,7 @@ def _walk_nonideal(N: Array, K: Array, face: Array, bulk: Array, sign: int, fact
         x = x + step
         if np.abs(step).max(initial=0.0) < 1e-14:
             return x
-    failed = np.asarray(np.abs(step).max(-1) > 1e-10)
+    failed = np.asarray(~(np.abs(step).max(-1) <= 1e-10))     # not a number has failed
     if failed.any():
         raise ConvergenceError("bulk composition behind a non-ideal film not found", best=x, failed=failed)
     return x
@@ -196,7 +206,7 @@ def _bulk_temperature(properties: PropertyModel, N: Array, T: Array, P: Array, c
         bulk = np.clip(bulk + step, low, high)
         if np.abs(step).max(initial=0.0) < 1e-11 * np.max(T, initial=1.0):
             return bulk
-    failed = np.asarray(np.abs(step) > 1e-8 * T)
+    failed = np.asarray(~(np.abs(step) <= 1e-8 * T))
     if failed.any():
         raise ConvergenceError(f"temperature of the bulk {'vapor' if side > 0 else 'liquid'} not found", best=bulk,
                                failed=failed)

@@ -4,6 +4,7 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
+from ..arguments import positive_scalar, whole_number
 from ..errors import InputError
 from ..film import krishna_standart
 from ..properties.protocol import PropertyModel
@@ -39,8 +40,9 @@ def solutions(vapor: Bulk, liquid: Bulk, properties: PropertyModel, P: ArrayLike
 
     Arguments and errors as in `interface_flux`; the bulks must be those of one interface. No root: a batch of length 0.
     """
-    n = len(properties.names)
+    tolerance, starts = positive_scalar("tolerance", tolerance), whole_number("starts", starts)
     vapor, liquid, pressure, batch = checked(vapor, liquid, properties, P)
+    n = len(properties.names)
     if batch != ():
         raise InputError(f"vapor, liquid, P: `solutions` takes one interface, got a batch of shape {batch}")
     if starts < 3:
