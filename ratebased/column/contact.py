@@ -9,7 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ..equipment.protocol import Contactor, ContactState, TransferCoefficients
-from ..equipment.sections import Hardware, Section, by_contactor
+from ..equipment.sections import Hardware, Section, by_contactor, stage_coefficients
 from ..equipment.state import contact_state
 from ..errors import InputError
 from ..properties.protocol import Array, PropertyModel
@@ -133,10 +133,11 @@ class Transfer:
     c_liquid: Array
 
 
-def transfer(states: list[tuple[Contactor, NDArray[np.intp], ContactState]], count: int,
+def transfer(states: list[tuple[Contactor, NDArray[np.intp], ContactState]], stages: NDArray[np.intp],
              area_factor: float) -> Transfer:
-    """Coefficients of every stage from its contactor; the areas times `area_factor`."""
-    parts = [(i, c.transfer(state), state) for c, i, state in states]
+    """Coefficients of every contact stage, numbered `stages`, from its contactor; the areas times `area_factor`."""
+    count = stages.size
+    parts = [(i, stage_coefficients(c, state, stages[i]), state) for c, i, state in states]
     if len(parts) == 1:
         _, k, state = parts[0]
         if area_factor != 1.0:

@@ -209,7 +209,7 @@ def _coefficients(setup: RateSetup, state: RateState, vapor_in: Entering, liquid
         T_L, L = T_L + shares.T_L * (liquid_in.temperature[c] - T_L), L + shares.x * (L_in - L)
     states = setup.layout.states(problem.properties, V, L, T_V, T_L, problem.P[c], y, x,
                                  None if height is None else height[c])
-    return transfer(states, c.size, setup.area_factor)
+    return transfer(states, c + 1, setup.area_factor)
 
 
 def short_shares(setup: RateSetup) -> Shares:

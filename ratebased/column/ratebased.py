@@ -176,7 +176,7 @@ def _start_from(setup: RateSetup, v: Array, T_V: Array, l: Array, T_L: Array) ->
     height = problem.column.segment_height
     states = setup.layout.states(problem.properties, V, L, T_V[c], T_L[c], problem.P[c], y, x,
                                  None if height is None else height[c])
-    k = transfer(states, c.size, setup.area_factor)
+    k = transfer(states, c + 1, setup.area_factor)
     if not ((np.asarray(k.coefficients.h_vapor) > 0).all() and (np.asarray(k.coefficients.h_liquid) > 0).all()):
         raise InputError("contactor: heat-transfer coefficients must be positive in both phases, the temperatures are "
                          "undetermined otherwise")

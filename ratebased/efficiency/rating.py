@@ -22,6 +22,7 @@ from ..equipment import (
     TransferCoefficients,
     by_contactor,
     contact_state,
+    stage_coefficients,
 )
 from ..errors import InputError
 from ..interface import InterfaceFlux
@@ -245,7 +246,8 @@ def rate_rows(profile: StageProfile, hardware: Hardware, properties: PropertyMod
                     total.add(member, group, *group.trays(options))
     y_out, T_V, V_out = total.y, total.T_V, total.V
     P, T_L, x = profile.P[rows], profile.T_L[rows], profile.x[rows]
-    star = equilibrium_vapor(properties, P, x, T_L, entering.y, at_liquid_temperature=options.at_liquid_temperature)
+    star = equilibrium_vapor(properties, P, x, T_L, entering.y, y_out=y_out,
+                             at_liquid_temperature=options.at_liquid_temperature)
     ordinary = properties.condensable & properties.volatile
     K = properties.k_value(T_L, P, x, y_out)
     murphree = murphree_vapor(entering.y, y_out, star.composition)
@@ -316,13 +318,8 @@ class RowGroup:
         self.state: ContactState = contact_state(properties, b.V, b.L, b.T_V, b.T_L, self.P, b.y, b.x, height)
         if change is not None:
             self.state = change.state(self.state)
-        try:
-            self.coefficients: TransferCoefficients = contactor.transfer(self.state)
-        except InputError as error:
-            if not error.entry:
-                raise
-            stage = profile.number[rows[member[error.entry[0]]]]
-            raise InputError(f"stage {stage}: {error}") from error
+        stages = profile.number[rows[member]]
+        self.coefficients: TransferCoefficients = stage_coefficients(contactor, self.state, stages)
         if change is not None:
             self.coefficients = change.coefficients(self.coefficients)
 

@@ -255,7 +255,7 @@ def sample_rows(profile: StageProfile, hardware: Hardware, properties: PropertyM
                 start = None if near is None else repeated(near, place[j])
                 y_out[s, j] = shift[j] + group.trays(options, start=start, tolerance=SAMPLE_TOLERANCE,
                                                      stretches=1)[0].y
-            star = equilibrium_vapor(model, P, x, T, entering.y[j],
+            star = equilibrium_vapor(model, P, x, T, entering.y[j], y_out=y_out[s, j],
                                      at_liquid_temperature=options.at_liquid_temperature).composition
             driving[s, j] = star - entering.y[j]
             E[s, j] = murphree_vapor(entering.y[j], y_out[s, j], star)

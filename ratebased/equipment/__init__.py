@@ -2,7 +2,7 @@
 from .fixed import FixedCoefficients
 from .packings import BilletConstants, BilletSchultes, BravoFair, Onda, RandomPacking
 from .protocol import LIMITS, Contactor, ContactState, Hydraulics, TransferCoefficients
-from .sections import Hardware, Section, by_contactor
+from .sections import Hardware, Section, by_contactor, stage_coefficients
 from .state import contact_state
 from .structured import BravoRochaFair, RochaBravoFair, StructuredPacking, TsaiArea
 from .tray_methods import AIChEBubbleCap, AIChESieve, ChanFair, ChenChuang, Zuiderweg
@@ -13,4 +13,5 @@ __all__ = [
     "BubbleCapTray", "ChanFair", "ChenChuang", "ContactState", "Contactor", "FixedCoefficients", "Hardware",
     "Hydraulics", "Onda", "RandomPacking", "RochaBravoFair", "Section", "SieveTray", "StructuredPacking",
     "TransferCoefficients", "TsaiArea", "ValveTray", "Zuiderweg", "by_contactor", "contact_state",
+    "stage_coefficients",
 ]

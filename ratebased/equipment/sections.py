@@ -8,7 +8,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ..errors import InputError
-from .protocol import Contactor
+from .protocol import Contactor, ContactState, TransferCoefficients
 
 
 @dataclass(frozen=True)
@@ -44,3 +44,13 @@ def by_contactor(hardware: Hardware, stages: NDArray[np.int64]) -> Iterator[tupl
         if bad.size:
             raise InputError(f"hardware, stage {stages[bad[0]]}: {text}")
     yield from found
+
+
+def stage_coefficients(contactor: Contactor, state: ContactState, stages: NDArray[np.integer]) -> TransferCoefficients:
+    """`contactor.transfer(state)` of the stages with the numbers `stages`, (...); an `InputError` names the stage."""
+    try:
+        return contactor.transfer(state)
+    except InputError as error:
+        if not error.entry:
+            raise
+        raise InputError(f"stage {stages[error.entry[0]]}: {error}") from error
