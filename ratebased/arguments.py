@@ -12,7 +12,7 @@ SUM_TOLERANCE = 1e-9
 """Mole fractions whose sum is off by no more than this are renormalised; anything worse is an error."""
 
 
-def _numbers(name: str, value: ArrayLike) -> Array:
+def real_array(name: str, value: ArrayLike) -> Array:
     """`value` as a float array; words and complex numbers are refused, not read or cut."""
     try:
         array = np.asarray(value)
@@ -25,7 +25,7 @@ def _numbers(name: str, value: ArrayLike) -> Array:
 
 def finite_array(name: str, value: ArrayLike) -> Array:
     """`value` as a float array without NaN or infinity."""
-    array = _numbers(name, value)
+    array = real_array(name, value)
     if not np.isfinite(array).all():
         where = tuple(int(i) for i in np.argwhere(~np.isfinite(array))[0])
         raise InputError(f"{name}{list(where) if where else ''} = {array[where]}: expected a finite number")
@@ -65,6 +65,11 @@ def whole_number(name: str, value: int) -> int:
     if number != round(number):
         raise InputError(f"{name} = {value}: expected a whole number")
     return int(number)
+
+
+def truth_values(name: str, value: ArrayLike) -> NDArray[np.bool_]:
+    """`value` as booleans; words, which are all true to Python, are refused."""
+    return np.asarray(real_array(name, value), dtype=bool)
 
 
 def mole_fractions(name: str, value: ArrayLike, n: int | None = None) -> Array:
@@ -125,7 +130,7 @@ def pair_matrix(name: str, value: ArrayLike, n: int) -> Array:
 
     One number stands for all pairs.
     """
-    array = _numbers(name, value)
+    array = real_array(name, value)
     if array.ndim == 0:
         array = np.full((n, n), float(array))
     if array.shape[-2:] != (n, n):

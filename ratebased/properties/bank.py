@@ -60,7 +60,7 @@ class BankView:
                    for part in self.parts]
         if len(basis.shape) == 1:
             return columns
-        return [column.reshape(*basis.shape, -1) for column in columns]
+        return [column.reshape(*basis.shape, column.shape[-1]) for column in columns]
 
 
 def _product(polynomials: Array, segment: NDArray[np.intp] | None, coefficients: Array, segments: int) -> Array:
@@ -68,7 +68,7 @@ def _product(polynomials: Array, segment: NDArray[np.intp] | None, coefficients:
     values: Array = polynomials @ coefficients
     if segment is None:
         return values
-    return values.reshape(len(values), segments, -1)[np.arange(len(values)), segment]
+    return values.reshape(len(values), segments, values.shape[-1] // segments)[np.arange(len(values)), segment]
 
 
 def _series(T: Array, low: ArrayLike, high: ArrayLike, degree: int) -> Array:
@@ -118,17 +118,22 @@ class TemperatureBank:
         self._table = np.concatenate([block for pair in zip(self._coefficients, self._derivative(1)) for block in pair],
                                      axis=1)
 
+    def check(self, T: Array) -> None:
+        """`PropertyRangeError` for a temperature outside the range of the bank."""
+        low, high = self.T_range
+        if T.size and not (low <= T.min() and T.max() <= high):
+            where = tuple(int(i) for i in np.argwhere(~((T >= low) & (T <= high)))[0])
+            raise PropertyRangeError(f"T{list(where) if where else ''} = {T[where]:.8g} K is outside the range "
+                                     f"{low:g} to {high:g} K the properties were built for")
+
     def basis(self, T: Array) -> Basis:
         """Temperatures T (...) in K made ready for the views of this bank.
 
         Raises `PropertyRangeError` for a temperature outside the range of the bank.
         """
         T = np.asarray(T, float)
+        self.check(T)
         low, high = self.T_range
-        if T.size and not (low <= T.min() and T.max() <= high):
-            where = tuple(int(i) for i in np.argwhere(~((T >= low) & (T <= high)))[0])
-            raise PropertyRangeError(f"T{list(where) if where else ''} = {T[where]:.8g} K is outside the range "
-                                     f"{low:g} to {high:g} K the properties were built for")
         flat = T.reshape(-1)
         segments = len(self.edges) - 1
         segment: NDArray[np.intp] | None = None

@@ -6,7 +6,7 @@ from collections.abc import Sequence
 import numpy as np
 from numpy.typing import ArrayLike
 
-from ..arguments import component_vector, pair_matrix, positive_scalar
+from ..arguments import component_vector, finite_scalar, pair_matrix, positive_scalar, real_array, truth_values
 from ..errors import InputError
 from .protocol import GAS_CONSTANT, Array, KDerivatives, LiquidTransport, Mask, VaporTransport
 
@@ -51,26 +51,29 @@ class ConstantVolatility:
         n = len(self.names)
         if n < 1 or len(set(self.names)) != n:
             raise InputError(f"names: expected distinct component names, got {list(self.names)}")
-        self.condensable: Mask = np.ones(n, bool) if condensable is None else np.asarray(condensable, bool)
-        self.volatile: Mask = np.ones(n, bool) if volatile is None else np.asarray(volatile, bool)
+        self.condensable: Mask = np.ones(n, bool) if condensable is None else truth_values("condensable", condensable)
+        self.volatile: Mask = np.ones(n, bool) if volatile is None else truth_values("volatile", volatile)
         for label, mask in (("condensable", self.condensable), ("volatile", self.volatile)):
             if mask.shape != (n,):
                 raise InputError(f"{label}: expected shape ({n},), got {mask.shape}")
         for i in np.flatnonzero(~(self.condensable | self.volatile)):
             raise InputError(f"{self.names[i]} is neither condensable nor volatile")
         self.ordinary: Mask = self.condensable & self.volatile
-        alpha = component_vector("volatility", np.where(self.ordinary, np.asarray(volatility, float), 1.0), n,
-                                 positive=True)
+        alpha = real_array("volatility", volatility)
+        if alpha.shape not in ((), (n,)):
+            raise InputError(f"volatility: expected {n} entries, one for each component, got shape {alpha.shape}")
+        alpha = component_vector("volatility", np.where(self.ordinary, alpha, 1.0), n, positive=True)
         self.volatility: Array = np.where(self.ordinary, alpha, 0.0)
         self.latent_heat = component_vector("latent_heat", latent_heat, n)
         self.vapor_cp = component_vector("vapor_heat_capacity", vapor_heat_capacity, n)
         self.liquid_cp = component_vector("liquid_heat_capacity", liquid_heat_capacity, n)
         self.molar_mass = component_vector("molar_mass", molar_mass, n, positive=True)
-        self.a, self.b = float(a), float(b)
+        self.a, self.b = finite_scalar("a", a), finite_scalar("b", b)
         self.reference_temperature = positive_scalar("reference_temperature", reference_temperature)
         self.vapor_diffusivity = pair_matrix("vapor_diffusivity", vapor_diffusivity, n)
         self.liquid_diffusivity = pair_matrix("liquid_diffusivity", liquid_diffusivity, n)
-        self.vapor_molar_density = vapor_molar_density
+        self.vapor_molar_density = None if vapor_molar_density is None else positive_scalar("vapor_molar_density",
+                                                                                            vapor_molar_density)
         self.liquid_molar_density = positive_scalar("liquid_molar_density", liquid_molar_density)
         self.vapor_viscosity = positive_scalar("vapor_viscosity", vapor_viscosity)
         self.liquid_viscosity = positive_scalar("liquid_viscosity", liquid_viscosity)

@@ -54,8 +54,7 @@ class CubicProperties(MixtureModel):
     # equilibrium ------------------------------------------------------------------------------------------------
 
     def _state(self, T: ArrayLike, P: ArrayLike, name: str, z: ArrayLike) -> tuple[Array, Array, Array]:
-        composition = self._checked(name, z)
-        return np.asarray(T, float), np.asarray(P, float), composition
+        return *self._conditions(T, P), self._checked(name, z)
 
     def k_value(self, T: ArrayLike, P: ArrayLike, x: ArrayLike, y: ArrayLike) -> Array:
         """K_i = phi_i(liquid)/phi_i(vapour), (..., n)."""

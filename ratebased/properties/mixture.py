@@ -1,7 +1,6 @@
 """What the property models built from pure-component data share: names, checks, transport, saturation, summary."""
 from __future__ import annotations
 
-import math
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
@@ -9,6 +8,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import ArrayLike
 
+from ..arguments import finite_array, positive_array, real_array
 from ..errors import InputError
 from .bank import Basis
 from .components import PropertyRecord, PureComponents, Role, records_frame
@@ -23,6 +23,9 @@ if TYPE_CHECKING:
 
 SurfaceTension = Callable[[Array, Array, Array], Array]
 """(T, x, sigma) -> N/m of the mixture, sigma (..., n) of the pure liquids."""
+
+FRACTION_TOLERANCE = 1e-6
+"""What mole fractions may fall below zero, and their sum be off one, before a property refuses them."""
 
 
 @dataclass(frozen=True)
@@ -67,14 +70,31 @@ class MixtureModel:
         self._liquid_values = bank.view(("liquid_volume", 0), ("ln_liquid_viscosity", 0), ("liquid_conductivity", 0),
                                         ("surface_tension", 0))
 
+    def _conditions(self, T: ArrayLike, P: ArrayLike) -> tuple[Array, Array]:
+        """T inside the range of the bank, P above zero."""
+        T, P = real_array("T", T), real_array("P", P)
+        self._bank.check(T)
+        if not (P.min(initial=1.0) > 0.0 and P.max(initial=1.0) < np.inf):
+            positive_array("P", P)
+        return T, P
+
     def _checked(self, name: str, value: ArrayLike) -> Array:
-        composition = np.asarray(value, float)
+        composition = real_array(name, value)
         if composition.shape[-1:] != (len(self.names),):
             raise InputError(f"{name}: expected {len(self.names)} components on the last axis, got shape "
                              f"{composition.shape}")
-        if not math.isfinite(composition.sum()):
-            where = tuple(int(i) for i in np.argwhere(~np.isfinite(composition))[0])
-            raise InputError(f"{name}{list(where)} = {composition[where]}: expected a finite number")
+        total = composition.sum(-1)
+        # loose: iterates of a solver and differences come here too
+        if composition.size and not (composition.min() >= -FRACTION_TOLERANCE
+                                     and total.min() >= 1.0 - FRACTION_TOLERANCE
+                                     and total.max() <= 1.0 + FRACTION_TOLERANCE):
+            finite_array(name, composition)
+            if composition.min() < -FRACTION_TOLERANCE:
+                where = tuple(int(i) for i in np.argwhere(composition < -FRACTION_TOLERANCE)[0])
+                raise InputError(f"{name}{list(where)} = {composition[where]:.6g}: a mole fraction cannot be negative")
+            where = tuple(int(i) for i in np.argwhere(np.abs(total - 1.0) > FRACTION_TOLERANCE)[0])
+            raise InputError(f"{name}{list(where) if where else ''}: mole fractions sum to {total[where]:.8g}, "
+                             "expected 1")
         return composition
 
     def _liquid_composition(self, x: ArrayLike) -> Array:

@@ -101,7 +101,7 @@ class ComponentData:
     def __init__(self, names: Sequence[str]) -> None:
         from thermo import ChemicalConstantsPackage
 
-        if isinstance(names, str) or not len(names):
+        if isinstance(names, str) or not len(names) or not all(isinstance(name, str) for name in names):
             raise InputError(f"names: expected a list of component names, got {names!r}")
         self.names = tuple(names)
         self.cas = tuple("air" if name.strip().lower() == "air" else resolve(name) for name in names)

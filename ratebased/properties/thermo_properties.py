@@ -98,7 +98,7 @@ class ThermoProperties(MixtureModel):
 
         T (...) K, P (...) Pa, x and y (..., n). Raises `PropertyRangeError` outside `T_range`.
         """
-        T, P, x = np.asarray(T, float), np.asarray(P, float), self._liquid_composition(x)
+        (T, P), x = self._conditions(T, P), self._liquid_composition(x)
         ln_fugacity = self._pure.ln_fugacity(self._bank.basis(T), T, P) + self.activity.ln_gamma(T, x).value
         if self._vapor is not None:
             ln_fugacity = ln_fugacity - self._vapor.ln_phi(T, P, self._checked("y", y)).value
@@ -107,7 +107,7 @@ class ThermoProperties(MixtureModel):
 
     def k_value_derivatives(self, T: ArrayLike, P: ArrayLike, x: ArrayLike, y: ArrayLike) -> KDerivatives:
         """Analytic derivatives of ln K by temperature and mole numbers, see `KDerivatives`."""
-        T, P, x = np.asarray(T, float), np.asarray(P, float), self._liquid_composition(x)
+        (T, P), x = self._conditions(T, P), self._liquid_composition(x)
         ln_gamma, by_liquid = ln_gamma_and_derivatives(self.activity, T, x, 1)
         slope = self._pure.ln_fugacity_slope(self._bank.basis(T), T, P) + ln_gamma.terms[1]
         shape = np.broadcast_shapes(slope.shape[:-1], P.shape, np.shape(y)[:-1])
@@ -125,12 +125,12 @@ class ThermoProperties(MixtureModel):
 
     def thermodynamic_factor(self, T: ArrayLike, P: ArrayLike, x: ArrayLike) -> Array:
         """[Gamma] of the liquid, (..., n-1, n-1): delta_ij + x_i (J_ij - J_in), J the mole-number derivatives."""
-        T, x = np.asarray(T, float), self._liquid_composition(x)
+        (T, P), x = self._conditions(T, P), self._liquid_composition(x)
         return thermodynamic_factor(x, self.activity.mole_number_derivatives(T, x))
 
     def vapor_thermodynamic_factor(self, T: ArrayLike, P: ArrayLike, y: ArrayLike) -> Array:
         """[Gamma] of the vapour, (..., n-1, n-1): identity for an ideal gas."""
-        T, P, y = np.asarray(T, float), np.asarray(P, float), self._checked("y", y)
+        (T, P), y = self._conditions(T, P), self._checked("y", y)
         if self._vapor is None:
             n = len(self.names) - 1
             return np.broadcast_to(np.eye(n), (*y.shape[:-1], n, n)).copy()
@@ -140,7 +140,7 @@ class ThermoProperties(MixtureModel):
 
     def vapor_enthalpy(self, T: ArrayLike, P: ArrayLike, y: ArrayLike) -> Array:
         """Partial molar enthalpies of the vapour above the ideal gas at 298.15 K, J/mol, (..., n)."""
-        T, P, y = np.asarray(T, float), np.asarray(P, float), self._checked("y", y)
+        (T, P), y = self._conditions(T, P), self._checked("y", y)
         h = self._gas_enthalpy(self._bank.basis(T))[0]
         if self._vapor is not None:
             h = h + excess_enthalpy(T, self._vapor.ln_phi(T, P, y, 1))
@@ -148,7 +148,7 @@ class ThermoProperties(MixtureModel):
 
     def liquid_enthalpy(self, T: ArrayLike, P: ArrayLike, x: ArrayLike) -> Array:
         """Partial molar enthalpies of the liquid above the ideal gas at 298.15 K, J/mol, (..., n)."""
-        T, P, x = np.asarray(T, float), np.asarray(P, float), self._liquid_composition(x)
+        (T, P), x = self._conditions(T, P), self._liquid_composition(x)
         basis = self._bank.basis(T)
         pure = self._gas_enthalpy(basis)[0] - self._pure.enthalpy_below_gas(basis, T, P)
         return pure + excess_enthalpy(T, self.activity.ln_gamma(T, x, 1))
@@ -157,18 +157,18 @@ class ThermoProperties(MixtureModel):
         """Mole-number derivatives of the vapour's partial molar enthalpies, J/mol, (..., n, n); ideal gas: None."""
         if self._vapor is None:
             return None
-        T, P, y = np.asarray(T, float), np.asarray(P, float), self._checked("y", y)
+        (T, P), y = self._conditions(T, P), self._checked("y", y)
         vapor = self._vapor
         return excess_enthalpy_derivatives(T, lambda T: vapor.mole_number_derivatives(T, P, y))
 
     def liquid_enthalpy_derivatives(self, T: ArrayLike, P: ArrayLike, x: ArrayLike) -> Array:
         """Mole-number derivatives of the liquid's partial molar enthalpies, J/mol, (..., n, n)."""
-        T, x = np.asarray(T, float), self._liquid_composition(x)
+        (T, P), x = self._conditions(T, P), self._liquid_composition(x)
         return excess_enthalpy_derivatives(T, lambda T: self.activity.mole_number_derivatives(T, x))
 
     def vapor_heat_capacity(self, T: ArrayLike, P: ArrayLike, y: ArrayLike) -> Array:
         """dH_i/dT of the vapour at constant pressure and composition, J/(mol K), (..., n)."""
-        T, P, y = np.asarray(T, float), np.asarray(P, float), self._checked("y", y)
+        (T, P), y = self._conditions(T, P), self._checked("y", y)
         cp = self._vapor_cp(self._bank.basis(T), T, P, y)
         return spread(cp, np.broadcast_shapes(cp.shape, y.shape))
 
@@ -178,7 +178,7 @@ class ThermoProperties(MixtureModel):
 
     def liquid_heat_capacity(self, T: ArrayLike, P: ArrayLike, x: ArrayLike) -> Array:
         """dH_i/dT of the liquid at constant pressure and composition, J/(mol K), (..., n)."""
-        T, P, x = np.asarray(T, float), np.asarray(P, float), self._liquid_composition(x)
+        (T, P), x = self._conditions(T, P), self._liquid_composition(x)
         return self._liquid_cp(self._bank.basis(T), T, P, x)
 
     def _liquid_cp(self, basis: Basis, T: Array, P: Array, x: Array) -> Array:
@@ -193,7 +193,7 @@ class ThermoProperties(MixtureModel):
         Viscosity and conductivity are those of a gas at low pressure. Fields (...), diffusivity (..., n, n); see
         `VaporTransport`.
         """
-        T, P, y = np.asarray(T, float), np.asarray(P, float), self._checked("y", y)
+        (T, P), y = self._conditions(T, P), self._checked("y", y)
         density = P / (GAS_CONSTANT * T)
         if self._vapor is not None:
             density = density / self._vapor.compressibility(T, P, y)
@@ -206,7 +206,7 @@ class ThermoProperties(MixtureModel):
         Dissolved gases count in the density only (with their volume at the boiling point), in the heat capacity and in
         the diffusivities; a component not in the liquid counts nowhere. Fields (...), diffusivity (..., n, n).
         """
-        T, P, x = np.asarray(T, float), np.asarray(P, float), self._liquid_composition(x)
+        (T, P), x = self._conditions(T, P), self._liquid_composition(x)
         basis = self._bank.basis(T)
         return self._liquid_transport(basis, T, P, x, None, self._liquid_cp(basis, T, P, x))
 
@@ -217,7 +217,7 @@ class ThermoProperties(MixtureModel):
 
         T (...) K, P (...) Pa, x and y (..., n). About two thirds of the time of the separate calls.
         """
-        T, P, x = np.asarray(T, float), np.asarray(P, float), self._liquid_composition(x)
+        (T, P), x = self._conditions(T, P), self._liquid_composition(x)
         y = self._checked("y", y)
         basis = self._bank.basis(T)
         ln_gamma, J = ln_gamma_and_derivatives(self.activity, T, x, 2)
