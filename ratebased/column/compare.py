@@ -3,6 +3,7 @@ rate-based.
 """
 from __future__ import annotations
 
+import warnings
 from collections.abc import Callable
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
@@ -12,7 +13,7 @@ import numpy as np
 from correlations.overall import oconnell, oconnell_absorber
 
 from ..arguments import finite_scalar
-from ..errors import ConvergenceError, InputError
+from ..errors import ConvergenceError, InputError, RateBasedWarning
 from ..properties.protocol import Array, PropertyModel
 from ..show import Shown
 from .back_calculation import ColumnEfficiencies
@@ -197,10 +198,12 @@ def stages_for_purity(solve: Callable[[int], Profile], known: Profile, component
 
     def reached(n: int) -> bool:
         if n not in values:
-            try:
-                values[n] = solve(n).purity(component, product)
-            except (ConvergenceError, InputError):
-                values[n] = None
+            with warnings.catch_warnings():           # doubts about a trial are no doubts about the column compared
+                warnings.simplefilter("ignore", RateBasedWarning)
+                try:
+                    values[n] = solve(n).purity(component, product)
+                except (ConvergenceError, InputError):
+                    values[n] = None
         value = values[n]
         return value is not None and sign * (value - target) >= -1e-9
 
