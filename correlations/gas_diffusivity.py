@@ -9,7 +9,7 @@ from typing import NamedTuple
 import numpy as np
 
 from .errors import InputError
-from .record import Values, correlation
+from .record import Values, correlation, require
 from .validity import EXACT, UNKNOWN, Array, Confidence, Range, Validity
 
 BAR = 1e5
@@ -183,6 +183,7 @@ def wilke_lee(temperature: Values, pressure: Values, molar_mass_a: Values, molar
     """
     t, sigma = _pair(temperature, collision_diameter_a, collision_diameter_b, energy_parameter_a, energy_parameter_b)
     M = np.sqrt(2e3 / (1 / molar_mass_a + 1 / molar_mass_b))
+    require("molar_mass_a", molar_mass_a, 3.03 * M > 0.98, "a molar mass in kg/mol with which the constant is positive")
     omega = neufeld_collision_integral.silent(t)
     return 1e-3 * CM2 * (3.03 - 0.98 / M) * temperature ** 1.5 / (pressure / BAR * M * sigma ** 2 * omega)
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 import numpy as np
 
 from .constants import GRAVITY
-from .record import Values, correlation
+from .record import Values, correlation, require
 from .validity import EXACT, UNKNOWN, Array, Confidence, Validity
 
 _EXACT = Validity({}, None, "aiche_1958", Confidence.VERIFIED, range_note=EXACT, error_note=EXACT)
@@ -92,7 +92,9 @@ def bennett_tray_efficiency(point_efficiency: Values, stripping_factor: Values, 
     The pools formula with n = (Pe + 2)/2 times 1 - 0.0335 lambda^1.073 E^2.518 Pe^0.175 (the vapour's own gradient).
     """
     E, lam, Pe = point_efficiency, stripping_factor, peclet_number
-    return pools_in_series.silent(E, lam, (Pe + 2) / 2) * (1 - 0.0335 * lam ** 1.073 * E ** 2.518 * Pe ** 0.175)
+    loss = 0.0335 * lam ** 1.073 * E ** 2.518 * Pe ** 0.175
+    require("stripping_factor", stripping_factor, loss < 1, "a value that leaves an efficiency above zero")
+    return pools_in_series.silent(E, lam, (Pe + 2) / 2) * (1 - loss)
 
 
 @correlation("tray efficiency with entrainment", "trays", "-", Validity(
@@ -114,4 +116,5 @@ def bennett_entrainment_correction(tray_efficiency: Values, point_efficiency: Va
     e: entrained liquid over vapour, kg/kg.
     """
     loss = 0.8 * point_efficiency * stripping_factor ** 1.543 * entrainment_ratio / equilibrium_slope
+    require("entrainment_ratio", entrainment_ratio, loss < 1, "an entrainment that leaves an efficiency above zero")
     return tray_efficiency * (1 - loss)

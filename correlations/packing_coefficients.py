@@ -217,7 +217,10 @@ def delft_vapor(diffusivity: Values, vapor_velocity: Values, vapor_density: Valu
     Re = vapor_density * (gas + liquid) * d / vapor_viscosity
     Sc = vapor_viscosity / (vapor_density * diffusivity)
     rough = film / d / 3.7
-    xi = (-2 * np.log10(rough - 5.02 / Re * np.log10(rough + 14.5 / Re))) ** -2
+    inner = rough - 5.02 / Re * np.log10(rough + 14.5 / Re)
+    require("vapor_velocity", vapor_velocity, (inner > 0) & (inner < 1),
+            "a turbulent flow: the friction factor of a rough tube has no value at this Reynolds number")
+    xi = (-2 * np.log10(inner)) ** -2
     phi = 2 * corrugation_side / (corrugation_base + 2 * corrugation_side)
     slender = d * np.sin(corrugation_angle) / element_height
     laminar = 0.664 * np.cbrt(Sc) * np.sqrt(Re * slender)

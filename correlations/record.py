@@ -119,7 +119,10 @@ REGISTRY: dict[str, Correlation[..., Any]] = {}
 def checked(name: str, value: Any, domain: Domain, diagonal_ignored: bool = False) -> Array:
     """`value` as a float array inside `domain`; an `InputError` names the first entry that is not."""
     try:
-        array = np.asarray(value, dtype=float)
+        array = np.asarray(value)
+        if array.dtype.kind in "USc":                         # words and complex numbers are refused, not read or cut
+            raise TypeError
+        array = np.asarray(array, dtype=float)
     except (TypeError, ValueError) as error:
         raise InputError(f"{name}: expected numbers, got {value!r}") from error
     if diagonal_ignored:
@@ -136,6 +139,15 @@ def require(name: str, value: Array, holds: Mask, words: str) -> None:
         where = tuple(int(i) for i in np.argwhere(~np.asarray(holds))[0])
         shown = np.broadcast_to(value, np.shape(holds))[where]
         raise InputError(f"{name}{list(where) if where else ''} = {shown:.6g}: expected {words}", where)
+
+
+def require_finite(name: str, result: Any) -> None:
+    """Raise an `InputError` where arguments far from any hardware overflow a formula: no NaN or infinity comes out."""
+    for part in result if isinstance(result, tuple) else (result,):
+        if not np.isfinite(part).all():
+            where = tuple(int(i) for i in np.argwhere(~np.isfinite(part))[0])
+            raise InputError(f"{name}: the result{list(where) if where else ''} is not finite, the arguments lie too "
+                             "far from any it was made for")
 
 
 def correlation(predicts: str, hardware: str, unit: str, validity: Validity, *, dimensional: bool = False,
@@ -169,15 +181,21 @@ def correlation(predicts: str, hardware: str, unit: str, validity: Validity, *, 
                 inspect.signature(formula).bind(*args, **kwargs)  # raises the usual TypeError
             return record.bind(args, kwargs)
 
+        def evaluate(bound: Mapping[str, Any]) -> R:
+            with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
+                result = cast(Callable[..., R], formula)(**bound)
+            require_finite(record.name, result)
+            return result
+
         @functools.wraps(formula)
         def checked_call(*args: P.args, **kwargs: P.kwargs) -> R:
             bound = bind(args, kwargs)
             record.warn_outside(bound, 2)
-            return cast(Callable[..., R], formula)(**bound)
+            return evaluate(bound)
 
         @functools.wraps(formula)
         def silent(*args: P.args, **kwargs: P.kwargs) -> R:
-            return cast(Callable[..., R], formula)(**bind(args, kwargs))
+            return evaluate(bind(args, kwargs))
 
         checked_call.__doc__ = silent.__doc__ = described(formula.__doc__ or "", record)
         result = cast(Correlation[P, R], checked_call)
@@ -210,7 +228,8 @@ def described(text: str, record: Record) -> str:
         lines.append(f"{name} : {quantity.meaning}, {quantity.unit}")
     validity = record.validity
     lines += ["", f"Result: {record.unit}. All arguments broadcast; SI units in and out.",
-              "Raises `InputError` where an argument leaves its domain; warns `OutOfRangeWarning` outside the range.",
+              "Raises `InputError` where an argument leaves its domain or no finite result follows; warns",
+              "`OutOfRangeWarning` outside the range.",
               f"Range: {validity.describe_range()}.",
               f"Scatter: {validity.describe_error()}.",
               f"Confidence: {validity.confidence.value}.",

@@ -18,6 +18,7 @@ from correlations import (
     Validity,
     catalogue,
     gas_diffusivity,
+    mixing,
     packing,
     packing_area,
     packing_coefficients,
@@ -126,7 +127,8 @@ def test_wrong_calls_are_type_errors(function, arguments, keywords):
 
 @pytest.mark.parametrize("value, match", [
     ([300.0, -1.0], r"temperature\[1\] = -1: expected a finite number above zero"),
-    (np.inf, r"temperature = inf"), ("warm", r"temperature: expected numbers, got 'warm'"),
+    (np.inf, r"temperature = inf"), ("300", r"temperature: expected numbers, got '300'"),
+    (300.0 + 1j, r"temperature: expected numbers"), ("warm", r"temperature: expected numbers, got 'warm'"),
     ([[300.0], [np.nan]], r"temperature\[1, 0\] = nan")])
 def test_bad_input(value, match):
     with pytest.raises(InputError, match=match):
@@ -174,6 +176,23 @@ def test_tray_limits_raise():
         tray_limits.fair_flooding(0.1, 0.5, 0.02, 700.0, 600.0, 0.1)
     with pytest.raises(InputError, match="component 0"):
         gas_diffusivity.wilke_blanc([1.0, 0.0], np.full((2, 2), 1e-5))
+    with pytest.raises(InputError, match=r"entrainment_ratio\[1\] = 0.9: expected an entrainment that leaves"):
+        mixing.bennett_entrainment_correction(0.7, 0.6, 1.2, 0.5, [0.1, 0.9])
+    with pytest.raises(InputError, match="stripping_factor = 40: expected a value that leaves"):
+        mixing.bennett_tray_efficiency(0.9, 40.0, 10.0)
+    with pytest.raises(InputError, match="molar_mass_a"):
+        gas_diffusivity.wilke_lee(300.0, 1e5, 4e-5, 3e-5, 3e-10, 3e-10, 100.0, 100.0)
+
+
+def test_no_result_that_is_not_finite():
+    """Arguments far from any hardware: an error that names function and entry, never NaN or infinity."""
+    with pytest.raises(InputError, match=r"mixing.lewis_plug_flow: the result\[1\] is not finite"):
+        mixing.lewis_plug_flow(0.9, [1.0, 1e4])
+    with pytest.raises(InputError, match="mixing.gerster: the result is not finite"):
+        mixing.gerster.silent(0.9, 1e4, 1e5)
+    with pytest.raises(InputError, match=r"vapor_velocity\[0\] = 1e-06: expected a turbulent flow"):
+        packing_coefficients.delft_vapor(1e-5, [1e-6, 1.0], 1.2, 1.8e-5, 1e-6, 800.0, 5e-4, 250.0, 0.97, 0.0241, 0.0119,
+                                         0.017, 0.785, 0.21)
 
 
 def test_diffusion_volume_errors():
