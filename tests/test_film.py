@@ -29,6 +29,7 @@ from ratebased.film import (
     krishna_standart,
     linearized,
     numerical,
+    solutions,
 )
 from ratebased.maxwell_stefan import dissipation, entropy_production
 
@@ -364,6 +365,33 @@ def test_unstable_mixture() -> None:
 
     with pytest.raises(UnstableMixtureError):
         numerical([0.05, 0.95], [0.95, 0.05], 1.0, 1.0, Equimolar(), gamma=spinodal)
+
+
+def test_unstable_face() -> None:
+    """[Gamma] as a function: a face inside the spinodal counts too, though the mean composition is stable."""
+    def gamma(x: np.ndarray) -> np.ndarray:
+        return (1.0 - 6.0 * x[..., 0] * x[..., 1])[..., None, None]
+
+    stable, unstable = [0.98, 0.02], [0.7, 0.3]
+    assert gamma(np.array([0.84, 0.16])) > 0
+    for faces in ((stable, unstable), (unstable, stable)):
+        for method in (*METHODS, solutions):
+            with pytest.raises(UnstableMixtureError):
+                method(*faces, 0.01, 40.0, Equimolar(), gamma=gamma)
+    found = krishna_standart([stable] * 2, [unstable, [0.9, 0.1]], 0.01, 40.0, Equimolar(), gamma=gamma, throw=False)
+    assert list(found.status) == [FilmStatus.UNSTABLE, FilmStatus.CONVERGED]
+    assert np.isnan(found.N[0]).all() and np.isfinite(found.N[1]).all()
+
+
+def test_failed_films_have_no_derivatives_and_spoil_none() -> None:
+    """NaN for the film that has no solution, the others as if alone."""
+    x0, xd, kappa = film(3)
+    found = krishna_standart([[1.0, 0.0, 0.0], x0], [[0.0, 0.5, 0.5], xd], kappa, 40.0, Stagnant(0), throw=False)
+    alone = krishna_standart(x0, xd, kappa, 40.0, Stagnant(0))
+    for many, one in ((found.derivatives(), alone.derivatives()), (found.blocks(), alone.blocks())):
+        for name in vars(one):
+            assert np.isnan(getattr(many, name)[0]).all()
+            assert_allclose(getattr(many, name)[1], getattr(one, name), rtol=1e-9, atol=1e-12)
 
 
 def test_not_converged_is_a_named_error(monkeypatch: pytest.MonkeyPatch) -> None:

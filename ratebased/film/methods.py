@@ -24,6 +24,7 @@ from .problem import (
     Composition,
     FilmProblem,
     FilmStatus,
+    Mask,
     Solved,
     checked_fractions,
     existence,
@@ -65,7 +66,8 @@ def krishna_standart(x0: ArrayLike, xd: ArrayLike, kappa: ArrayLike | Compositio
 
     Raises
     ------
-    InputError : bad arguments. UnstableMixtureError : an eigenvalue of [Gamma] is not positive.
+    InputError : bad arguments. UnstableMixtureError : an eigenvalue of [Gamma] is not positive (of
+        a function: at the mean composition or at a face).
     NoSolutionError : the bootstrap leaves none, or no single, solution. ConvergenceError : none was found.
 
     Warns: `OtherSolutionWarning` (the root lies beyond a fold; seen only at diffusivity ratios above 50),
@@ -83,7 +85,7 @@ def solve_frozen(solver: Solver, rate: RateFactor, x0: ArrayLike, xd: ArrayLike,
         return report(problem, solve_problem(solver, problem, throw), rate, throw)
     x0, xd, mean = faces_and_mean(x0, xd)
     problem = pose(x0, xd, evaluated("kappa", kappa, mean), c_t, bootstrap, evaluated_gamma(gamma, mean))
-    flux = report(problem, solve_problem(solver, problem, throw), rate, throw)
+    flux = report(problem, solve_problem(solver, problem, throw, unstable_faces(gamma, x0, xd, problem)), rate, throw)
     averaged = pose(x0, xd, _simpson("kappa", kappa, x0, xd), c_t, bootstrap,
                     None if gamma is None else _simpson("gamma", gamma, x0, xd))
     other = solve_problem(solver, averaged, False).N
@@ -122,11 +124,13 @@ def _simpson(name: str, value: ArrayLike | Composition, x0: Array, xd: Array) ->
     return (evaluated(name, value, x0) + 4.0 * mean + evaluated(name, value, xd)) / 6.0
 
 
-def solve_problem(solver: Solver, problem: FilmProblem, throw: bool) -> Solved:
+def solve_problem(solver: Solver, problem: FilmProblem, throw: bool, unstable_at_face: Mask | None = None) -> Solved:
     """Solve the films for which a solution may exist; `UnstableMixtureError` if `throw`."""
     status = existence(problem)
     if problem.gamma is not None:
         unstable = unstable_films(problem.gamma)
+        if unstable_at_face is not None:
+            unstable = unstable | unstable_at_face
         if throw and unstable.any():
             raise UnstableMixtureError(f"gamma, {film_names(unstable, problem.shape)}: an eigenvalue is not positive, "
                                        "the liquid would split: no steady film exists")
@@ -162,6 +166,14 @@ def solve_film(problem: FilmProblem) -> Solved:
 def unstable_films(gamma: Array) -> NDArray[np.bool_]:
     """Where [Gamma] has an eigenvalue whose real part is not positive, (M)."""
     return np.asarray(np.linalg.eigvals(gamma).real.min(-1) <= 0)
+
+
+def unstable_faces(gamma: ArrayLike | Composition | None, x0: Array, xd: Array, problem: FilmProblem) -> Mask | None:
+    """Where a [Gamma] that is a function of x has such an eigenvalue at one of the faces, (M); None: it is constant."""
+    if not callable(gamma):
+        return None
+    at_face = [unstable_films(evaluated("gamma", gamma, x)) for x in (x0, xd)]
+    return np.broadcast_to(at_face[0] | at_face[1], problem.shape).reshape(-1)
 
 
 def report(problem: FilmProblem, solved: Solved, rate: RateFactor, throw: bool, error: Array | None = None) -> FilmFlux:

@@ -17,7 +17,7 @@ from .exact import (
     pivoted,
     rate_factors,
 )
-from .methods import evaluated, evaluated_gamma, faces_and_mean, report, unstable_films
+from .methods import evaluated, evaluated_gamma, faces_and_mean, report, unstable_faces, unstable_films
 from .problem import Array, Composition, FilmProblem, FilmStatus, Mask, Solved, pose
 from .result import FilmFlux, RateFactor
 from .spectral import profile_shape
@@ -48,7 +48,8 @@ def solutions(x0: ArrayLike, xd: ArrayLike, kappa: ArrayLike | Composition, c_t:
     one = pose(x0, xd, evaluated("kappa", kappa, mean), c_t, bootstrap, evaluated_gamma(gamma, mean))
     if one.shape:
         raise InputError(f"solutions: one film at a time, got a batch of shape {one.shape}")
-    if one.gamma is not None and unstable_films(one.gamma).any():
+    faces = unstable_faces(gamma, x0, xd, one)
+    if one.gamma is not None and (unstable_films(one.gamma).any() or (faces is not None and faces.any())):
         raise UnstableMixtureError("gamma: an eigenvalue is not positive, the liquid would split: no steady film")
     films = one.take(np.zeros(starts, dtype=np.intp))
     inner, order = pivoted(films)

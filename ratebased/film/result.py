@@ -175,18 +175,37 @@ class FilmFlux(Shown):
         return regimes(self.N, self.x0, self.xd)
 
     def blocks(self) -> FilmBlocks:
-        """Residual and Jacobian of the film equations at N, with [Gamma] held constant. Raises InputError."""
+        """Residual and Jacobian of the film equations at N, with [Gamma] held constant; NaN for a film without N.
+
+        Raises InputError for a method that has no film equations.
+        """
+        blocks = self._blocks()
+        return FilmBlocks(*(self._where_solved(part) for part in vars(blocks).values()))
+
+    def _blocks(self) -> FilmBlocks:
+        """The same, with zero fluxes for a film without N."""
         if self.rate is RateFactor.NONE:
             raise InputError("blocks, derivatives: this method has no film equations; take differences of N")
         form = coth_blocks if self.rate is RateFactor.FLUXES else linearized_blocks
-        return form(self.N, self._K, self.x0, self.xd, self.gamma)
+        return form(self._finite_N, self._K, self.x0, self.xd, self.gamma)
+
+    @cached_property
+    def _finite_N(self) -> Array:
+        return np.where(np.isfinite(self.N), self.N, 0.0)
+
+    def _where_solved(self, part: Array) -> Array:
+        """`part`, batch axes first, with NaN for the films without N."""
+        lost = ~np.isfinite(self.N).all(-1)
+        if not lost.any():
+            return part
+        return np.where(lost.reshape(*lost.shape, *[1] * (part.ndim - lost.ndim)), np.nan, part)
 
     def derivatives(self) -> FilmDerivatives:
         """dN by x0, xd and kappa through the implicit function theorem, [Gamma] and the bootstrap held constant.
 
         For `krishna_standart` and `linearized`; InputError for the other methods.
         """
-        blocks = self.blocks()
+        blocks = self._blocks()
         n = self.N.shape[-1]
         batch = self.N.shape[:-1]
         J = np.concatenate((np.broadcast_to(blocks.dN, (*batch, n - 1, n)),
@@ -195,7 +214,7 @@ class FilmFlux(Shown):
         right[..., :-1, :n - 1] = blocks.dx0
         right[..., :-1, n - 1:2 * (n - 1)] = blocks.dxd
         right[..., :-1, 2 * (n - 1):] = self._pair_columns()
-        solved = -solve(J, right)
+        solved = self._where_solved(-solve(J, right))
         by_K = solved[..., 2 * (n - 1):].reshape(*batch, n, n, n)
         off = ~np.eye(n, dtype=bool)
         kappa = np.where(off, self.kappa, 1.0)
@@ -210,8 +229,8 @@ class FilmFlux(Shown):
         pair = np.einsum("ik,jl->ijkl", one, one) + np.einsum("il,jk->ijkl", one, one)
         pair = (pair * ~np.eye(n, dtype=bool)).reshape(n * n, n, n)
         mean = np.broadcast_to(0.5 * (self.x0 + self.xd), self.N.shape)[..., None, :]
-        N = self.N[..., None, :]
-        carried = N if self.rate is RateFactor.FLUXES else mean * self.N_t[..., None, None]
+        N = self._finite_N[..., None, :]
+        carried = N if self.rate is RateFactor.FLUXES else mean * N.sum(-1, keepdims=True)
         directions = solve(self._gamma[..., None, :, :], reduced(film_matrix(carried, pair)))
         D = np.broadcast_to((self.x0 - self.xd)[..., :-1], (*batch, n - 1))
         Z = np.broadcast_to(self._rate_factor, (*batch, n - 1, n - 1))
