@@ -255,7 +255,10 @@ def overall_transfer_units(problem: Problem, state: RateState, transferred: Tran
     area = np.broadcast_to(k.area, V.shape)
     vapor = film_transfer_units(k.kappa_vapor, transferred.c_vapor, area, V, state.v[c] / V[:, None])
     liquid = film_transfer_units(k.kappa_liquid, transferred.c_liquid, area, L, state.l[c] / L[:, None])
-    K = state.y_I / np.maximum(state.z[:, n:2 * n], 1e-300)
+    # Not y_I/x_I: of a trace an iterate's ratio is noise, and a trace can have the most units.
+    x_I, y_I = state.z[:, n:2 * n], state.y_I
+    K = problem.properties.k_value(state.z[:, 2 * n], problem.P[c], x_I / x_I.sum(1, keepdims=True),
+                                   y_I / y_I.sum(1, keepdims=True))
     S = np.maximum(K, 1e-12) * (V / L)[:, None]
     units = np.where(problem.ordinary, 1.0 / (1.0 / vapor + S / liquid), 0.0)
     return np.asarray(units.max(1)), np.asarray((S * units).max(1))
