@@ -37,7 +37,7 @@ def test_random_columns(make: object, seeds: range) -> None:
 @pytest.mark.parametrize("seed", [362, 366, 403, 404])
 @pytest.mark.filterwarnings("ignore::ratebased.errors.RateBasedWarning")
 def test_traces_with_the_most_transfer_units(seed: int) -> None:
-    # Mole fractions of 1e-16 and less decide the shares of these beds; K from an iterate's y_I/x_I went round in circles.
+    # Mole fractions of 1e-16 and less decide the shares of these beds; an iterate's y_I/x_I went round in circles.
     outcome = solve(distillation(seed))
     assert outcome.rate is not None, outcome.errors
     assert outcome.rate.report.iterations < 20
