@@ -54,7 +54,9 @@ class CubicProperties(MixtureModel):
     # equilibrium ------------------------------------------------------------------------------------------------
 
     def _state(self, T: ArrayLike, P: ArrayLike, name: str, z: ArrayLike) -> tuple[Array, Array, Array]:
-        return *self._conditions(T, P), self._checked(name, z)
+        T, P = self._conditions(T, P)
+        self._bank.check(T)
+        return T, P, self._checked(name, z)
 
     def k_value(self, T: ArrayLike, P: ArrayLike, x: ArrayLike, y: ArrayLike) -> Array:
         """K_i = phi_i(liquid)/phi_i(vapour), (..., n)."""

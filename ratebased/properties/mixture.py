@@ -1,6 +1,7 @@
 """What the property models built from pure-component data share: names, checks, transport, saturation, summary."""
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
@@ -51,6 +52,7 @@ class MixtureModel:
         roles = components.roles
         self.components = components
         self.names = components.names
+        self._ones = np.ones(len(components.names))
         self.molar_mass = components.molar_mass
         self.condensable: Mask = np.array([role is not Role.NONCONDENSING for role in roles])
         self.volatile: Mask = np.array([role is not Role.NONVOLATILE for role in roles])
@@ -71,10 +73,9 @@ class MixtureModel:
                                         ("surface_tension", 0))
 
     def _conditions(self, T: ArrayLike, P: ArrayLike) -> tuple[Array, Array]:
-        """T inside the range of the bank, P above zero."""
+        """T and P as arrays, P above zero; the bank checks T."""
         T, P = real_array("T", T), real_array("P", P)
-        self._bank.check(T)
-        if not (P.min(initial=1.0) > 0.0 and P.max(initial=1.0) < np.inf):
+        if not (np.minimum.reduce(P, axis=None, initial=1.0) > 0.0 and math.isfinite(np.add.reduce(P, axis=None))):
             positive_array("P", P)
         return T, P
 
@@ -83,11 +84,11 @@ class MixtureModel:
         if composition.shape[-1:] != (len(self.names),):
             raise InputError(f"{name}: expected {len(self.names)} components on the last axis, got shape "
                              f"{composition.shape}")
-        total = composition.sum(-1)
+        total = composition @ self._ones
+        off = np.maximum.reduce(np.abs(total - 1.0), axis=None, initial=0.0)
         # loose: iterates of a solver and differences come here too
-        if composition.size and not (composition.min() >= -FRACTION_TOLERANCE
-                                     and total.min() >= 1.0 - FRACTION_TOLERANCE
-                                     and total.max() <= 1.0 + FRACTION_TOLERANCE):
+        if not (off <= FRACTION_TOLERANCE
+                and np.minimum.reduce(composition, axis=None, initial=0.0) >= -FRACTION_TOLERANCE):
             finite_array(name, composition)
             if composition.min() < -FRACTION_TOLERANCE:
                 where = tuple(int(i) for i in np.argwhere(composition < -FRACTION_TOLERANCE)[0])

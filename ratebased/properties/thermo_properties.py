@@ -126,11 +126,13 @@ class ThermoProperties(MixtureModel):
     def thermodynamic_factor(self, T: ArrayLike, P: ArrayLike, x: ArrayLike) -> Array:
         """[Gamma] of the liquid, (..., n-1, n-1): delta_ij + x_i (J_ij - J_in), J the mole-number derivatives."""
         (T, P), x = self._conditions(T, P), self._liquid_composition(x)
+        self._bank.check(T)
         return thermodynamic_factor(x, self.activity.mole_number_derivatives(T, x))
 
     def vapor_thermodynamic_factor(self, T: ArrayLike, P: ArrayLike, y: ArrayLike) -> Array:
         """[Gamma] of the vapour, (..., n-1, n-1): identity for an ideal gas."""
         (T, P), y = self._conditions(T, P), self._checked("y", y)
+        self._bank.check(T)
         if self._vapor is None:
             n = len(self.names) - 1
             return np.broadcast_to(np.eye(n), (*y.shape[:-1], n, n)).copy()
@@ -158,12 +160,14 @@ class ThermoProperties(MixtureModel):
         if self._vapor is None:
             return None
         (T, P), y = self._conditions(T, P), self._checked("y", y)
+        self._bank.check(T)
         vapor = self._vapor
         return excess_enthalpy_derivatives(T, lambda T: vapor.mole_number_derivatives(T, P, y))
 
     def liquid_enthalpy_derivatives(self, T: ArrayLike, P: ArrayLike, x: ArrayLike) -> Array:
         """Mole-number derivatives of the liquid's partial molar enthalpies, J/mol, (..., n, n)."""
         (T, P), x = self._conditions(T, P), self._liquid_composition(x)
+        self._bank.check(T)
         return excess_enthalpy_derivatives(T, lambda T: self.activity.mole_number_derivatives(T, x))
 
     def vapor_heat_capacity(self, T: ArrayLike, P: ArrayLike, y: ArrayLike) -> Array:
