@@ -19,7 +19,7 @@ sys.path.insert(0, str(Path(__file__).resolve().parents[1] / "column"))
 from random_columns import absorber, distillation, solve
 
 from ratebased.column import feed_back_error, solve_equilibrium
-from ratebased.errors import ConvergenceError
+from ratebased.errors import ConvergenceError, InputError
 
 
 def spread(values):
@@ -51,7 +51,12 @@ def sweep(title, make, wanted):
             continue
         paths[outcome.rate.report.path] += 1
         table = outcome.rate.efficiency()
-        for kind, efficiency in (("vaporisation", table.vaporization_set()), ("Murphree", table.murphree_set())):
+        for kind, make_set in (("vaporisation", table.vaporization_set), ("Murphree", table.murphree_set)):
+            try:
+                efficiency = make_set()
+            except InputError as error:                   # a pole
+                print(f"  seed {seed}, {kind} set: {error}")
+                continue
             try:
                 again = solve_equilibrium(outcome.case.column, outcome.case.properties, efficiency)
                 fed[kind].append(feed_back_error(again, outcome.rate))
