@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING, Any, TypeVar
 import numpy as np
 from numpy.typing import ArrayLike
 
+from ..arguments import finite_array
 from ..errors import InputError
 from .activity import ActivityModel, Ideal, Nrtl, Unifac, Uniquac, Wilson
 from .components import PropertyRecord, PureComponents, Role
@@ -76,12 +77,15 @@ def build(model: type[Model], names: Sequence[str], activity: str | ActivityMode
         raise InputError("parameters: an activity model given as an object has its own")
     if k_ij is not None and (not isinstance(vapor, str) or vapor == "ideal"):
         raise InputError("k_ij: an ideal vapour has none, and a vapour model given as an object has its own")
+    for label, value, method in (("activity", activity, "ln_gamma"), ("vapor", vapor, "ln_phi")):
+        if not isinstance(value, str) and not hasattr(value, method):
+            raise InputError(f"{label}: expected a word or a model, got {value!r}")
     data = ComponentData(names)
     roles = _roles(data.names, noncondensing, nonvolatile, list(henry))
     liquids = [i for i, role in enumerate(roles) if role.has_liquid_data]
     if not liquids:
         raise InputError("names: no component is a liquid of its own")
-    span = default_range(data, roles) if T_range is None else (float(T_range[0]), float(T_range[1]))
+    span = default_range(data, roles) if T_range is None else _span(T_range)
     law = _henry_law(data, roles, liquids, henry)
     mixing = activity if not isinstance(activity, str) else _activity(data, liquids, activity, parameters)
     components = pure_components(data, roles, span)
@@ -99,7 +103,7 @@ def build_cubic(model: type[CubicModel], names: Sequence[str], equation: str | C
                 surface_tension: SurfaceTension | None) -> CubicModel:
     """A `CubicProperties` of components given by name or CAS number; see `CubicProperties.from_names`."""
     data = ComponentData(names)
-    components = pure_components(data, [Role.ORDINARY] * len(names), (float(T_range[0]), float(T_range[1])),
+    components = pure_components(data, [Role.ORDINARY] * len(names), _span(T_range),
                                  from_equation_of_state=True)
     form: CubicForm = chosen("equation", equation, EQUATIONS) if isinstance(equation, str) else equation
     cubic = CubicEquation(form, components.critical_temperature, components.critical_pressure,
@@ -155,6 +159,14 @@ def _roles(names: Sequence[str], noncondensing: Sequence[str], nonvolatile: Sequ
     return [roles[name] for name in names]
 
 
+def _span(T_range: tuple[float, float]) -> tuple[float, float]:
+    """(low, high) of a temperature range, K."""
+    span = finite_array("T_range", T_range)
+    if span.shape != (2,):
+        raise InputError(f"T_range = {T_range!r}: expected (low, high), K")
+    return float(span[0]), float(span[1])
+
+
 def _henry_law(data: ComponentData, roles: Sequence[Role], liquids: Sequence[int], henry: HenryArgument
                ) -> HenryLaw | None:
     rows = []
@@ -163,6 +175,8 @@ def _henry_law(data: ComponentData, roles: Sequence[Role], liquids: Sequence[int
             continue
         gas = data.names[i]
         given = henry[gas] if isinstance(henry, Mapping) else {}
+        if not isinstance(given, Mapping):
+            raise InputError(f"henry[{gas!r}] = {given!r}: expected {{solvent: HenryConstant}}")
         for solvent in given:
             if solvent not in [data.names[j] for j in liquids]:
                 raise InputError(f"henry[{gas!r}]: {solvent!r} is no liquid of this mixture")
@@ -177,6 +191,8 @@ def _henry_law(data: ComponentData, roles: Sequence[Role], liquids: Sequence[int
             if constant is None:
                 raise InputError(f"henry: no constant of {gas} in {solvent}; give one as "
                                  f"{{{gas!r}: {{{solvent!r}: HenryConstant(...)}}}}")
+            if not isinstance(constant, HenryConstant):
+                raise InputError(f"henry[{gas!r}][{solvent!r}] = {constant!r}: expected a HenryConstant")
             row.append(constant)
         rows.append(row)
     return HenryLaw(rows) if rows else None

@@ -13,7 +13,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 from numpy.typing import ArrayLike
 
-from ..arguments import finite_array, mole_fractions, positive_array
+from ..arguments import batch_shape, finite_array, mole_fractions, positive_array
 from ..errors import ConvergenceError, InputError, PropertyRangeError
 from .differences import k_value_derivatives
 from .protocol import Array, Mask, PropertyModel
@@ -64,7 +64,8 @@ def _saturation_point(properties: PropertyModel, P: ArrayLike, known_name: str, 
     condensable, volatile = np.asarray(properties.condensable, bool), np.asarray(properties.volatile, bool)
     ordinary = condensable & volatile
     known_mask, other_mask = (condensable, volatile) if sign > 0 else (volatile, condensable)
-    batch = np.broadcast_shapes(P.shape, z.shape[:-1], () if T_guess is None else np.shape(T_guess))
+    guess = None if T_guess is None else positive_array("T_guess", T_guess)
+    batch = batch_shape(P=P.shape, T_guess=() if guess is None else guess.shape, **{known_name: z.shape[:-1]})
     absent = (z > 0) & ~known_mask
     if absent.any():
         i = int(np.argwhere(absent)[0][-1])
@@ -83,8 +84,7 @@ def _saturation_point(properties: PropertyModel, P: ArrayLike, known_name: str, 
     low, high = getattr(properties, "T_range", UNLIMITED)
     bounded = (low, high) != UNLIMITED
     middle = 0.5 * (low + high) if bounded else DEFAULT_START
-    guess = np.asarray(middle) if T_guess is None else positive_array("T_guess", T_guess)
-    start = np.clip(np.broadcast_to(guess, batch), low, high).reshape(-1)
+    start = np.clip(np.broadcast_to(middle if guess is None else guess, batch), low, high).reshape(-1)
     problem = _Problem(properties, P.reshape(-1), z.reshape(-1, n), fixed.reshape(-1, n),
                        (ordinary & (z > 0)).reshape(-1, n), sign, (low, high))
     first = None if w_guess is None else np.broadcast_to(finite_array("guess", w_guess), (*batch, n)).reshape(-1, n)

@@ -1,11 +1,13 @@
 """Vapours that are not ideal gases, at low to moderate pressure, beside a liquid described by activity coefficients."""
 from __future__ import annotations
 
+import warnings
 from typing import Protocol
 
 import numpy as np
 from numpy.typing import ArrayLike
 
+from ..errors import PropertyRangeError, PropertyWarning
 from .activity.parameters import pair_coefficients
 from .components import PureComponents
 from .jet import Jet, common_state, temperature
@@ -50,6 +52,7 @@ class VirialVapor:
         self._critical_temperature = np.sqrt(Tc[:, None] * Tc) * (1.0 - k)
         volume = ((np.cbrt(Vc)[:, None] + np.cbrt(Vc)) / 2.0) ** 3
         # R Tc_ij/Pc_ij with Pc_ij = Zc_ij R Tc_ij/Vc_ij
+        self._pure_temperature, self._pure_pressure = Tc, Pc
         self._size = 2.0 * volume / (Zc[:, None] + Zc)
         self._acentric = (omega[:, None] + omega) / 2.0
 
@@ -80,11 +83,24 @@ class VirialVapor:
         return derivative
 
     def compressibility(self, T: Array, P: Array, y: Array) -> Array:
-        """1 + B P/(R T), (...)."""
+        """1 + B P/(R T), (...).
+
+        Warns `PropertyWarning` where P/Pc exceeds half of T/Tc (both of the mixture, mole-fraction means); raises
+        `PropertyRangeError` where no volume above zero is left.
+        """
         T, P, y = common_state(T, P, y)
         B = self._second_virial(T, 0).value
         mixture = ((B @ y[..., None])[..., 0] * y).sum(-1)
         result: Array = 1.0 + mixture * P / (GAS_CONSTANT * T)
+        limit = 0.5 * T * (y @ self._pure_pressure) / (y @ self._pure_temperature)
+        for wrong, what in ((result <= 0.0, "leaves no volume"), (P > limit, "is beyond its range")):
+            if wrong.any():
+                where = tuple(int(i) for i in np.argwhere(wrong)[0])
+                message = (f"P{list(where) if where else ''} = {P[where]:.6g} Pa at {T[where]:.6g} K: the second "
+                           f"virial coefficient {what} (about {limit[where]:.3g} Pa); use an equation of state")
+                if what == "leaves no volume":
+                    raise PropertyRangeError(message)
+                warnings.warn(message, PropertyWarning, stacklevel=3)
         return result
 
     def describe(self) -> str:

@@ -4,7 +4,7 @@ from __future__ import annotations
 import numpy as np
 import pytest
 
-from ratebased.errors import InputError, PropertyRangeError
+from ratebased.errors import InputError, PropertyRangeError, PropertyWarning
 from ratebased.properties import ConstantVolatility, CubicProperties, ThermoProperties, bubble_point
 
 NAMES = ["methanol", "water"]
@@ -77,3 +77,14 @@ def test_names_are_words():
     """Numbers are no names."""
     with pytest.raises(InputError, match="names: expected a list of component names"):
         ThermoProperties.from_names([1, 2])
+
+
+def test_second_virial_coefficient_beyond_its_range():
+    """A warning above P/Pc = (T/Tc)/2, an error where the volume is gone; never a negative density."""
+    model = ThermoProperties.from_names(NAMES, vapor="virial")
+    assert model.vapor_transport(350.0, 1e5, X).molar_density > 0.0
+    T, P, y = np.array(430.0), np.array([2e5, 8e6]), np.array([0.0, 1.0])
+    with pytest.warns(PropertyWarning, match=r"P\[1\] = 8e\+06 Pa at 430 K.*beyond its range"):
+        assert (model._vapor.compressibility(T, P, y) > 0.0).all()
+    with pytest.raises(PropertyRangeError, match=r"P\[1\] = 1e\+08 Pa at 350 K.*leaves no volume"):
+        model.vapor_transport(350.0, [1e5, 1e8], X)

@@ -93,6 +93,7 @@ def test_component_that_does_not_evaporate():
     (lambda m: bubble_point(m, P, [0.5, 0.5, 0.0], y_noncondensing=[0.0, 0.0, 1.0]), "y_noncondensing"),
     (lambda m: dew_point(m, P, [0.0, 0.0, 1.0]), "no component that is both"),
     (lambda m: bubble_point(m, P, [0.5, 0.5, 0.0], T_guess=0.0), "T_guess = 0"),
+    (lambda m: bubble_point(m, [P, P], np.full((3, 3), [0.5, 0.5, 0.0])), r"do not broadcast: P \(2,\), x \(3,\)"),
 ])
 def test_bad_arguments_are_named(call, words):
     gas = ConstantVolatility(["a", "b", "g"], [4.0, 2.0, 1.0], 3e4, a=20.0, b=3600.0, condensable=[True, True, False])

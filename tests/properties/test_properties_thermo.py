@@ -346,7 +346,14 @@ def test_nonvolatile_component():
     (lambda: ThermoProperties.from_names(["ethanol", "water"], "margules"), "expected one of ideal, unifac"),
     (lambda: ThermoProperties.from_names(["monoethanolamine", "chloroform"]), "monoethanolamine and chloroform"),
     (lambda: ThermoProperties.from_names(["ethanol", "water"], T_range=(400, 300)), "T_range"),
+    (lambda: ThermoProperties.from_names(["ethanol", "water"], T_range=(300, 350, 400)), "expected .low, high."),
+    (lambda: ThermoProperties.from_names(["ethanol", "water"], T_range=("cold", "hot")), "T_range: expected numbers"),
+    (lambda: ThermoProperties.from_names(["oxygen", "water"], "ideal", henry={"oxygen": 4e9}), "henry.'oxygen'. = 4"),
+    (lambda: ThermoProperties.from_names(["oxygen", "water"], "ideal", henry={"oxygen": {"water": 4e9}}),
+     "expected a HenryConstant"),
     (lambda: ThermoProperties.from_names(["ethanol", "water"], vapor="cubic"), "vapor: expected one of"),
+    (lambda: ThermoProperties.from_names(["ethanol", "water"], vapor=None), "vapor: expected a word or a model"),
+    (lambda: ThermoProperties.from_names(["ethanol", "water"], None), "activity: expected a word or a model, got None"),
     (lambda: ThermoProperties.from_names(["ethanol", "water"], Nrtl(3, tau_b=1.0)), "a model of 3 components for 2"),
 ])
 def test_what_cannot_be_described_is_named(call, words):
