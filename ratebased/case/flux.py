@@ -95,7 +95,8 @@ class InterfaceCase:
 
     def solve(self) -> InterfaceFlux:
         """The fluxes and the state of the interface; errors as for `interface_flux`."""
-        return interface_flux(self.vapor, self.liquid, self.properties, self.P, film=METHODS[self.method])
+        return interface_flux(self.vapor, self.liquid, self.properties, self.P, film=METHODS[self.method],
+                              estimate=True)
 
 
 def read_flux_case(path: Path) -> FilmCase | InterfaceCase:
