@@ -2,6 +2,7 @@
 """Pressure drop of packings per bed height."""
 from __future__ import annotations
 
+from collections.abc import Callable
 from typing import NamedTuple
 
 import numpy as np
@@ -10,7 +11,8 @@ from .constants import FOOT, GRAVITY, INCH_WATER_PER_FOOT
 from .errors import NoPhysicalRootError
 from .packing_coefficients import bravo_equivalent_diameter
 from .record import Values, correlation, require
-from .validity import UNKNOWN, Array, Confidence, Range, Validity
+from .rootfinding import climbed_root
+from .validity import UNKNOWN, Array, Confidence, Mask, Range, Validity
 
 POUND = 0.45359237
 POUND_PER_FT3 = POUND / FOOT ** 3
@@ -108,6 +110,14 @@ def stichlmair_dry(vapor_velocity: Values, vapor_density: Values, vapor_viscosit
     return (0.75 * f_0 * (1 - void_fraction) / void_fraction ** 4.65 * vapor_density * vapor_velocity ** 2 / d_p)
 
 
+def _below_flooding(wet: Callable[[Array], tuple[Array, Array, Mask]], dry: Array) -> Array:
+    """Dimensionless pressure drop of the irrigated bed, the lower root; `NoPhysicalRootError` where there is none."""
+    y, failed = climbed_root(wet, dry)
+    if failed.any():
+        raise NoPhysicalRootError("vapor_velocity: the bed is beyond flooding", failed)
+    return y
+
+
 @correlation("pressure drop and holdup", "random and structured packings", "-; Pa m-1", _STICHLMAIR)
 def stichlmair(vapor_velocity: Values, vapor_density: Values, vapor_viscosity: Values, liquid_velocity: Values,
                liquid_density: Values, specific_area: Values, void_fraction: Values, laminar_friction: Values,
@@ -127,23 +137,19 @@ def stichlmair(vapor_velocity: Values, vapor_density: Values, vapor_viscosity: V
     h_0 = 0.555 * np.cbrt(liquid_velocity ** 2 * specific_area / (GRAVITY * void_fraction ** 4.65))
     power = (2 + c) / 3
     dry, h_0, eps, power, factor = np.broadcast_arrays(dry, h_0, void_fraction, power, loading_factor)
-    y = dry.copy()
-    failed = np.zeros(y.shape, bool)
-    for _ in range(100):  # the wet curve is convex in y: Newton climbs from below to the lower root
-        h = h_0 * (1 + factor * y ** 2)
-        failed |= h >= eps
-        free = np.where(failed, 1.0, eps - h)
-        wet = dry * ((1 - eps + h) / (1 - eps)) ** power * (eps / free) ** 4.65
-        slope = wet * (power / (1 - eps + h) + 4.65 / free) * 2 * factor * h_0 * y
-        failed |= slope >= 1
-        open_ = ~failed & (np.abs(wet - y) > 1e-14 * wet)
-        if not open_.any():
-            break
-        y = np.where(open_, y + (wet - y) / np.where(open_, 1 - slope, 1.0), y)
-    failed |= open_
-    if failed.any():
-        raise NoPhysicalRootError("vapor_velocity: the bed is beyond flooding", failed)
-    return HoldupAndPressureDrop(h, y * weight)
+
+    def holdup(y: Array) -> Array:
+        return np.asarray(h_0 * (1 + factor * y ** 2))
+
+    def wet(y: Array) -> tuple[Array, Array, Mask]:
+        h = holdup(y)
+        full = h >= eps
+        free = np.where(full, 1.0, eps - h)
+        value = dry * ((1 - eps + h) / (1 - eps)) ** power * (eps / free) ** 4.65
+        return value, value * (power / (1 - eps + h) + 4.65 / free) * 2 * factor * h_0 * y, full
+
+    y = _below_flooding(wet, dry)
+    return HoldupAndPressureDrop(holdup(y), y * weight)
 
 
 @correlation("pressure drop", "random and structured packings", "Pa m-1", Validity(
@@ -222,22 +228,16 @@ def rocha_bravo_fair(vapor_velocity: Values, vapor_density: Values, vapor_viscos
         3 * liquid_viscosity * liquid_velocity
         / (liquid_density * np.sin(corrugation_angle) * void_fraction * gravity))
     dry, still, K_2 = np.broadcast_arrays(dry / flood_pressure_gradient, still, K_2)
-    y = dry.copy()
-    failed = np.zeros(y.shape, bool)
-    for _ in range(100):  # the wet curve is convex in y: Newton climbs from below to the lowest root
-        failed |= y >= 1
-        left = np.where(failed, 1.0, 1 - y)
-        h = still * left ** (-1 / 3)
-        failed |= K_2 * h >= 1
-        room = np.where(failed, 1.0, 1 - K_2 * h)
-        wet = dry * room ** -5.0
-        slope = wet * 5 * K_2 / room * h / (3 * left)
-        failed |= slope >= 1
-        open_ = ~failed & (np.abs(wet - y) > 1e-14 * wet)
-        if not open_.any():
-            break
-        y = np.where(open_, y + (wet - y) / np.where(open_, 1 - slope, 1.0), y)
-    failed |= open_
-    if failed.any():
-        raise NoPhysicalRootError("vapor_velocity: the bed is beyond flooding", failed)
-    return HoldupAndPressureDrop(h, y * flood_pressure_gradient)
+
+    def holdup(y: Array) -> Array:
+        return np.asarray(still * np.where(y < 1, 1 - y, 1.0) ** (-1 / 3))
+
+    def wet(y: Array) -> tuple[Array, Array, Mask]:
+        h = holdup(y)
+        full = (y >= 1) | (K_2 * h >= 1)
+        room = np.where(full, 1.0, 1 - K_2 * h)
+        value = dry * room ** -5.0
+        return value, value * 5 * K_2 / room * h / (3 * np.where(full, 1.0, 1 - y)), full
+
+    y = _below_flooding(wet, dry)
+    return HoldupAndPressureDrop(holdup(y), y * flood_pressure_gradient)

@@ -5,7 +5,7 @@ from collections.abc import Callable
 
 import numpy as np
 
-from .validity import Array
+from .validity import Array, Mask
 
 
 def bracketed_root(function: Callable[[Array], Array], low: Array, high: Array) -> Array:
@@ -40,3 +40,21 @@ def bracketed_root(function: Callable[[Array], Array], low: Array, high: Array) 
         t = np.clip(t, limit, 1 - limit)
         t = np.where(np.isfinite(t), t, 0.5)
     return best
+
+
+def climbed_root(curve: Callable[[Array], tuple[Array, Array, Mask]], start: Array) -> tuple[Array, Mask]:
+    """Lowest root of y = curve(y), entry by entry, and where there is none.
+
+    The curve is convex and rises from `start`, which lies below the root: Newton's method climbs without overshooting.
+    `curve` gives the value, its slope and where it is undefined (numbers of any kind there).
+    """
+    y = start.copy()
+    failed = np.zeros(y.shape, bool)
+    for _ in range(100):
+        value, slope, undefined = curve(y)
+        failed |= undefined | (slope >= 1)
+        open_ = ~failed & (np.abs(value - y) > 1e-14 * value)
+        if not open_.any():
+            break
+        y = np.where(open_, y + (value - y) / np.where(open_, 1 - slope, 1.0), y)
+    return y, failed | open_
