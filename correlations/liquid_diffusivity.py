@@ -42,7 +42,7 @@ def wilke_chang(temperature: Values, solvent_viscosity: Values, solvent_molar_ma
 def hayduk_laudie(solvent_viscosity: Values, solute_volume: Values) -> Array:
     """Diffusivity of a solute at infinite dilution in water by Hayduk and Laudie [m2/s].
 
-    D = 13.26e-5 mu^-1.14 V_A^-0.589. Some texts print the exponent -1.4: measured carbon dioxide (25 to 65 C) rules
+    D = 13.26e-5 mu^-1.14 V_A^-0.589. An exponent of -1.4, seen as well: carbon dioxide (25 to 65 C, from memory) rules
     that out.
     """
     mu = solvent_viscosity / CENTIPOISE

@@ -127,7 +127,8 @@ def rocha_bravo_fair_holdup_factor(liquid_velocity: Values, liquid_density: Valu
     """Correction of holdup and area for partial wetting by Rocha, Bravo and Fair [-].
 
     F_t = 29.12 (We Fr)^0.15 S^0.359/(Re^0.2 eps^0.6 (1 - 0.93 cos gamma) (sin theta)^0.3) on the side S of the
-    corrugation (m), cos gamma = 0.9 up to 0.045 N/m and 5.211 x 10^(-16.835 sigma) above (continuous there).
+    corrugation (m), cos gamma = 0.9 up to 0.045 N/m and 5.211 x 10^(-16.835 sigma) above: as printed,
+    the factor steps up by 6.5 % there.
     """
     S = corrugation_side
     We = liquid_velocity ** 2 * liquid_density * S / surface_tension

@@ -65,7 +65,7 @@ def billet_schultes_vapor(diffusivity: Values, vapor_velocity: Values, vapor_den
                           void_fraction: Values, vapor_constant: Values) -> Array:
     """Vapour coefficient by Billet and Schultes [m/s].
 
-    C_V (a/d_h)^(1/2) (eps - h)^(-1/2) D (u rho/(a mu))^(3/4) Sc^(1/3). One textbook prints Sc^(2/3): a misprint.
+    C_V (a/d_h)^(1/2) (eps - h)^(-1/2) D (u rho/(a mu))^(3/4) Sc^(1/3). Benitez (2009) prints Sc^(2/3).
     """
     require("liquid_holdup", liquid_holdup, liquid_holdup < void_fraction, "a holdup below the void fraction")
     d_h = 4 * void_fraction / specific_area

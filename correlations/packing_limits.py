@@ -111,7 +111,8 @@ def generalized_flooding(flow_ratio: Values, vapor_density: Values, liquid_densi
 
 
 @correlation("flooding velocity", "random packings", "m s-1", Validity(
-    {}, None, "kessler_wankat_1988", Confidence.CROSS_CHECKED, range_note=f"{UNKNOWN}; fit of the generalised chart",
+    {}, None, "kessler_wankat_1988", Confidence.DOUBTFUL,
+    range_note=f"{UNKNOWN}; fit of the generalised chart, checked for water only, the power of mu unsure",
     error_note=UNKNOWN), dimensional=True)
 def kessler_wankat_flooding(flow_ratio: Values, vapor_density: Values, liquid_density: Values,
                             liquid_viscosity: Values, packing_factor: Values) -> Array:

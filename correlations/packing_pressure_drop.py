@@ -10,6 +10,7 @@ import numpy as np
 from .constants import FOOT, GRAVITY, INCH_WATER_PER_FOOT
 from .errors import NoPhysicalRootError
 from .packing_coefficients import bravo_equivalent_diameter
+from .packing_holdup import stichlmair_preloading
 from .record import Values, correlation, require
 from .rootfinding import climbed_root
 from .validity import UNKNOWN, Array, Confidence, Mask, Range, Validity
@@ -134,7 +135,7 @@ def stichlmair(vapor_velocity: Values, vapor_density: Values, vapor_viscosity: V
                                 laminar_friction, transition_friction, turbulent_friction) / weight
     _, c = stichlmair_friction(vapor_velocity, vapor_density, vapor_viscosity, specific_area, void_fraction,
                                laminar_friction, transition_friction, turbulent_friction)
-    h_0 = 0.555 * np.cbrt(liquid_velocity ** 2 * specific_area / (GRAVITY * void_fraction ** 4.65))
+    h_0 = stichlmair_preloading.silent(liquid_velocity, specific_area, void_fraction)
     power = (2 + c) / 3
     dry, h_0, eps, power, factor = np.broadcast_arrays(dry, h_0, void_fraction, power, loading_factor)
 

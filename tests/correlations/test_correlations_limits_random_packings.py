@@ -276,3 +276,37 @@ def test_minimum_wetting_typed_out():
     rho, mu, sigma, a = 800.0, 3e-4, 0.02, 200.0
     found = packing_limits.schmidt(rho, mu, sigma, a)
     assert_allclose(found, 7.7e-6 * rho ** (2 / 9) * sigma ** (2 / 3) * mu ** (-8 / 9) * G ** (0.5 - 2 / 9) * a ** -0.5)
+
+
+@pytest.mark.parametrize("a", [100.0, 250.0])
+def test_wet_forms_of_billet_and_schultes(a):
+    """For water the exponents of the two forms are 5000 u/a and 13300 u/(a g^0.5) = 4247 u/a."""
+    u, rest = 0.01, dict(dry_pressure_gradient=1.0, liquid_holdup=0.05, liquid_velocity=0.01, specific_area=a,
+                         void_fraction=0.95)
+    bare = (0.95 / 0.90) ** 1.5
+    first = packing_pressure_drop.billet_schultes_wet_1993(**rest, liquid_density=1000.0, liquid_viscosity=1e-3)
+    second = packing_pressure_drop.billet_schultes_wet_1999(**rest, loading_holdup=0.05)
+    assert_allclose(np.log([first / bare, second / bare]), [5000 * u / a, 4247 * u / a], rtol=1e-4)
+
+
+def test_wet_form_without_load():
+    """billet_schultes_wet_1999 without liquid flow is the dry drop through what the holdup leaves free."""
+    found = packing_pressure_drop.billet_schultes_wet_1999(100.0, 0.05, 0.05, 1e-12, 200.0, 0.95)
+    assert_allclose(found, 100.0 * (0.95 / 0.90) ** 1.5)
+
+
+def test_capacity_parameter():
+    """C_S F_p^0.5 nu^0.05 in ft/s, 1/ft and cSt."""
+    C_S = 1.5 / 0.3048 * np.sqrt(1.19 / (998 - 1.19))
+    found = packing_limits.capacity_parameter(1.5, 1.19, 998.0, 1e-3, 27 / 0.3048)
+    assert_allclose(found, C_S * 27 ** 0.5 * (1 / 0.998) ** 0.05, rtol=1e-6)
+
+
+def test_kister_gill_in_inches():
+    """kister_gill_revised: 0.12 F_p^0.7 inches of water per foot is 98.07 F_p^0.7 Pa/m."""
+    assert_allclose(packing_limits.kister_gill_revised(30 / 0.3048), 98.07 * 30 ** 0.7, rtol=1e-3)
+
+
+def test_kister_gill_of_open_beds():
+    """kister_gill_revised stops at two inches of water per foot."""
+    assert_allclose(packing_limits.kister_gill_revised(61 / 0.3048), 2 * 817.22, rtol=1e-4)

@@ -62,7 +62,7 @@ def test_henriques_de_brito_typed_out():
 
 
 def test_partial_wetting_factor():
-    """rocha_bravo_fair_holdup_factor is continuous at 0.045 N/m; powers of Shi and Mersmann: 0.4 in u, -0.6 in eps.
+    """rocha_bravo_fair_holdup_factor steps up at 0.045 N/m, as printed; powers of Shi and Mersmann.
 
     rocha_bravo_fair_sheet is a F_SE times it.
     """
@@ -75,7 +75,8 @@ def test_partial_wetting_factor():
     wet, dry = function(**dict(state, surface_tension=np.array([0.045, 0.055])))
     assert_allclose(dry / wet, (0.045 / 0.055) ** 0.15 * (1 - 0.93 * 0.9) / (1 - 0.93 * 0.618011), rtol=1e-5)
     edge = function(**dict(state, surface_tension=np.array([0.045, 0.0450001])))
-    assert_allclose(edge[0], edge[1], rtol=0.07)  # cos gamma 0.9 and 0.9106 at the joint
+    # cos gamma 0.9 and 0.910639 at the joint, evaluated apart: the printed branches do not meet
+    assert_allclose(edge[1] / edge[0], (1 - 0.93 * 0.9) / (1 - 0.93 * 0.910639), rtol=1e-4)
     sheet = packing_area.rocha_bravo_fair_sheet(**state, specific_area=A, surface_factor=0.35)
     assert_allclose(sheet, A * 0.35 * function(**state))
 

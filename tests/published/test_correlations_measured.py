@@ -1,4 +1,7 @@
-"""Measured diffusivities (from memory; handbook values): the tolerance is what the method claims."""
+"""Measured diffusivities, all from memory: gas pairs of Duncan & Toor, AIChE J. 8 (1962) 38, and Arnold & Toor,
+AIChE J. 13 (1967) 909; liquids as handbooks list them, the measurer not at hand. The tolerance is what the method
+claims, or the known miss where said.
+"""
 from __future__ import annotations
 
 import pytest
@@ -30,21 +33,23 @@ ROWS = [
         dict(temperature=308.35, pressure=101325.0, molar_mass_a=MASS["N2"], molar_mass_b=MASS["CO2"],
              collision_diameter_a=3.798e-10, collision_diameter_b=3.941e-10, energy_parameter_a=71.4,
              energy_parameter_b=195.2), 16.8e-6, 0.08, "Duncan and Toor (1962)", measured=True),
-    Row(liquid_diffusivity.hayduk_laudie, WATER, 1.92e-9, 0.05, "carbon dioxide in water, 25 C", measured=True),
+    Row(liquid_diffusivity.hayduk_laudie, WATER, 1.92e-9, 0.05, "carbon dioxide in water, 25 C, from memory",
+        measured=True),
     Row(liquid_diffusivity.siddiqi_lucas_aqueous,
         dict(temperature=293.0, solvent_viscosity=1.0e-3, solute_volume=140.4e-6), 0.81e-9, 0.30,
-        "ethylbenzene in water; the method, with 20 % of mean error, is 28 % low here", measured=True),
+        "ethylbenzene in water, from memory; the method, with 20 % of mean error, is 28 % low here",
+        measured=True),
     Row(liquid_diffusivity.siddiqi_lucas_organic,
         dict(temperature=298.15, solvent_viscosity=0.604e-3, solute_volume=118.2e-6, solvent_volume=96.5e-6), 1.85e-9,
-        0.13, "toluene in benzene", measured=True),
+        0.13, "toluene in benzene, from memory", measured=True),
     Row(liquid_diffusivity.tyn_calus,
         dict(temperature=298.15, solvent_viscosity=0.604e-3, solute_volume=118.2e-6, solvent_volume=96.5e-6,
              solute_parachor=245.5 * liquid_diffusivity.PARACHOR, solvent_parachor=205.3 * liquid_diffusivity.PARACHOR),
-        1.85e-9, 0.10, "toluene in benzene", measured=True),
+        1.85e-9, 0.10, "toluene in benzene, from memory", measured=True),
     Row(liquid_diffusivity.tyn_calus_surface_tension,
         dict(temperature=298.15, solvent_viscosity=0.604e-3, solute_volume=118.2e-6, solvent_volume=96.5e-6,
-             solute_surface_tension=27.9e-3, solvent_surface_tension=28.2e-3), 1.85e-9, 0.10, "toluene in benzene",
-        measured=True),
+             solute_surface_tension=27.9e-3, solvent_surface_tension=28.2e-3), 1.85e-9, 0.10,
+        "toluene in benzene, from memory", measured=True),
 ]
 
 
@@ -54,6 +59,6 @@ def test_measured(row):
 
 
 def test_temperature_exponent_of_hayduk_laudie():
-    """Carbon dioxide in water: D(65 C)/D(25 C) measured about 2.3; the exponent 1.4 of some texts gives 2.74."""
+    """Carbon dioxide in water: D(65 C)/D(25 C) about 2.3 (handbook values, from memory); 1.4 would give 2.74."""
     D = liquid_diffusivity.hayduk_laudie([0.8904e-3, 0.4331e-3], 34.0e-6)
     assert D[1] / D[0] == pytest.approx(2.3, rel=0.03)

@@ -15,7 +15,6 @@ from correlations import (
     packing_area,
     packing_coefficients,
     packing_limits,
-    packing_pressure_drop,
     tray_hydraulics,
     tray_limits,
     tray_transfer,
@@ -158,33 +157,13 @@ class TestPackings:
         found = packing_area.bravo_fair(u_L, mu_L, sigma, u_V, rho, mu_V, a, Z)
         assert_allclose(found, a * 19.78 * sigma ** 0.5 / Z ** 0.4 * group ** 0.392, rtol=1e-3)
 
-    @pytest.mark.parametrize("a", [90.0, 200.0])
-    def test_wet_forms_of_billet_and_schultes(self, a):
-        """For water the exponents of 1993 and 1999 are 5000 u/a and 4247 u/a."""
-        u, rest = 0.01, dict(dry_pressure_gradient=1.0, liquid_holdup=0.05, liquid_velocity=0.01, specific_area=a,
-                             void_fraction=0.95)
-        bare = (0.95 / 0.90) ** 1.5
-        first = packing_pressure_drop.billet_schultes_wet_1993(**rest, liquid_density=1000.0, liquid_viscosity=1e-3)
-        second = packing_pressure_drop.billet_schultes_wet_1999(**rest, loading_holdup=0.05)
-        assert_allclose(np.log([first / bare, second / bare]), [5000 * u / a, 4247 * u / a], rtol=1e-4)
-
-    @pytest.mark.parametrize("flow_ratio, band", [(1.0, 0.06), (3.0, 0.06), (10.0, 0.06)])
-    def test_two_fits_of_the_flooding_chart(self, flow_ratio, band):
+    @pytest.mark.parametrize("flow_ratio", [1.0, 3.0, 10.0])
+    def test_two_fits_of_the_flooding_chart(self, flow_ratio):
+        """For water, where neither the power of the viscosity nor the ratio of densities shows: 5.3 % at most here."""
         state = dict(flow_ratio=flow_ratio, vapor_density=1.2, liquid_density=998.0, liquid_viscosity=1e-3,
                      packing_factor=80.0)
         one, two = (f(**state) for f in (packing_limits.generalized_flooding, packing_limits.kessler_wankat_flooding))
-        assert_allclose(one, two, rtol=band)  # two readings of one chart
-
-    def test_capacity_parameter(self):
-        """C_S F_p^0.5 nu^0.05 in ft/s, 1/ft and cSt."""
-        C_S = 1.5 / FOOT * np.sqrt(1.19 / (998 - 1.19))
-        found = packing_limits.capacity_parameter(1.5, 1.19, 998.0, 1e-3, 27 / FOOT)
-        assert_allclose(found, C_S * 27 ** 0.5 * (1 / 0.998) ** 0.05, rtol=1e-6)
-
-    def test_kister_gill_revised(self):
-        """0.12 F_p^0.7 inches of water per foot is 98.07 F_p^0.7 Pa/m."""
-        assert_allclose(packing_limits.kister_gill_revised(30 / FOOT), 98.07 * 30 ** 0.7, rtol=1e-3)
-        assert_allclose(packing_limits.kister_gill_revised(61 / FOOT), 2 * 817.22, rtol=1e-4)
+        assert_allclose(one, two, rtol=0.06)  # two readings of one chart
 
 
 def test_wilke_lee_with_pascals():
@@ -212,9 +191,6 @@ COVERS = {
     "mixing.aiche_eddy_diffusivity": "test_eddy_diffusivity",
     "packing_area.bravo_fair": "test_bravo_fair",
     "packing_coefficients.shulman_vapor": "test_shulman_agrees_with_onda",
-    "packing_pressure_drop.billet_schultes_wet_1999": "test_wet_forms_of_billet_and_schultes",
     "packing_limits.generalized_flooding": "test_two_fits_of_the_flooding_chart",
     "packing_limits.kessler_wankat_flooding": "test_two_fits_of_the_flooding_chart",
-    "packing_limits.capacity_parameter": "test_capacity_parameter",
-    "packing_limits.kister_gill_revised": "test_kister_gill_revised",
 }
