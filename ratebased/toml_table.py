@@ -22,7 +22,7 @@ class TomlTable:
     """One table of a file. Each accessor takes a key away; `finish` complains of those that nothing asked for."""
 
     def __init__(self, data: Mapping[str, Any], where: str) -> None:
-        self.data, self.where, self.asked = dict(data), where, set[str]()
+        self.data, self.where, self.asked, self.known = dict(data), where, set[str](), set[str]()
 
     @classmethod
     def load(cls, path: Path) -> TomlTable:
@@ -46,7 +46,8 @@ class TomlTable:
         return InputError(f"{self.where}: {key} = {self.data.get(key)!r}: {why}")
 
     def has(self, key: str) -> bool:
-        """True where the key is given."""
+        """True where the key is given; it is known then, though not yet asked for."""
+        self.known.add(key)
         return key in self.data
 
     def take(self, key: str, default: Any = _REQUIRED) -> Any:
@@ -209,8 +210,9 @@ class TomlTable:
         """Raise for the first key that nothing asked for, with the nearest known one."""
         for key in self.data:
             if key not in self.asked:
-                near = difflib.get_close_matches(key, self.asked, 1)
-                hint = f"; did you mean {near[0]!r}?" if near else f"; known keys: {', '.join(sorted(self.asked))}"
+                known = sorted(self.asked | self.known)
+                near = difflib.get_close_matches(key, known, 1)
+                hint = f"; did you mean {near[0]!r}?" if near else f"; known keys: {', '.join(known)}"
                 raise InputError(f"{self.where}: unknown key {key!r}{hint}")
 
 

@@ -46,6 +46,8 @@ RATE = [
     ("case.toml", 'method = "AIChE"', 'method = "AICE"', "did you mean 'AIChE'?"),
     ("case.toml", 'type = "sieve tray"', 'type = "sieve"', "expected one of 'sieve tray', 'bubble-cap tray'"),
     ("case.toml", 'mixing = "pools"', 'mixing = "pool"', "did you mean 'pools'?"),
+    ("case.toml", 'mixing = "pools"', 'mixing = "pools"\nat_liquid_temperatur = true',
+     "did you mean 'at_liquid_temperature'?"),
     ("case.toml", 'activity = "unifac-modified"', 'activity = "unifac modified"', "did you mean 'unifac-modified'?"),
     # numbers
     ("case.toml", "diameter_m = 1.1", "diameter_m = 0.0", "diameter_m = 0.0: expected a number above 0"),
