@@ -33,11 +33,19 @@ def k_value_derivatives(properties: PropertyModel, T: Array, P: Array, x: Array,
     def ln_k(T: Array, x: Array, y: Array) -> Array:
         return np.log(np.where(ordinary, properties.k_value(T, P, x, y), 1.0))
 
-    step = TEMPERATURE_STEP * T / 300.0
-    slope = (ln_k(T + step, x, y) - ln_k(T - step, x, y)) / (2.0 * step)[..., None]
+    up, down = _around(properties, T)
+    slope = (ln_k(up, x, y) - ln_k(down, x, y)) / (up - down)[..., None]
     liquid = _by_moles(lambda moles: ln_k(T, moles, y), x, condensable)
     vapor = _by_moles(lambda moles: ln_k(T, x, moles), y, volatile)
     return KDerivatives(slope, liquid, vapor)
+
+
+def _around(properties: PropertyModel, T: Array) -> tuple[Array, Array]:
+    """Temperatures above and below T to take a difference between, inside the range the model states."""
+    T = np.asarray(T, float)
+    step = TEMPERATURE_STEP * T / 300.0
+    low, high = getattr(properties, "T_range", (0.0, np.inf))
+    return np.minimum(T + step, high), np.maximum(T - step, low)
 
 
 def _by_moles(function: Callable[[Array], Array], composition: Array, wanted: Mask) -> Array:
@@ -63,10 +71,8 @@ def vapor_heat_capacity(properties: PropertyModel, T: Array, P: Array, y: Array)
     own = getattr(properties, "vapor_heat_capacity", None)
     if own is not None:
         return np.asarray(own(T, P, y))
-    T = np.asarray(T, float)
-    step = TEMPERATURE_STEP * T / 300.0
-    up, down = properties.vapor_enthalpy(T + step, P, y), properties.vapor_enthalpy(T - step, P, y)
-    return (up - down) / (2.0 * step)[..., None]
+    up, down = _around(properties, T)
+    return (properties.vapor_enthalpy(up, P, y) - properties.vapor_enthalpy(down, P, y)) / (up - down)[..., None]
 
 
 def liquid_heat_capacity(properties: PropertyModel, T: Array, P: Array, x: Array) -> Array:
@@ -74,10 +80,8 @@ def liquid_heat_capacity(properties: PropertyModel, T: Array, P: Array, x: Array
     own = getattr(properties, "liquid_heat_capacity", None)
     if own is not None:
         return np.asarray(own(T, P, x))
-    T = np.asarray(T, float)
-    step = TEMPERATURE_STEP * T / 300.0
-    up, down = properties.liquid_enthalpy(T + step, P, x), properties.liquid_enthalpy(T - step, P, x)
-    return (up - down) / (2.0 * step)[..., None]
+    up, down = _around(properties, T)
+    return (properties.liquid_enthalpy(up, P, x) - properties.liquid_enthalpy(down, P, x)) / (up - down)[..., None]
 
 
 def vapor_thermodynamic_factor(properties: PropertyModel, T: Array, P: Array, y: Array) -> Array:

@@ -6,6 +6,7 @@ import pytest
 
 from ratebased.errors import InputError, PropertyRangeError, PropertyWarning
 from ratebased.properties import ConstantVolatility, CubicProperties, ThermoProperties, bubble_point
+from ratebased.properties.differences import liquid_heat_capacity
 
 NAMES = ["methanol", "water"]
 X = [0.4, 0.6]
@@ -88,3 +89,16 @@ def test_second_virial_coefficient_beyond_its_range():
         assert (model._vapor.compressibility(T, P, y) > 0.0).all()
     with pytest.raises(PropertyRangeError, match=r"P\[1\] = 1e\+08 Pa at 350 K.*leaves no volume"):
         model.vapor_transport(350.0, [1e5, 1e8], X)
+
+
+def test_differences_stay_inside_the_range_of_a_model() -> None:
+    class Ranged:
+        T_range = (300.0, 400.0)
+
+        def liquid_enthalpy(self, T: np.ndarray, P: np.ndarray, x: np.ndarray) -> np.ndarray:
+            assert ((T >= 300.0) & (T <= 400.0)).all()
+            return 120.0 * T[..., None] * np.ones_like(x)
+
+    T, x = np.array([300.0, 350.0, 400.0]), np.full((3, 2), 0.5)
+    found = liquid_heat_capacity(Ranged(), T, np.full(3, 1e5), x)
+    np.testing.assert_allclose(found, 120.0, rtol=1e-6)
