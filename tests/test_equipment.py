@@ -1,6 +1,8 @@
 """Trays and packings: against worked examples through the objects, limits, ranges, refused dimensions."""
 from __future__ import annotations
 
+from dataclasses import replace
+
 import numpy as np
 import pytest
 
@@ -153,3 +155,13 @@ def test_contact_state_of_a_model() -> None:
     assert s.liquid_mass_flow[0] == pytest.approx(2 * 0.055)
     assert s.vapor_volume_flow[0] == pytest.approx(8.314462618 * 350 / 1e5)
     assert AIChEBubbleCap().correlations["liquid"] is not AIChESieve().correlations["liquid"]
+
+
+def test_area_of_tsai_needs_no_surface_factor() -> None:
+    sheet = StructuredPacking.of("corrugated sheet, metal, 250 m2/m3, 45 degrees", 1.5, method=TsaiArea())
+    s = hydrocarbon()
+    bare = replace(sheet, surface_factor=None).transfer(s)
+    assert np.array_equal(bare.area, sheet.transfer(s).area)
+    assert not any("rocha_bravo_fair_sheet" in note for note in bare.notes)
+    with pytest.raises(InputError, match="surface_factor"):
+        replace(sheet, surface_factor=None, method=RochaBravoFair()).transfer(s)

@@ -218,3 +218,17 @@ def test_no_heat_capacity_is_the_limit_of_little() -> None:
     q = point(equal, kappa_vapor=0.02 * UNEQUAL)
     tray = pools_in_series(q, np.full(2, 1.4), equal, 3)
     assert np.allclose(tray.V, 1.0, atol=1e-9) and np.allclose(tray.L, 1.4, atol=1e-9)
+
+
+def test_integral_without_latent_heat() -> None:
+    """Equal enthalpies of both phases leave nothing to scale an energy with: the error control needs its own scale."""
+    model = ConstantVolatility(["gas", "solute", "oil"], [1.0, 0.4, 1.0], [0.0] * 3, a=22.6, b=4000.0,
+                               vapor_heat_capacity=100.0, liquid_heat_capacity=100.0, condensable=[False, True, True],
+                               volatile=[True, True, False])
+    pairs, n = np.full((1, 3, 3), 1.0), 1
+    c = TransferCoefficients(0.02 * pairs, 2e-4 * pairs, np.full(n, 60.0), np.full(n, 2500.0), np.full(n, 2.0), "given")
+    p = FrothPoint(np.ones(n), np.array([[0.9, 0.1, 0.0]]), np.full(n, 350.0), np.array([[0.0, 0.05, 0.95]]),
+                   np.full(n, 350.0), np.full(n, PRESSURE), c, np.full(n, 35.0), np.full(n, 1.1e4))
+    found = integral(p, model)
+    assert found.y[0, 1] < 0.1
+    assert np.abs(found.y - exponential_midpoint(p, model).y).max() < 0.01 * np.abs(found.y - p.y_in).max()

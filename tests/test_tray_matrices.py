@@ -115,3 +115,20 @@ def test_bad_arguments() -> None:
         tray_efficiency(E2, np.eye(3), WellMixed())
     with pytest.raises(InputError, match="1 \\+ E \\(S - 1\\) is not positive"):
         overall_efficiency(np.array(4.0), np.array(0.5))
+
+
+@pytest.mark.parametrize("mixing, pools", [(Pools(np.array(3.0)), 3), (PlugFlow(), None)])
+def test_weeping_with_too_few_eigenvectors(mixing: object, pools: int | None) -> None:
+    """[S][E] with one eigenvector only: without weeping the tray of the same mixing, continuous in the fraction."""
+    E, S = np.array([[0.7, 0.1], [0.0, 0.7]]), np.eye(2)
+    assert np.allclose(weeping(E, S, 0.0, pools=pools), tray_efficiency(E, S, mixing), rtol=1e-7)
+    near = weeping(E + np.diag([0.0, 1e-6]), S, 0.3, pools=pools)
+    assert np.allclose(weeping(E, S, 0.3, pools=pools), near, rtol=1e-4)
+
+
+def test_weeping_where_the_stripping_matches_the_loss() -> None:
+    """Plug flow at z = -f: the drive falls as (1 - f s)/(1 - f) rises, mean (1 - f)(-ln(1 - f)/f)."""
+    f = 0.3
+    mean = (1 - f) * -np.log1p(-f) / f
+    found = weeping(np.array([[0.5]]), np.array([[-f / 0.5]]), f)[0, 0]
+    assert found == pytest.approx(0.5 * mean / (1 - f + f * mean), rel=1e-13)

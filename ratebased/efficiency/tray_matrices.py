@@ -10,12 +10,12 @@ from __future__ import annotations
 from enum import Enum
 
 import numpy as np
-from numpy.typing import NDArray
 
 from ..arguments import finite_array
 from ..errors import InputError
 from ..properties.protocol import Array
 from ..stage.mixing import LiquidMixing, PlugFlow, mixed_tray
+from ..stage.point import phi_action
 
 
 class VaporPath(Enum):
@@ -110,26 +110,27 @@ def weeping(E: Array, S: Array, fraction: float, *, pools: int | None = None) ->
     if pools is not None and (pools < 1 or pools != int(pools)):
         raise InputError(f"pools = {pools}: expected a whole number of one or more")
     E, S = _pair(E, S)
-    z, U = np.linalg.eig(S @ E)
-    z = z.astype(complex)
-    mean = _mean_drive_plug(z, fraction) if pools is None else _mean_drive_pools(z, fraction, int(pools))
-    ratio = mean / ((1.0 - fraction) + fraction * mean)
-    return np.asarray((E @ (U * ratio[..., None, :]) @ np.linalg.inv(U)).real)
+    Z = S @ E
+    mean = _mean_drive_plug(Z, fraction) if pools is None else _mean_drive_pools(Z, fraction, int(pools))
+    return np.asarray(E @ mean @ np.linalg.inv((1.0 - fraction) * np.eye(Z.shape[-1]) + fraction * mean))
 
 
-def _mean_drive_plug(z: NDArray[np.complex128], fraction: float) -> NDArray[np.complex128]:
-    """Mean of ((1 - f s)/(1 - f))^(z/f) over s: ((1 - f)^(-z/f) - (1 - f))/(f + z), (e^z - 1)/z at f = 0."""
-    if fraction < 1e-9:
-        small = np.abs(z) < 1e-9
-        return np.where(small, 1.0, np.expm1(z) / np.where(small, 1.0, z))
-    return np.asarray(((1.0 - fraction) ** (-z / fraction) - (1.0 - fraction)) / (fraction + z))
+def _mean_drive_plug(Z: Array, fraction: float) -> Array:
+    """Mean of ((1 - f s)/(1 - f))^(Z/f) over s: (1 - f) a (e^W - 1)/W, W = a (Z + f), a = -ln(1 - f)/f, one at f = 0.
+
+    Without a pole at Z = -f and without eigenvectors, which a defective matrix has too few of.
+    """
+    a = -np.log1p(-fraction) / fraction if fraction > 0 else 1.0
+    eye = np.broadcast_to(np.eye(Z.shape[-1]), Z.shape)
+    return (1.0 - fraction) * a * phi_action(a * (Z + fraction * eye), eye)
 
 
-def _mean_drive_pools(z: NDArray[np.complex128], fraction: float, pools: int) -> NDArray[np.complex128]:
-    drive, total = np.ones_like(z), np.zeros_like(z)
+def _mean_drive_pools(Z: Array, fraction: float, pools: int) -> Array:
+    eye = np.eye(Z.shape[-1])
+    drive, total = np.broadcast_to(eye, Z.shape), np.zeros_like(Z)
     for k in range(pools, 0, -1):
-        total += drive / pools
-        drive = drive * (1.0 + z / (pools * (1.0 - fraction * (k - 1) / pools)))
+        total = total + drive / pools
+        drive = (eye + Z / (pools * (1.0 - fraction * (k - 1) / pools))) @ drive
     return total
 
 

@@ -60,6 +60,10 @@ class RochaBravoFair:
 
     def __call__(self, bed: StructuredPacking, state: ContactState, calls: Calls) -> tuple[Array, Array, Array]:
         """(kappa_vapor, kappa_liquid, area)."""
+        return *self.coefficients(bed, state, calls), self.area(bed, state, calls)
+
+    def coefficients(self, bed: StructuredPacking, state: ContactState, calls: Calls) -> tuple[Array, Array]:
+        """(kappa_vapor, kappa_liquid)."""
         vapor_velocity, liquid_velocity = bed.velocities(state)
         holdup = self.operation(bed, state, calls).holdup
         geometry = {"void_fraction": bed.void_fraction, "corrugation_side": bed.side, "corrugation_angle": bed.angle}
@@ -69,12 +73,16 @@ class RochaBravoFair:
             liquid_velocity=liquid_velocity, liquid_holdup=holdup, **geometry)
         liquid = calls.pairs(packing_coefficients.rocha_bravo_fair_liquid, state.liquid.diffusivity,
                              liquid_velocity=liquid_velocity, liquid_holdup=holdup, **geometry)
+        return vapor, liquid
+
+    def area(self, bed: StructuredPacking, state: ContactState, calls: Calls) -> Array:
+        """Interfacial area per volume."""
         if bed.surface_factor is None:
             raise InputError("surface_factor: the area of Rocha, Bravo & Fair needs the surface factor of the sheet")
-        area = calls(packing_area.rocha_bravo_fair_sheet, **_film(state, liquid_velocity),
-                     surface_tension=state.liquid.surface_tension, specific_area=bed.specific_area, **geometry,
+        return calls(packing_area.rocha_bravo_fair_sheet, **_film(state, bed.velocities(state)[1]),
+                     surface_tension=state.liquid.surface_tension, specific_area=bed.specific_area,
+                     void_fraction=bed.void_fraction, corrugation_side=bed.side, corrugation_angle=bed.angle,
                      surface_factor=bed.surface_factor)
-        return vapor, liquid, area
 
 
 class BravoRochaFair:
@@ -113,14 +121,12 @@ class TsaiArea(RochaBravoFair):
 
     correlations = {**RochaBravoFair.correlations, "area": packing_area.tsai}
 
-    def __call__(self, bed: StructuredPacking, state: ContactState, calls: Calls) -> tuple[Array, Array, Array]:
-        """(kappa_vapor, kappa_liquid, area)."""
-        vapor, liquid, _ = super().__call__(bed, state, calls)
-        area = calls(packing_area.tsai, liquid_velocity=bed.velocities(state)[1],
+    def area(self, bed: StructuredPacking, state: ContactState, calls: Calls) -> Array:
+        """Interfacial area per volume."""
+        return calls(packing_area.tsai, liquid_velocity=bed.velocities(state)[1],
                      liquid_density=state.liquid.mass_density, surface_tension=state.liquid.surface_tension,
                      specific_area=bed.specific_area, corrugation_base=bed.base,
                      corrugation_height=bed.height_of_corrugation, corrugation_side=bed.side)
-        return vapor, liquid, area
 
 
 @dataclass(frozen=True)

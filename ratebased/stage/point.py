@@ -20,7 +20,7 @@ from ..equipment.protocol import Array, TransferCoefficients
 from ..errors import ConvergenceError
 from ..interface import Bulk, InterfaceFlux, interface_flux
 from ..properties.differences import vapor_heat_capacity
-from ..properties.protocol import PropertyModel
+from ..properties.protocol import GAS_CONSTANT, PropertyModel
 
 
 @dataclass(frozen=True)
@@ -110,14 +110,15 @@ def exponential_midpoint(point: FrothPoint, properties: PropertyModel, *, local:
     h = 1.0 / steps
     for _ in range(steps):
         f0, J0, _, _, interface = froth.linearized(u)
-        euler = h * _phi_action(h * J0, f0[..., None])[..., 0]
-        middle = u + 0.5 * h * _phi_action(0.5 * h * J0, f0[..., None])[..., 0]
+        euler = h * phi_action(h * J0, f0[..., None])[..., 0]
+        middle = u + 0.5 * h * phi_action(0.5 * h * J0, f0[..., None])[..., 0]
         fm, Jm, Wm, (Em, by_E), interface = froth.linearized(middle, interface)
         slope = fm + np.einsum("...ij,...j->...i", Jm, u - middle)
-        action = h * _phi_action(h * Jm, np.concatenate((slope[..., None], Wm), -1))
+        phi = phi_action(h * Jm, np.broadcast_to(np.eye(n + 1), Jm.shape))
+        action = h * phi @ np.concatenate((slope[..., None], Wm), -1)
         step = action[..., 0]
         given += h * (Em + (by_E * (u - middle)).sum(-1)) + h * (by_E * _phi_integral(h * Jm, h * slope)).sum(-1)
-        propagator = np.eye(n + 1) + h * Jm @ _phi_action(h * Jm, np.broadcast_to(np.eye(n + 1), Jm.shape))
+        propagator = np.eye(n + 1) + h * Jm @ phi
         liquid = propagator @ liquid + action[..., 1:]
         vapor = propagator @ vapor
         error += np.abs(step - euler)[..., :n].max(-1) / u[..., :n].sum(-1)
@@ -155,7 +156,7 @@ def integral(point: FrothPoint, properties: PropertyModel, *, local: LocalCoeffi
 
     latent = np.abs(properties.vapor_enthalpy(point.T_V_in, point.P, point.y_in)
                     - properties.liquid_enthalpy(point.T_L, point.P, point.x)).max(-1)
-    enthalpy_scale = point.V_in * latent
+    enthalpy_scale = point.V_in * np.maximum(latent, GAS_CONSTANT * point.T_L)   # for the error control only
     start = np.concatenate((u0 / scale, np.zeros((*u0.shape[:-1], 1))), -1).ravel()
     run = solve_ivp(slope, (0.0, 1.0), start, method="DOP853", rtol=rtol, atol=rtol * 1e-2)
     if not run.success:
@@ -283,7 +284,7 @@ def _exponential(matrix: Array) -> Array:
     return result
 
 
-def _phi_action(Z: Array, B: Array) -> Array:
+def phi_action(Z: Array, B: Array) -> Array:
     """phi(Z) B with phi(Z) = (exp Z - 1)/Z, Z (..., m, m), B (..., m, k): the corner of one matrix exponential."""
     m, k = B.shape[-2:]
     big = np.zeros((*Z.shape[:-2], m + k, m + k))
